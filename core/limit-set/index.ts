@@ -1,16 +1,16 @@
 export { defaultAlarms } from "./default-alarms.ts";
 export {
-	type AlarmRule,
-	AlarmRuleSchema,
-	type AlarmRulesFile,
-	AlarmRulesFileSchema,
-	type Delay,
-	type LimitSet,
-	LimitSetSchema,
-	type PropertyWatch,
-	type Side,
-	type StatisticLimit,
-	sides,
-	type Watch,
+  type AlarmRule,
+  AlarmRuleSchema,
+  type AlarmRulesFile,
+  AlarmRulesFileSchema,
+  type Delay,
+  type LimitSet,
+  LimitSetSchema,
+  type PropertyWatch,
+  type Side,
+  type StatisticLimit,
+  sides,
+  type Watch,
 } from "./limit-set.ts";
 export { LimitSetError, parseAlarmRules, parseLimitSet } from "./parse.ts";

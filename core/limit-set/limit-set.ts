@@ -3,11 +3,9 @@ import { PrioritySchema } from "../messages/alarm.ts";
 
 /** One statistic's limit: the number in force, and where it came from. The number rules; method and confidence say how to make it again. */
 export const StatisticLimitSchema = Type.Object({
-	method: Type.String({ minLength: 1 }),
-	confidence: Type.Optional(
-		Type.Number({ exclusiveMinimum: 0, exclusiveMaximum: 1 }),
-	),
-	limit: Type.Number({ exclusiveMinimum: 0 }),
+  method: Type.String({ minLength: 1 }),
+  confidence: Type.Optional(Type.Number({ exclusiveMinimum: 0, exclusiveMaximum: 1 })),
+  limit: Type.Number({ exclusiveMinimum: 0 }),
 });
 export type StatisticLimit = Static<typeof StatisticLimitSchema>;
 
@@ -16,9 +14,9 @@ export type StatisticLimit = Static<typeof StatisticLimitSchema>;
  * and has held for at least `seconds` of process time.
  */
 export const DelaySchema = Type.Object({
-	readings: Type.Integer({ minimum: 1, maximum: 1000 }),
-	of: Type.Optional(Type.Integer({ minimum: 1, maximum: 1000 })),
-	seconds: Type.Optional(Type.Number({ minimum: 0 })),
+  readings: Type.Integer({ minimum: 1, maximum: 1000 }),
+  of: Type.Optional(Type.Integer({ minimum: 1, maximum: 1000 })),
+  seconds: Type.Optional(Type.Number({ minimum: 0 })),
 });
 export type Delay = Static<typeof DelaySchema>;
 
@@ -26,97 +24,89 @@ export const sides = ["high-high", "high", "low", "low-low"] as const;
 export type Side = (typeof sides)[number];
 
 const PropertyWatchSchema = Type.Object({
-	kind: Type.Literal("property"),
-	property: Type.String(),
-	side: Type.Enum(sides),
-	limit: Type.Number(),
-	/** unit of the property: how far it must come back from the limit before the alarm clears */
-	deadband: Type.Number({ minimum: 0 }),
+  kind: Type.Literal("property"),
+  property: Type.String(),
+  side: Type.Enum(sides),
+  limit: Type.Number(),
+  /** unit of the property: how far it must come back from the limit before the alarm clears */
+  deadband: Type.Number({ minimum: 0 }),
 });
 const StatisticWatchSchema = Type.Object({
-	kind: Type.Union([
-		Type.Literal("extrapolated"),
-		Type.Literal("unfamiliar"),
-		Type.Literal("sparse"),
-	]),
-	/** share of the limit: the ratio must fall below 1 − deadband before the alarm clears */
-	deadband: Type.Number({ minimum: 0, exclusiveMaximum: 1 }),
+  kind: Type.Union([Type.Literal("extrapolated"), Type.Literal("unfamiliar"), Type.Literal("sparse")]),
+  /** share of the limit: the ratio must fall below 1 − deadband before the alarm clears */
+  deadband: Type.Number({ minimum: 0, exclusiveMaximum: 1 }),
 });
 const UnusableShareWatchSchema = Type.Object({
-	kind: Type.Literal("unusable share"),
-	share: Type.Number({ exclusiveMinimum: 0, maximum: 1 }),
-	/** among this many last readings */
-	among: Type.Integer({ minimum: 2, maximum: 1000 }),
+  kind: Type.Literal("unusable share"),
+  share: Type.Number({ exclusiveMinimum: 0, maximum: 1 }),
+  /** among this many last readings */
+  among: Type.Integer({ minimum: 2, maximum: 1000 }),
 });
 const SilentWatchSchema = Type.Object({
-	kind: Type.Literal("silent"),
-	/** no reading for this many periods of the stream, by the wall clock */
-	periods: Type.Number({ minimum: 2 }),
+  kind: Type.Literal("silent"),
+  /** no reading for this many periods of the stream, by the wall clock */
+  periods: Type.Number({ minimum: 2 }),
 });
 const FrozenWatchSchema = Type.Object({ kind: Type.Literal("frozen") });
 export const WatchSchema = Type.Union([
-	PropertyWatchSchema,
-	StatisticWatchSchema,
-	UnusableShareWatchSchema,
-	SilentWatchSchema,
-	FrozenWatchSchema,
+  PropertyWatchSchema,
+  StatisticWatchSchema,
+  UnusableShareWatchSchema,
+  SilentWatchSchema,
+  FrozenWatchSchema,
 ]);
 export type Watch = Static<typeof WatchSchema>;
 export type PropertyWatch = Static<typeof PropertyWatchSchema>;
 
 export const AlarmRuleSchema = Type.Object({
-	key: Type.String({ pattern: "^[a-z0-9-]{1,64}$" }),
-	title: Type.String({ minLength: 1 }),
-	watches: WatchSchema,
-	onDelay: DelaySchema,
-	offDelay: DelaySchema,
-	priority: PrioritySchema,
-	/**
-	 * What a reading that is not inside does to a property alarm. hold: nothing, until a trusted reading comes · evaluate: it counts like any
-	 * other · suppress: it counts as a return to normal. Other alarms take no notice of it.
-	 */
-	untrusted: Type.Union([
-		Type.Literal("hold"),
-		Type.Literal("evaluate"),
-		Type.Literal("suppress"),
-	]),
-	/** ISA-18.2 rationalization: an alarm without a response is none */
-	purpose: Type.Object({
-		cause: Type.String(),
-		consequence: Type.String(),
-		response: Type.String(),
-		timeToRespondMinutes: Type.Number({ minimum: 0 }),
-	}),
+  key: Type.String({ pattern: "^[a-z0-9-]{1,64}$" }),
+  title: Type.String({ minLength: 1 }),
+  watches: WatchSchema,
+  onDelay: DelaySchema,
+  offDelay: DelaySchema,
+  priority: PrioritySchema,
+  /**
+   * What a reading that is not inside does to a property alarm. hold: nothing, until a trusted reading comes · evaluate: it counts like any
+   * other · suppress: it counts as a return to normal. Other alarms take no notice of it.
+   */
+  untrusted: Type.Union([Type.Literal("hold"), Type.Literal("evaluate"), Type.Literal("suppress")]),
+  /** ISA-18.2 rationalization: an alarm without a response is none */
+  purpose: Type.Object({
+    cause: Type.String(),
+    consequence: Type.String(),
+    response: Type.String(),
+    timeToRespondMinutes: Type.Number({ minimum: 0 }),
+  }),
 });
 export type AlarmRule = Static<typeof AlarmRuleSchema>;
 
 /** One version of all limits and alarm settings of a stream. */
 export const LimitSetSchema = Type.Object({
-	format: Type.Literal("millrace-limit-set"),
-	formatVersion: Type.Literal(1),
-	stream: Type.String({ pattern: "^[a-z0-9-]{1,64}$" }),
-	version: Type.Integer({ minimum: 1 }),
-	/** SHA-256 of the model that the statistics' limits were made for */
-	model: Type.String(),
-	statistics: Type.Object({
-		t2: StatisticLimitSchema,
-		q: StatisticLimitSchema,
-		nearest: StatisticLimitSchema,
-	}),
-	alarms: Type.Array(AlarmRuleSchema),
-	author: Type.String(),
-	reason: Type.String(),
-	/** when it was made, epoch ms */
-	time: Type.Number(),
+  format: Type.Literal("millrace-limit-set"),
+  formatVersion: Type.Literal(1),
+  stream: Type.String({ pattern: "^[a-z0-9-]{1,64}$" }),
+  version: Type.Integer({ minimum: 1 }),
+  /** SHA-256 of the model that the statistics' limits were made for */
+  model: Type.String(),
+  statistics: Type.Object({
+    t2: StatisticLimitSchema,
+    q: StatisticLimitSchema,
+    nearest: StatisticLimitSchema,
+  }),
+  alarms: Type.Array(AlarmRuleSchema),
+  author: Type.String(),
+  reason: Type.String(),
+  /** when it was made, epoch ms */
+  time: Type.Number(),
 });
 export type LimitSet = Static<typeof LimitSetSchema>;
 
 /** What a person writes before the first start: the alarms of a stream. Statistics come from the model. */
 export const AlarmRulesFileSchema = Type.Object({
-	format: Type.Literal("millrace-alarm-rules"),
-	formatVersion: Type.Literal(1),
-	author: Type.String({ minLength: 1 }),
-	reason: Type.String({ minLength: 1 }),
-	alarms: Type.Array(AlarmRuleSchema),
+  format: Type.Literal("millrace-alarm-rules"),
+  formatVersion: Type.Literal(1),
+  author: Type.String({ minLength: 1 }),
+  reason: Type.String({ minLength: 1 }),
+  alarms: Type.Array(AlarmRuleSchema),
 });
 export type AlarmRulesFile = Static<typeof AlarmRulesFileSchema>;

@@ -1,60 +1,53 @@
 import { type Static, Type } from "typebox";
-import {
-	ExcursionSchema,
-	OpenAlarmSchema,
-	PrioritySchema,
-	RecordedEventSchema,
-} from "./alarm.ts";
+import { ExcursionSchema, OpenAlarmSchema, PrioritySchema, RecordedEventSchema } from "./alarm.ts";
 import { AxisUnitSchema } from "./reading.ts";
 import { JudgedSchema } from "./result.ts";
 
-const orNull = <T extends Parameters<typeof Type.Union>[0][number]>(
-	schema: T,
-) => Type.Union([schema, Type.Null()]);
+const orNull = <T extends Parameters<typeof Type.Union>[0][number]>(schema: T) => Type.Union([schema, Type.Null()]);
 const numbers = Type.Array(Type.Number());
 const sparseNumbers = Type.Array(orNull(Type.Number()));
 
 /** GET /api/v1/plant: what the screens must know before they draw anything. */
 export const PlantSchema = Type.Object({
-	site: Type.String(),
-	name: Type.String(),
-	timeZone: Type.String(),
-	version: Type.String(),
-	serverTime: Type.Number(),
-	/** an invented plant: the screens say so */
-	demo: Type.Boolean(),
-	person: Type.Object({ name: Type.String(), role: Type.String() }),
-	caution: Type.String(),
-	streams: Type.Array(
-		Type.Object({
-			id: Type.String(),
-			name: Type.String(),
-			/** expected time between two readings, ms */
-			periodMs: Type.Number(),
-			properties: Type.Array(
-				Type.Object({
-					name: Type.String(),
-					unit: Type.String(),
-					/** calibrated range */
-					range: Type.Tuple([Type.Number(), Type.Number()]),
-					target: Type.Optional(Type.Tuple([Type.Number(), Type.Number()])),
-					/** fixed scale of the trend, so that a shape keeps its meaning */
-					scale: Type.Tuple([Type.Number(), Type.Number()]),
-					limits: Type.Array(
-						Type.Object({
-							side: Type.String(),
-							limit: Type.Number(),
-							priority: PrioritySchema,
-						}),
-					),
-				}),
-			),
-			model: orNull(Type.Object({ id: Type.String(), name: Type.String() })),
-			limitSet: Type.Integer(),
-			/** why the stream cannot be scored at present, and what to do */
-			trouble: Type.Optional(Type.String()),
-		}),
-	),
+  site: Type.String(),
+  name: Type.String(),
+  timeZone: Type.String(),
+  version: Type.String(),
+  serverTime: Type.Number(),
+  /** an invented plant: the screens say so */
+  demo: Type.Boolean(),
+  person: Type.Object({ name: Type.String(), role: Type.String() }),
+  caution: Type.String(),
+  streams: Type.Array(
+    Type.Object({
+      id: Type.String(),
+      name: Type.String(),
+      /** expected time between two readings, ms */
+      periodMs: Type.Number(),
+      properties: Type.Array(
+        Type.Object({
+          name: Type.String(),
+          unit: Type.String(),
+          /** calibrated range */
+          range: Type.Tuple([Type.Number(), Type.Number()]),
+          target: Type.Optional(Type.Tuple([Type.Number(), Type.Number()])),
+          /** fixed scale of the trend, so that a shape keeps its meaning */
+          scale: Type.Tuple([Type.Number(), Type.Number()]),
+          limits: Type.Array(
+            Type.Object({
+              side: Type.String(),
+              limit: Type.Number(),
+              priority: PrioritySchema,
+            }),
+          ),
+        }),
+      ),
+      model: orNull(Type.Object({ id: Type.String(), name: Type.String() })),
+      limitSet: Type.Integer(),
+      /** why the stream cannot be scored at present, and what to do */
+      trouble: Type.Optional(Type.String()),
+    }),
+  ),
 });
 export type Plant = Static<typeof PlantSchema>;
 export type PlantStream = Plant["streams"][number];
@@ -65,150 +58,148 @@ export type PlantProperty = PlantStream["properties"][number];
  * interval (`whole` is true, min = max = mean). Minimum and maximum are kept, so one odd reading is still seen in a long view.
  */
 export const TrendSchema = Type.Object({
-	stream: Type.String(),
-	from: Type.Number(),
-	to: Type.Number(),
-	whole: Type.Boolean(),
-	/** width of an interval in ms; 0 when `whole` */
-	widthMs: Type.Number(),
-	/** readings further apart than this leave a gap in the line, ms */
-	gapMs: Type.Number(),
-	/** time of the interval's middle reading, epoch ms, ascending */
-	time: numbers,
-	count: numbers,
-	/** union of the verdict masks (core/messages/verdict.ts) */
-	verdict: numbers,
-	properties: Type.Record(
-		Type.String(),
-		Type.Object({
-			mean: sparseNumbers,
-			min: sparseNumbers,
-			max: sparseNumbers,
-			uncertainty: sparseNumbers,
-		}),
-	),
-	/** largest ratio in the interval, and the mean */
-	t2: Type.Object({ max: sparseNumbers, mean: sparseNumbers }),
-	q: Type.Object({ max: sparseNumbers, mean: sparseNumbers }),
+  stream: Type.String(),
+  from: Type.Number(),
+  to: Type.Number(),
+  whole: Type.Boolean(),
+  /** width of an interval in ms; 0 when `whole` */
+  widthMs: Type.Number(),
+  /** readings further apart than this leave a gap in the line, ms */
+  gapMs: Type.Number(),
+  /** time of the interval's middle reading, epoch ms, ascending */
+  time: numbers,
+  count: numbers,
+  /** union of the verdict masks (core/messages/verdict.ts) */
+  verdict: numbers,
+  properties: Type.Record(
+    Type.String(),
+    Type.Object({
+      mean: sparseNumbers,
+      min: sparseNumbers,
+      max: sparseNumbers,
+      uncertainty: sparseNumbers,
+    }),
+  ),
+  /** largest ratio in the interval, and the mean */
+  t2: Type.Object({ max: sparseNumbers, mean: sparseNumbers }),
+  q: Type.Object({ max: sparseNumbers, mean: sparseNumbers }),
 });
 export type Trend = Static<typeof TrendSchema>;
 
 export const RegionSchema = Type.Object({
-	from: Type.Number(),
-	to: Type.Number(),
-	unit: AxisUnitSchema,
-	/** share of the statistic, 0–1 (of the sum of absolute contributions where they have signs) */
-	share: Type.Number(),
-	/** +1: more absorption than the model can explain; −1: less */
-	sign: Type.Number(),
+  from: Type.Number(),
+  to: Type.Number(),
+  unit: AxisUnitSchema,
+  /** share of the statistic, 0–1 (of the sum of absolute contributions where they have signs) */
+  share: Type.Number(),
+  /** +1: more absorption than the model can explain; −1: less */
+  sign: Type.Number(),
 });
 export type Region = Static<typeof RegionSchema>;
 
 /** GET /api/v1/streams/:id/reading?at — the last reading at or before `at`, explained. */
 export const ReadingViewSchema = Type.Object({
-	judged: JudgedSchema,
-	receivedAt: Type.Number(),
-	previous: orNull(Type.Number()),
-	next: orNull(Type.Number()),
-	limits: Type.Object({
-		t2: Type.Number(),
-		q: Type.Number(),
-		nearest: Type.Number(),
-	}),
-	model: orNull(
-		Type.Object({
-			id: Type.String(),
-			name: Type.String(),
-			components: Type.Integer(),
-		}),
-	),
-	axis: Type.Object({ unit: AxisUnitSchema, points: numbers }),
-	/** as received (on the model's axis where it could be brought there); null where the spectrum is no longer kept */
-	spectrum: orNull(sparseNumbers),
-	/** channel by channel over the calibration spectra, before the steps */
-	calibration: orNull(
-		Type.Object({ mean: numbers, low: numbers, high: numbers }),
-	),
-	/** absent when the reading could not be scored */
-	explanation: Type.Optional(
-		Type.Object({
-			/** after the model's steps: the reading, and what the model makes of it. The channels may be fewer (select). */
-			axis: numbers,
-			preprocessed: numbers,
-			reconstructed: numbers,
-			/** e = preprocessed − reconstructed */
-			residual: numbers,
-			/** adds up to T² */
-			t2: numbers,
-			/** e_j² with the sign of e_j; the absolute values add up to Q */
-			q: numbers,
-			t2Regions: Type.Array(RegionSchema),
-			qRegions: Type.Array(RegionSchema),
-			/** the sentence in words */
-			says: Type.String(),
-			scores: numbers,
-		}),
-	),
-	/** T² ratio and Q ratio of every calibration sample, and their scores, for the reading's place among them */
-	samples: Type.Optional(
-		Type.Object({
-			names: Type.Array(Type.String()),
-			scores: Type.Array(numbers),
-			t2: numbers,
-			q: numbers,
-		}),
-	),
+  judged: JudgedSchema,
+  receivedAt: Type.Number(),
+  previous: orNull(Type.Number()),
+  next: orNull(Type.Number()),
+  limits: Type.Object({
+    t2: Type.Number(),
+    q: Type.Number(),
+    nearest: Type.Number(),
+  }),
+  model: orNull(
+    Type.Object({
+      id: Type.String(),
+      name: Type.String(),
+      components: Type.Integer(),
+    }),
+  ),
+  axis: Type.Object({ unit: AxisUnitSchema, points: numbers }),
+  /** as received (on the model's axis where it could be brought there); null where the spectrum is no longer kept */
+  spectrum: orNull(sparseNumbers),
+  /** channel by channel over the calibration spectra, before the steps */
+  calibration: orNull(Type.Object({ mean: numbers, low: numbers, high: numbers })),
+  /** absent when the reading could not be scored */
+  explanation: Type.Optional(
+    Type.Object({
+      /** after the model's steps: the reading, and what the model makes of it. The channels may be fewer (select). */
+      axis: numbers,
+      preprocessed: numbers,
+      reconstructed: numbers,
+      /** e = preprocessed − reconstructed */
+      residual: numbers,
+      /** adds up to T² */
+      t2: numbers,
+      /** e_j² with the sign of e_j; the absolute values add up to Q */
+      q: numbers,
+      t2Regions: Type.Array(RegionSchema),
+      qRegions: Type.Array(RegionSchema),
+      /** the sentence in words */
+      says: Type.String(),
+      scores: numbers,
+    }),
+  ),
+  /** T² ratio and Q ratio of every calibration sample, and their scores, for the reading's place among them */
+  samples: Type.Optional(
+    Type.Object({
+      names: Type.Array(Type.String()),
+      scores: Type.Array(numbers),
+      t2: numbers,
+      q: numbers,
+    }),
+  ),
 });
 export type ReadingView = Static<typeof ReadingViewSchema>;
 
 export const RefusalSchema = Type.Object({
-	id: Type.Integer(),
-	/** null when no stream of ours is named */
-	stream: orNull(Type.String()),
-	topic: Type.String(),
-	/** first and last time it came, wall clock */
-	receivedAt: Type.Number(),
-	lastAt: Type.Number(),
-	count: Type.Integer(),
-	reason: Type.String(),
-	says: Type.String(),
+  id: Type.Integer(),
+  /** null when no stream of ours is named */
+  stream: orNull(Type.String()),
+  topic: Type.String(),
+  /** first and last time it came, wall clock */
+  receivedAt: Type.Number(),
+  lastAt: Type.Number(),
+  count: Type.Integer(),
+  reason: Type.String(),
+  says: Type.String(),
 });
 export type Refusal = Static<typeof RefusalSchema>;
 
 /** GET /api/v1/refusals?stream&limit */
 export const RefusalsSchema = Type.Object({
-	/** by stream ("" where none of ours was named) and reason, since the record began */
-	totals: Type.Array(
-		Type.Object({
-			stream: Type.String(),
-			reason: Type.String(),
-			count: Type.Integer(),
-		}),
-	),
-	latest: Type.Array(RefusalSchema),
+  /** by stream ("" where none of ours was named) and reason, since the record began */
+  totals: Type.Array(
+    Type.Object({
+      stream: Type.String(),
+      reason: Type.String(),
+      count: Type.Integer(),
+    }),
+  ),
+  latest: Type.Array(RefusalSchema),
 });
 export type Refusals = Static<typeof RefusalsSchema>;
 
 /** GET /api/v1/events?after&before&stream&limit — newest first. */
 export const EventsSchema = Type.Object({
-	events: Type.Array(RecordedEventSchema),
+  events: Type.Array(RecordedEventSchema),
 });
 /** GET /api/v1/excursions?stream&from&to&limit — newest first. */
 export const ExcursionsSchema = Type.Object({
-	excursions: Type.Array(ExcursionSchema),
+  excursions: Type.Array(ExcursionSchema),
 });
 /** GET /api/v1/alarms — what is open now. */
 export const AlarmsSchema = Type.Object({
-	alarms: Type.Array(OpenAlarmSchema),
+  alarms: Type.Array(OpenAlarmSchema),
 });
 /** POST /api/v1/streams/:id/alarms/:key/acknowledge */
 export const AcknowledgeSchema = Type.Object({
-	note: Type.Optional(Type.String({ maxLength: 2000 })),
+  note: Type.Optional(Type.String({ maxLength: 2000 })),
 });
 
 /** Every refusal over HTTP. */
 export const ProblemSchema = Type.Object({
-	code: Type.String(),
-	says: Type.String(),
+  code: Type.String(),
+  says: Type.String(),
 });
 export type Problem = Static<typeof ProblemSchema>;

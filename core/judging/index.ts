@@ -1,0 +1,16 @@
+export { acknowledge, adopt, openAlarms } from "./alarms.ts";
+export { endExcursions, openExcursions } from "./excursions.ts";
+export {
+  type Arrival,
+  type Judgement,
+  judge,
+  type RefusalReason,
+  type StreamRules,
+  tick,
+  verdictOf,
+} from "./judge.ts";
+export type { Note } from "./notes.ts";
+export { Scorer } from "./scorer.ts";
+export { freshState, type StreamState } from "./state.ts";
+export type { ValidityRules } from "./validity.ts";
+export { grouped, rangeWords, readingWords, short } from "./words.ts";

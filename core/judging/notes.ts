@@ -1,0 +1,17 @@
+import { afterGap } from "../alarms/index.ts";
+import type { Excursion, RecordedEvent } from "../messages/index.ts";
+import { endExcursions } from "./excursions.ts";
+import type { StreamRules } from "./judge.ts";
+import type { StreamState } from "./state.ts";
+
+/** An entry for the record that has no place in its order yet: the single writer gives it its cursor. */
+export type Note = Omit<RecordedEvent, "cursor">;
+
+/** Readings come again after a gap: what was under way is ended as a gap, and runs begin anew. */
+export function closeGap(state: StreamState, rules: StreamRules): [StreamState, Note[], Excursion[]] {
+  const [next, notes, excursions] = endExcursions(state, "gap", rules);
+  const detectors = Object.fromEntries(
+    Object.entries(next.detectors).map(([key, detector]) => [key, afterGap(detector)]),
+  );
+  return [{ ...next, detectors, unusable: [], same: 0 }, notes, excursions];
+}

@@ -1,0 +1,38 @@
+import type { AlarmState, DetectorState, OpenExcursion } from "../alarms/index.ts";
+import type { Judged, Verdict } from "../messages/index.ts";
+
+/**
+ * All that judging remembers of one stream: plain data, kept in the store with every commit, so that a restart goes on where the record
+ * ends. Live readings and every load of history have one each.
+ */
+export interface StreamState {
+  /** identity of the newest judged reading, and when it was received (wall clock, epoch ms) */
+  latest: Judged | null;
+  receivedAt: number | null;
+  lastInside: Judged | null;
+  /** since when the worst verdict has been what it is, process time */
+  verdict: Verdict | null;
+  verdictSince: number | null;
+  /** the newest spectrum's fingerprint and how often in a row it came */
+  fingerprint: string;
+  same: number;
+  /** of the last readings, which were unusable (1 or 0), oldest first */
+  unusable: number[];
+  detectors: Record<string, DetectorState>;
+  alarms: Record<string, AlarmState>;
+  excursions: Record<string, OpenExcursion>;
+}
+
+export const freshState: StreamState = {
+  latest: null,
+  receivedAt: null,
+  lastInside: null,
+  verdict: null,
+  verdictSince: null,
+  fingerprint: "",
+  same: 0,
+  unusable: [],
+  detectors: {},
+  alarms: {},
+  excursions: {},
+};
