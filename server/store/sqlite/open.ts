@@ -1,0 +1,99 @@
+import { existsSync, mkdirSync } from "node:fs";
+import { dirname } from "node:path";
+import Database from "better-sqlite3";
+import { MillraceError, type Mismatch, mismatchSentence } from "../../../core/errors.ts";
+
+export class StoreError extends MillraceError {
+  readonly code = "store";
+  constructor(where: string, mismatch: Mismatch) {
+    super(mismatchSentence(where, mismatch), { cause: mismatch.cause });
+  }
+}
+
+const schemaVersion = 1;
+
+/*
+ * A reading's row is small and clustered by stream and time, since every trend walks it so; its spectrum, a thousand times larger, stands
+ * apart under the reading's number and can be retired without touching the row.
+ */
+const schema = `
+CREATE TABLE stream (k INTEGER PRIMARY KEY, id TEXT NOT NULL UNIQUE, state TEXT) STRICT;
+CREATE TABLE model (k INTEGER PRIMARY KEY, id TEXT NOT NULL UNIQUE, name TEXT NOT NULL, properties TEXT NOT NULL, text TEXT NOT NULL) STRICT;
+CREATE TABLE limit_set (stream INTEGER NOT NULL REFERENCES stream, version INTEGER NOT NULL, json TEXT NOT NULL,
+  PRIMARY KEY (stream, version)) STRICT, WITHOUT ROWID;
+CREATE TABLE axis (k INTEGER PRIMARY KEY, json TEXT NOT NULL UNIQUE) STRICT;
+CREATE TABLE reading (
+  stream INTEGER NOT NULL REFERENCES stream, time INTEGER NOT NULL, sequence INTEGER NOT NULL,
+  number INTEGER NOT NULL, received INTEGER NOT NULL, late INTEGER NOT NULL, history INTEGER NOT NULL, gap_from INTEGER,
+  verdict INTEGER NOT NULL, t2 REAL, q REAL, leverage REAL, nearest REAL, t2_ratio REAL, q_ratio REAL, nearest_ratio REAL,
+  properties BLOB NOT NULL, unusable TEXT, model INTEGER REFERENCES model, limit_set INTEGER NOT NULL, quality TEXT, context TEXT,
+  PRIMARY KEY (stream, time, sequence)) STRICT, WITHOUT ROWID;
+CREATE TABLE spectrum (number INTEGER PRIMARY KEY, axis INTEGER REFERENCES axis, width INTEGER NOT NULL, data BLOB NOT NULL) STRICT;
+CREATE TABLE event (cursor INTEGER PRIMARY KEY, at INTEGER NOT NULL, stream TEXT, kind TEXT NOT NULL, json TEXT NOT NULL) STRICT;
+CREATE INDEX event_by_stream ON event (stream, cursor);
+CREATE TABLE excursion (id TEXT PRIMARY KEY, stream TEXT NOT NULL, start INTEGER NOT NULL, last INTEGER NOT NULL, json TEXT NOT NULL) STRICT;
+CREATE INDEX excursion_by_start ON excursion (start);
+CREATE TABLE refusal (id INTEGER PRIMARY KEY, digest BLOB NOT NULL UNIQUE, stream TEXT NOT NULL, topic TEXT NOT NULL,
+  received INTEGER NOT NULL, last INTEGER NOT NULL, count INTEGER NOT NULL, reason TEXT NOT NULL, says TEXT NOT NULL, payload BLOB NOT NULL) STRICT;
+CREATE TABLE refusal_total (stream TEXT NOT NULL, reason TEXT NOT NULL, count INTEGER NOT NULL, PRIMARY KEY (stream, reason)) STRICT, WITHOUT ROWID;
+`;
+
+/** Opens the record for its single writer; makes it when there is none. @throws StoreError for a damaged or newer file. */
+export function openForWriting(file: string): Database.Database {
+  mkdirSync(dirname(file), { recursive: true });
+  const database = open(file, { timeout: 5000 });
+  // FULL: a commit is on the disk when it returns, also after a power cut; the acknowledgement to the publisher rests on it.
+  database.pragma("journal_mode = WAL");
+  database.pragma("synchronous = FULL");
+  database.pragma("foreign_keys = ON");
+  // The log is folded back every 4 MB or so, so that readers never wade through a long one.
+  database.pragma("wal_autocheckpoint = 1000");
+  const version = database.pragma("user_version", { simple: true });
+  if (version === 0) {
+    database.transaction(() => {
+      database.exec(schema);
+      database.pragma(`user_version = ${schemaVersion}`);
+    })();
+  } else {
+    checkVersion(file, version);
+  }
+  return database;
+}
+
+/** Opens the record for reading beside its writer. @throws StoreError when it is not there, damaged or newer. */
+export function openForReading(file: string): Database.Database {
+  if (!existsSync(file)) {
+    throw new StoreError(file, {
+      got: "not there",
+      expected: "the record of a plant",
+      todo: "Start the service once with this data folder, or name another.",
+    });
+  }
+  const database = open(file, { readonly: true, timeout: 5000 });
+  checkVersion(file, database.pragma("user_version", { simple: true }));
+  return database;
+}
+
+function open(file: string, options: Database.Options): Database.Database {
+  try {
+    const database = new Database(file, options);
+    database.pragma("schema_version"); // the first real look at the file: a damaged header shows here
+    return database;
+  } catch (cause) {
+    throw new StoreError(file, {
+      got: `not readable as a database (${(cause as Error).message})`,
+      expected: "the record of a plant",
+      todo: "Move it aside and restore the last backup; do not delete it.",
+      cause,
+    });
+  }
+}
+
+function checkVersion(file: string, version: unknown): void {
+  if (version === schemaVersion) return;
+  throw new StoreError(file, {
+    got: `a record of form ${version}`,
+    expected: `form ${schemaVersion}`,
+    todo: "Run the version of Millrace that wrote it, or name another data folder.",
+  });
+}

@@ -1,0 +1,185 @@
+import type Database from "better-sqlite3";
+import type { LimitSet } from "../../../core/limit-set/index.ts";
+import {
+  type AxisSpec,
+  type Excursion,
+  type Judged,
+  type Prediction,
+  type RecordedEvent,
+  verdictsOfMask,
+} from "../../../core/messages/index.ts";
+import type { StoredReading, StoreReader } from "../store.ts";
+import { openForReading } from "./open.ts";
+import { spectrumValues } from "./spectrum-bytes.ts";
+import { trendQuery } from "./trend.ts";
+
+interface ReadingRow {
+  time: number;
+  sequence: number;
+  number: number;
+  received: number;
+  late: number;
+  history: number;
+  verdict: number;
+  t2: number | null;
+  q: number | null;
+  leverage: number | null;
+  nearest: number | null;
+  t2_ratio: number | null;
+  q_ratio: number | null;
+  nearest_ratio: number | null;
+  properties: Buffer;
+  unusable: string | null;
+  model: number | null;
+  limit_set: number;
+}
+
+/** The SQLite record's reader: its own connection, read only, beside the running writer. @throws StoreError */
+export function sqliteReader(file: string): StoreReader {
+  const db = openForReading(file);
+  const streams = new Map<string, number>();
+  const models = new Map<number, { id: string; properties: string[] }>();
+  const sql = {
+    stream: db.prepare<[string], number>("SELECT k FROM stream WHERE id = ?").pluck(),
+    model: db.prepare<[number], { id: string; properties: string }>("SELECT id, properties FROM model WHERE k = ?"),
+    modelText: db.prepare<[string], string>("SELECT text FROM model WHERE id = ?").pluck(),
+    before: readingQuery(db, "time <= ? ORDER BY time DESC, sequence DESC"),
+    strictlyBefore: readingQuery(db, "time < ? ORDER BY time DESC, sequence DESC"),
+    after: db
+      .prepare<[number, number], number>("SELECT time FROM reading WHERE stream = ? AND time > ? ORDER BY time LIMIT 1")
+      .pluck(),
+    spectrum: db.prepare<[number], { width: number; data: Buffer; axis: string | null }>(
+      "SELECT width, data, json AS axis FROM spectrum LEFT JOIN axis ON axis.k = spectrum.axis WHERE number = ?",
+    ),
+    limitSet: db
+      .prepare<[number, number], string>(
+        "SELECT json FROM limit_set WHERE stream = ? AND version <= ? ORDER BY version DESC LIMIT 1",
+      )
+      .pluck(),
+    totals: db.prepare<[string | null], { stream: string; reason: string; count: number }>(
+      "SELECT stream, reason, count FROM refusal_total WHERE ?1 IS NULL OR stream = ?1 ORDER BY stream, reason",
+    ),
+    refusals: db.prepare<[string | null, number], RefusalRow>(
+      "SELECT id, stream, topic, received, last, count, reason, says FROM refusal WHERE ?1 IS NULL OR stream = ?1 ORDER BY last DESC, id DESC LIMIT ?2",
+    ),
+    events: db
+      .prepare<[string | null, number, number, number], string>(
+        "SELECT json FROM event WHERE (?1 IS NULL OR stream = ?1) AND cursor > ?2 AND cursor < ?3 ORDER BY cursor DESC LIMIT ?4",
+      )
+      .pluck(),
+    excursions: db
+      .prepare<[string | null, number, number, number], string>(
+        "SELECT json FROM excursion WHERE (?1 IS NULL OR stream = ?1) AND last >= ?2 AND start < ?3 ORDER BY start DESC LIMIT ?4",
+      )
+      .pluck(),
+    extent: db.prepare<[number], { readings: number; first: number | null }>(
+      "SELECT count(*) AS readings, min(time) AS first FROM reading WHERE stream = ?",
+    ),
+  };
+  const trend = trendQuery(db, modelOf);
+
+  function streamKey(id: string): number {
+    const known = streams.get(id);
+    if (known !== undefined) return known;
+    const k = sql.stream.get(id);
+    if (k !== undefined) streams.set(id, k);
+    return k ?? -1; // a stream that was never recorded: every query about it is empty
+  }
+  function modelOf(k: number | null): { id: string; properties: string[] } | undefined {
+    if (k === null) return undefined;
+    const known = models.get(k);
+    if (known) return known;
+    const row = sql.model.get(k);
+    if (!row) return undefined;
+    const model = { id: row.id, properties: JSON.parse(row.properties) as string[] };
+    models.set(k, model);
+    return model;
+  }
+  function readingOf(stream: string, row: ReadingRow): StoredReading {
+    const spectrum = sql.spectrum.get(row.number);
+    return {
+      judged: judgedOf(stream, row, modelOf(row.model)),
+      receivedAt: row.received,
+      late: row.late === 1,
+      history: row.history === 1,
+      values: spectrum ? spectrumValues(spectrum.data, spectrum.width) : null,
+      ...(spectrum?.axis ? { axis: JSON.parse(spectrum.axis) as AxisSpec } : {}),
+    };
+  }
+
+  return {
+    readingBefore(stream, at, strictly) {
+      const query = strictly ? sql.strictlyBefore : sql.before;
+      const row = query.get(streamKey(stream), at);
+      return row && readingOf(stream, row);
+    },
+    timeAfter: (stream, at) => sql.after.get(streamKey(stream), at),
+    trend: (stream, properties, from, to, points) => trend(stream, streamKey(stream), properties, from, to, points),
+    refusals(stream, limit) {
+      return {
+        totals: sql.totals.all(stream ?? null),
+        latest: sql.refusals.all(stream ?? null, limit).map(({ received, last, ...row }) => ({
+          ...row,
+          stream: row.stream === "" ? null : row.stream,
+          receivedAt: received,
+          lastAt: last,
+        })),
+      };
+    },
+    events({ stream, after = 0, before = Number.MAX_SAFE_INTEGER, limit }) {
+      return sql.events.all(stream ?? null, after, before, limit).map((json) => JSON.parse(json) as RecordedEvent);
+    },
+    excursions({ stream, from = 0, to = Number.MAX_SAFE_INTEGER, limit }) {
+      return sql.excursions.all(stream ?? null, from, to, limit).map((json) => JSON.parse(json) as Excursion);
+    },
+    limitSet(stream, version = Number.MAX_SAFE_INTEGER) {
+      const json = sql.limitSet.get(streamKey(stream), version);
+      return json ? (JSON.parse(json) as LimitSet) : undefined;
+    },
+    modelText: (id) => sql.modelText.get(id),
+    extent: (stream) => sql.extent.get(streamKey(stream))!,
+    close: () => void db.close(),
+  };
+}
+
+interface RefusalRow {
+  id: number;
+  stream: string;
+  topic: string;
+  received: number;
+  last: number;
+  count: number;
+  reason: string;
+  says: string;
+}
+
+function readingQuery(db: Database.Database, where: string) {
+  return db.prepare<[number, number], ReadingRow>(`SELECT * FROM reading WHERE stream = ? AND ${where} LIMIT 1`);
+}
+
+function judgedOf(stream: string, row: ReadingRow, model: { id: string; properties: string[] } | undefined): Judged {
+  const numbers = spectrumValues(row.properties, 8);
+  const properties: Record<string, Prediction> = {};
+  model?.properties.forEach((name, i) => {
+    properties[name] = { value: orNull(numbers[2 * i]), uncertainty: orNull(numbers[2 * i + 1]) };
+  });
+  return {
+    stream,
+    time: row.time,
+    sequence: row.sequence,
+    properties,
+    t2: row.t2,
+    q: row.q,
+    leverage: row.leverage,
+    nearest: row.nearest,
+    ratios: { t2: row.t2_ratio, q: row.q_ratio, nearest: row.nearest_ratio },
+    verdict: verdictsOfMask(row.verdict),
+    ...(row.unusable === null ? {} : { unusable: row.unusable }),
+    model: model?.id ?? null,
+    limitSet: row.limit_set,
+  };
+}
+
+function orNull(value: number): number | null {
+  return Number.isNaN(value) ? null : value;
+}

@@ -1,0 +1,95 @@
+import type { StreamState } from "../../core/judging/index.ts";
+import type { LimitSet } from "../../core/limit-set/index.ts";
+import type {
+  AxisSpec,
+  Excursion,
+  Judged,
+  Quality,
+  RecordedEvent,
+  Refusals,
+  Trend,
+} from "../../core/messages/index.ts";
+
+/** One judged reading as it goes on record, with the spectrum as it was received. */
+export interface NewReading {
+  judged: Judged;
+  receivedAt: number;
+  late: boolean;
+  /** brought in by a load, not live */
+  history: boolean;
+  /** time of the reading before the gap that this one ends */
+  gapFrom: number | null;
+  values: Float64Array;
+  /** the axis it came with; absent: the model's */
+  axis?: AxisSpec;
+  quality?: Quality;
+  context?: Record<string, number | string>;
+}
+
+export interface NewRefusal {
+  /** null when no stream of ours is named */
+  stream: string | null;
+  topic: string;
+  receivedAt: number;
+  reason: string;
+  says: string;
+  payload: Uint8Array;
+}
+
+/** Everything that one commit makes durable, or nothing of it. */
+export interface Changes {
+  readings: NewReading[];
+  refusals: NewRefusal[];
+  events: RecordedEvent[];
+  excursions: Excursion[];
+  /** by stream: what judging remembers after these readings */
+  states: Map<string, StreamState>;
+}
+
+/** The record, as its single writer sees it. What a method is asked must be portable: no maker's own words cross this border. */
+export interface StoreWriter {
+  /** Durable when it returns: found again after a power cut. All of it or, if it throws, none. */
+  commit(changes: Changes): void;
+  /** What judging remembered at the last commit; undefined for a stream that has never been judged. */
+  state(stream: string): StreamState | undefined;
+  isRecorded(stream: string, time: number, sequence: number): boolean;
+  /** The largest cursor on record; 0 for an empty one. */
+  lastCursor(): number;
+  /** The newest version of a stream's limit set. */
+  limitSet(stream: string): LimitSet | undefined;
+  addLimitSet(set: LimitSet): void;
+  /** Keeps the text of a model under its identity; one that is known is left alone. */
+  addModel(model: { id: string; name: string; properties: string[]; text: string }): void;
+  /** How many readings of the stream are on record, and the time of the first. */
+  extent(stream: string): { readings: number; first: number | null };
+  close(): void;
+}
+
+export interface StoredReading {
+  judged: Judged;
+  receivedAt: number;
+  late: boolean;
+  history: boolean;
+  /** null when the spectrum is no longer kept */
+  values: Float64Array | null;
+  axis?: AxisSpec;
+}
+
+/** The record, as everybody else sees it: reads only, beside the running writer. */
+export interface StoreReader {
+  /** The last reading at or before `at` (before it, with `strictly`). */
+  readingBefore(stream: string, at: number, strictly?: "strictly"): StoredReading | undefined;
+  /** Time of the first reading after `at`. */
+  timeAfter(stream: string, at: number): number | undefined;
+  /** The trend of `from` ≤ time < `to` in at most about `points` intervals; each reading whole where there are no more than that. */
+  trend(stream: string, properties: readonly string[], from: number, to: number, points: number): Trend;
+  refusals(stream: string | undefined, limit: number): Refusals;
+  /** Newest first; `after`: only those with a larger cursor. */
+  events(query: { stream?: string; after?: number; before?: number; limit: number }): RecordedEvent[];
+  /** Newest first, those that touch `from`–`to`. */
+  excursions(query: { stream?: string; from?: number; to?: number; limit: number }): Excursion[];
+  limitSet(stream: string, version?: number): LimitSet | undefined;
+  modelText(id: string): string | undefined;
+  extent(stream: string): { readings: number; first: number | null };
+  close(): void;
+}
