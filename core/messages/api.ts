@@ -22,8 +22,9 @@ export const PlantSchema = Type.Object({
     Type.Object({
       id: Type.String(),
       name: Type.String(),
-      /** expected time between two readings, ms */
+      /** expected time between two live readings, ms; a live reading that comes more than `gapMs` after the one before leaves a gap */
       periodMs: Type.Number(),
+      gapMs: Type.Number(),
       properties: Type.Array(
         Type.Object({
           name: Type.String(),
@@ -64,8 +65,8 @@ export const TrendSchema = Type.Object({
   whole: Type.Boolean(),
   /** width of an interval in ms; 0 when `whole` */
   widthMs: Type.Number(),
-  /** readings further apart than this leave a gap in the line, ms */
-  gapMs: Type.Number(),
+  /** stretches without data, [last reading before, first reading after], as the engine saw them: no line is drawn across one */
+  gaps: Type.Array(Type.Tuple([Type.Number(), Type.Number()])),
   /** time of the interval's middle reading, epoch ms, ascending */
   time: numbers,
   count: numbers,
