@@ -1,0 +1,11 @@
+export { absorbanceInto } from "./absorbance.ts";
+export { analyzerAxis, channelCount, wavelengths } from "./axis.ts";
+export { type Band, bandSpectrum, unforeseenBand } from "./band.ts";
+export { calibrationCsv } from "./calibration-csv.ts";
+export { type CalibrationSample, calibrationSet, type SetKind } from "./calibration-set.ts";
+export type { Conditions, Optics } from "./conditions.ts";
+export { type Disturbance, undisturbed } from "./disturbance.ts";
+export { type Composition, type Ingredient, ingredientNames } from "./ingredients.ts";
+export { conditionsAt, defaultSeed, makePlant, measured, type Plant, spectrumAt } from "./plant.ts";
+export { hash32, keyOf, uniformAt } from "./random.ts";
+export { type PlantStreamId, type StreamPlan, streamIds, streamPlans } from "./streams.ts";
