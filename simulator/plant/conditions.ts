@@ -48,10 +48,9 @@ export function disturbed(plan: StreamPlan, conditions: Conditions, disturbance:
   const { sizes, grades } = plan;
   const free: Partial<Composition> = {};
   for (const { ingredient } of plan.free) {
-    free[ingredient] =
-      conditions.composition[ingredient] +
-      disturbance.feed * (sizes.feed[ingredient] ?? 0) +
-      disturbance.grade * (grades.shift[ingredient] ?? 0);
+    const graded = conditions.composition[ingredient] + disturbance.grade * (grades.shift[ingredient] ?? 0);
+    const away = sizes.feed[ingredient] ?? graded;
+    free[ingredient] = graded + disturbance.feed * (away - graded);
   }
   let composition = composed(plan, free);
   composition = diluted(composition, "acetone", disturbance.coSolvent * sizes.coSolvent);

@@ -37,7 +37,7 @@ export function processOf(seed: number, plan: StreamPlan): (time: number) => Con
   const offset = optical("offset");
   const tilt = optical("tilt");
   const bow = optical("bow");
-  const share = 0.5;
+  const share = 0.75;
 
   return (time) => {
     const fractions: Partial<Composition> = {};

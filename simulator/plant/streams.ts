@@ -42,7 +42,7 @@ export interface StreamPlan {
   sizes: {
     /** mass fraction of acetone */
     coSolvent: number;
-    /** change of mass fractions that leads out of the calibrated range */
+    /** mass fractions that it goes to, out of the calibrated range */
     feed: Partial<Composition>;
     /** absorbance of the film in its strongest band */
     film: number;
@@ -59,57 +59,57 @@ export const streamPlans: Record<PlantStreamId, StreamPlan> = {
     name: "Column overhead",
     pathMm: 1,
     free: [
-      { ingredient: "water", middle: 0.072, swing: 0.014, calibrated: [0.02, 0.14] },
-      { ingredient: "propanol", middle: 0.014, swing: 0.005, calibrated: [0, 0.03] },
+      { ingredient: "water", middle: 0.074, swing: 0.034, calibrated: [0.03, 0.12] },
+      { ingredient: "propanol", middle: 0.014, swing: 0.011, calibrated: [0, 0.028] },
     ],
     balance: "ethanol",
     properties: [
       { name: "ethanol", unit: "wt%", error: { absolute: 0.12, relative: 0 } },
       { name: "water", unit: "wt%", error: { absolute: 0.03, relative: 0.008 } },
     ],
-    temperature: { middleC: 38, swingK: 2, calibratedK: 6 },
-    noise: 1.2e-4,
+    temperature: { middleC: 38, swingK: 2.4, calibratedK: 4 },
+    noise: 4e-4,
     calibrationSamples: 90,
-    steps: "snv; savitzky-golay 15 2 1; center",
-    grades: { usual: "industrial", other: "fine", shift: { water: -0.024, propanol: -0.004 } },
-    sizes: { coSolvent: 0.03, feed: { water: 0.17 }, film: 0.05, heatK: 22, lamp: 0.035 },
+    steps: "savitzky-golay 15 2 1; center",
+    grades: { usual: "industrial", other: "fine", shift: { water: -0.018, propanol: -0.002 } },
+    sizes: { coSolvent: 0.025, feed: { water: 0.235 }, film: 0.01, heatK: 22, lamp: 0.016 },
   },
   "bq-305": {
     id: "bq-305",
     name: "Recycled blend",
     pathMm: 1,
     free: [
-      { ingredient: "ethanol", middle: 0.3, swing: 0.035, calibrated: [0.18, 0.42] },
-      { ingredient: "water", middle: 0.036, swing: 0.009, calibrated: [0.005, 0.075] },
+      { ingredient: "ethanol", middle: 0.3, swing: 0.07, calibrated: [0.22, 0.4] },
+      { ingredient: "water", middle: 0.036, swing: 0.019, calibrated: [0.01, 0.065] },
     ],
     balance: "ethyl acetate",
     properties: [
-      { name: "ethyl acetate", unit: "wt%", error: { absolute: 0.25, relative: 0 } },
-      { name: "ethanol", unit: "wt%", error: { absolute: 0.2, relative: 0 } },
+      { name: "ethyl acetate", unit: "wt%", error: { absolute: 0.18, relative: 0 } },
+      { name: "ethanol", unit: "wt%", error: { absolute: 0.15, relative: 0 } },
       { name: "water", unit: "wt%", error: { absolute: 0.02, relative: 0.01 } },
     ],
-    temperature: { middleC: 32, swingK: 2, calibratedK: 6 },
-    noise: 1.2e-4,
+    temperature: { middleC: 32, swingK: 2.4, calibratedK: 4 },
+    noise: 4e-4,
     calibrationSamples: 90,
     steps: "snv; savitzky-golay 15 2 1; center",
-    grades: { usual: "blend 30", other: "blend 38", shift: { ethanol: 0.07, water: 0.004 } },
-    sizes: { coSolvent: 0.045, feed: { water: 0.11, ethanol: 0.1 }, film: 0.05, heatK: 22, lamp: 0.035 },
+    grades: { usual: "blend 30", other: "blend 34", shift: { ethanol: 0.035, water: 0.003 } },
+    sizes: { coSolvent: 0.025, feed: { water: 0.095, ethanol: 0.46 }, film: 0.01, heatK: 22, lamp: 0.016 },
   },
   "bq-410": {
     id: "bq-410",
     name: "Dryer outlet",
     pathMm: 2,
     free: [
-      { ingredient: "water", middle: 0.0022, swing: 0.0008, calibrated: [0.0002, 0.006] },
-      { ingredient: "ethanol", middle: 0.03, swing: 0.007, calibrated: [0.005, 0.06] },
+      { ingredient: "water", middle: 0.0022, swing: 0.0015, calibrated: [0.0002, 0.005] },
+      { ingredient: "ethanol", middle: 0.03, swing: 0.017, calibrated: [0.008, 0.052] },
     ],
     balance: "ethyl acetate",
     properties: [{ name: "water", unit: "wt%", error: { absolute: 0.003, relative: 0.015 } }],
-    temperature: { middleC: 45, swingK: 2, calibratedK: 6 },
-    noise: 1.2e-4,
+    temperature: { middleC: 45, swingK: 2.4, calibratedK: 4 },
+    noise: 4e-4,
     calibrationSamples: 70,
     steps: "snv; savitzky-golay 15 2 1; center",
-    grades: { usual: "dry", other: "extra dry", shift: { water: -0.0009 } },
-    sizes: { coSolvent: 0.02, feed: { water: 0.01 }, film: 0.05, heatK: 22, lamp: 0.035 },
+    grades: { usual: "dry", other: "extra dry", shift: { water: -0.0006 } },
+    sizes: { coSolvent: 0.02, feed: { water: 0.0105 }, film: 0.01, heatK: 22, lamp: 0.016 },
   },
 };

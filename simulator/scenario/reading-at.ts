@@ -55,5 +55,5 @@ export function spoils(bubble: PlantEvent, stream: PlantStreamId, sequence: numb
 }
 
 function bubbleShare(seed: number, stream: PlantStreamId, sequence: number): number {
-  return 0.25 + (0.3 * hash32(seed, keyOf(`${stream}/bubble`), sequence)) / 0x1_0000_0000;
+  return 0.05 + (0.12 * hash32(seed, keyOf(`${stream}/bubble`), sequence)) / 0x1_0000_0000;
 }
