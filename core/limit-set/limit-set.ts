@@ -4,6 +4,8 @@ import { PrioritySchema } from "../messages/alarm.ts";
 /** One statistic's limit: the number in force, and where it came from. The number rules; method and confidence say how to make it again. */
 export const StatisticLimitSchema = Type.Object({
   method: Type.String({ minLength: 1 }),
+  /** which residuals a limit of Q rests on */
+  residuals: Type.Optional(Type.String()),
   confidence: Type.Optional(Type.Number({ exclusiveMinimum: 0, exclusiveMaximum: 1 })),
   limit: Type.Number({ exclusiveMinimum: 0 }),
 });

@@ -22,6 +22,8 @@ export const EngineHealthSchema = Type.Object({
   /** readings that wait to be judged, and the age of the oldest in ms */
   waiting: Type.Integer(),
   behindMs: Type.Number(),
+  /** the record cannot be written (disk full, say): in words, with what to do */
+  trouble: Type.Optional(Type.String()),
   /** bulk load of history under way: share done, 0–1 */
   loading: Type.Optional(
     Type.Object({

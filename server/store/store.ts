@@ -60,8 +60,8 @@ export interface StoreWriter {
   addLimitSet(set: LimitSet): void;
   /** Keeps the text of a model under its identity; one that is known is left alone. */
   addModel(model: { id: string; name: string; properties: string[]; text: string }): void;
-  /** How many readings of the stream are on record, and the time of the first. */
-  extent(stream: string): { readings: number; first: number | null };
+  /** Time of the stream's first reading that came in live. */
+  firstLive(stream: string): number | undefined;
   close(): void;
 }
 
@@ -90,6 +90,7 @@ export interface StoreReader {
   excursions(query: { stream?: string; from?: number; to?: number; limit: number }): Excursion[];
   limitSet(stream: string, version?: number): LimitSet | undefined;
   modelText(id: string): string | undefined;
+  /** How many readings of the stream are on record, and the time of the first. */
   extent(stream: string): { readings: number; first: number | null };
   close(): void;
 }

@@ -41,9 +41,9 @@ export function sqliteWriter(file: string): StoreWriter {
     addLimitSet: db.prepare("INSERT INTO limit_set VALUES (?, ?, ?)"),
     lastCursor: db.prepare("SELECT coalesce(max(cursor), 0) FROM event").pluck(),
     lastNumber: db.prepare("SELECT coalesce(max(number), 0) FROM spectrum").pluck(),
-    extent: db.prepare<[number], { readings: number; first: number | null }>(
-      "SELECT count(*) AS readings, min(time) AS first FROM reading WHERE stream = ?",
-    ),
+    firstLive: db
+      .prepare<[number], number>("SELECT time FROM reading WHERE stream = ? AND history = 0 ORDER BY time LIMIT 1")
+      .pluck(),
   };
   let number = sql.lastNumber.get() as number;
 
@@ -142,7 +142,7 @@ export function sqliteWriter(file: string): StoreWriter {
     },
     addLimitSet: (set) => void sql.addLimitSet.run(streamKey(set.stream), set.version, JSON.stringify(set)),
     addModel: ({ id, name, properties, text }) => void sql.addModel.run(id, name, JSON.stringify(properties), text),
-    extent: (stream) => sql.extent.get(streamKey(stream))!,
+    firstLive: (stream) => sql.firstLive.get(streamKey(stream)),
     close: () => void db.close(),
   };
 }

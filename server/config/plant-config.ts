@@ -1,0 +1,148 @@
+import { readFileSync } from "node:fs";
+import { dirname, resolve } from "node:path";
+import { type Static, Type } from "typebox";
+import { MillraceError, type Mismatch, mismatchSentence } from "../../core/errors.ts";
+import { checker, StreamIdSchema } from "../../core/messages/index.ts";
+
+const pair = Type.Tuple([Type.Number(), Type.Number()]);
+
+const StreamConfigSchema = Type.Object({
+  id: StreamIdSchema,
+  name: Type.String({ minLength: 1 }),
+  /** the model file, seen from the configuration's folder */
+  model: Type.String(),
+  /** alarms of its own, seen from the configuration's folder; taken when the stream has no limit set yet */
+  alarms: Type.Optional(Type.String()),
+  /** expected time between two readings, ms */
+  periodMs: Type.Number({ minimum: 10, maximum: 86_400_000 }),
+  /** values at or above it are saturated, unit of the spectrum */
+  ceiling: Type.Optional(Type.Number()),
+  properties: Type.Optional(
+    Type.Record(Type.String(), Type.Object({ target: Type.Optional(pair), scale: Type.Optional(pair) })),
+  ),
+});
+
+const BrokerSchema = Type.Union([
+  Type.Object({
+    embedded: Type.Object({ host: Type.String(), port: Type.Integer({ minimum: 0, maximum: 65535 }) }),
+  }),
+  Type.Object({
+    url: Type.String({ pattern: "^(mqtt|mqtts|tcp|ssl)://" }),
+    clientId: Type.Optional(Type.String({ minLength: 1 })),
+    username: Type.Optional(Type.String()),
+    /** name of the environment variable that holds the password: it never stands in the file */
+    passwordFrom: Type.Optional(Type.String()),
+  }),
+]);
+export type BrokerConfig = Static<typeof BrokerSchema>;
+
+export const PlantConfigSchema = Type.Object({
+  site: StreamIdSchema,
+  name: Type.String({ minLength: 1 }),
+  timeZone: Type.String(),
+  /** folder of the record, seen from the configuration's folder */
+  data: Type.String(),
+  http: Type.Object({ host: Type.String(), port: Type.Integer({ minimum: 0, maximum: 65535 }) }),
+  mqtt: Type.Object({ prefix: Type.String({ pattern: "^[^+#\\u0000]+$" }), broker: BrokerSchema }),
+  /** an invented plant: the screens say so, and an invented person is signed in */
+  demo: Type.Optional(Type.Boolean()),
+  streams: Type.Array(StreamConfigSchema, { minItems: 1 }),
+});
+export type PlantConfig = Static<typeof PlantConfigSchema>;
+export type StreamConfig = PlantConfig["streams"][number];
+
+export class ConfigError extends MillraceError {
+  readonly code = "config";
+  constructor(where: string, mismatch: Mismatch) {
+    super(mismatchSentence(where, mismatch), { cause: mismatch.cause });
+  }
+}
+
+const configChecker = checker(PlantConfigSchema);
+const loopback = new Set(["127.0.0.1", "::1", "localhost"]);
+
+/** Reads a plant's configuration; the paths in it come back absolute. @throws ConfigError naming the file and the field. */
+export function readPlantConfig(file: string): PlantConfig {
+  let text: string;
+  try {
+    text = readFileSync(file, "utf8");
+  } catch (cause) {
+    throw new ConfigError(file, {
+      got: `not readable (${(cause as NodeJS.ErrnoException).code})`,
+      expected: "a plant's configuration",
+      todo: "Name an existing file with --config.",
+      cause,
+    });
+  }
+  return parsePlantConfig(text, file);
+}
+
+export function parsePlantConfig(text: string, file: string): PlantConfig {
+  let value: unknown;
+  try {
+    value = JSON.parse(text);
+  } catch (cause) {
+    throw new ConfigError(file, {
+      got: `no JSON (${(cause as Error).message})`,
+      expected: "a JSON object",
+      todo: "Correct the file.",
+      cause,
+    });
+  }
+  const wrong = configChecker.mismatch(value);
+  if (wrong) throw new ConfigError(wrong.field ? `${file}: ${wrong.field}` : file, { ...wrong, todo: "Correct it." });
+  const config = value as PlantConfig;
+  checkTimeZone(config.timeZone, file);
+  checkStreams(config.streams, file);
+  checkHost(config.http.host, `${file}: http.host`);
+  if ("embedded" in config.mqtt.broker) {
+    checkHost(config.mqtt.broker.embedded.host, `${file}: mqtt.broker.embedded.host`);
+  }
+  const from = (path: string) => resolve(dirname(file), path);
+  return {
+    ...config,
+    data: from(config.data),
+    streams: config.streams.map((stream) => ({
+      ...stream,
+      model: from(stream.model),
+      ...(stream.alarms ? { alarms: from(stream.alarms) } : {}),
+    })),
+  };
+}
+
+function checkTimeZone(timeZone: string, file: string): void {
+  try {
+    new Intl.DateTimeFormat("en", { timeZone });
+  } catch (cause) {
+    throw new ConfigError(`${file}: timeZone`, {
+      got: `"${timeZone}"`,
+      expected: 'a zone of the IANA time zone data, such as "Europe/Oslo"',
+      todo: "Correct it.",
+      cause,
+    });
+  }
+}
+
+function checkStreams(streams: readonly StreamConfig[], file: string): void {
+  const seen = new Set<string>();
+  streams.forEach(({ id }, i) => {
+    if (seen.has(id)) {
+      throw new ConfigError(`${file}: streams[${i}].id`, {
+        got: `"${id}" again`,
+        expected: "an id of its own",
+        todo: "Rename one of the two.",
+      });
+    }
+    seen.add(id);
+  });
+}
+
+/** There is no sign-in yet, so nothing may be reached from another machine. */
+function checkHost(host: string, where: string): void {
+  if (loopback.has(host)) return;
+  throw new ConfigError(where, {
+    got: `"${host}"`,
+    expected: "an address of this machine only (127.0.0.1, ::1 or localhost)",
+    todo: "The service has no sign-in yet: put a proxy that signs people in before it.",
+  });
+}

@@ -1,0 +1,62 @@
+import { connect, type IClientOptions, type MqttClient } from "mqtt";
+import { resultOf } from "../../core/messages/index.ts";
+import type { Told } from "./engine.ts";
+import type { Topics } from "./topics.ts";
+
+/** Publishes what the engine has put on record: results, alarms, and the retained status, with a last will that says the engine is gone. */
+export class Outside {
+  readonly #client: MqttClient;
+  readonly #topics: Topics;
+  /** what each stream's retained status said last */
+  readonly #said = new Map<string, string>();
+
+  constructor(url: string, connection: IClientOptions, topics: Topics, log: (says: string) => void) {
+    this.#topics = topics;
+    const gone = JSON.stringify({ running: false });
+    this.#client = connect(url, {
+      ...connection,
+      clean: true,
+      reconnectPeriod: 1000,
+      // Results are of the moment: those of a broken link are not sent late.
+      queueQoSZero: false,
+      will: { topic: topics.engineStatus, payload: Buffer.from(gone), qos: 1, retain: true },
+    });
+    this.#client.on("connect", () => {
+      this.#said.clear();
+      this.#retain(topics.engineStatus, { running: true, since: new Date().toISOString() });
+    });
+    this.#client.on("error", (error) => log(`publishing to ${url}: ${error.message}`));
+  }
+
+  publish({ judged, now, events }: Told): void {
+    for (const reading of judged) {
+      this.#client.publish(this.#topics.result(reading.stream), JSON.stringify(resultOf(reading)), { qos: 0 });
+    }
+    for (const event of events) {
+      if (event.stream === null || !event.alarm) continue;
+      const { at, kind, says, by, alarm, cursor } = event;
+      const message = { time: new Date(at).toISOString(), cursor, kind, says, ...(by ? { by } : {}), alarm };
+      this.#client.publish(this.#topics.alarm(event.stream), JSON.stringify(message), { qos: 1 });
+    }
+    for (const { stream, latest, alarms } of now) {
+      const open = alarms.map(({ key, priority, state }) => ({ key, priority, state }));
+      const status = { verdict: latest?.verdict ?? [], alarms: open };
+      const text = JSON.stringify(status);
+      if (this.#said.get(stream) === text) continue;
+      this.#said.set(stream, text);
+      this.#retain(this.#topics.status(stream), { ...status, time: latest && new Date(latest.time).toISOString() });
+    }
+  }
+
+  async close(): Promise<void> {
+    if (this.#client.connected) {
+      const topic = this.#topics.engineStatus;
+      await this.#client.publishAsync(topic, JSON.stringify({ running: false }), { qos: 1, retain: true });
+    }
+    await this.#client.endAsync(true);
+  }
+
+  #retain(topic: string, message: object): void {
+    this.#client.publish(topic, JSON.stringify(message), { qos: 1, retain: true });
+  }
+}

@@ -1,0 +1,32 @@
+import type { EngineHealth, Reading } from "../../core/messages/index.ts";
+import type { PlantConfig } from "../config/plant-config.ts";
+import type { LoadOutcome, Told } from "./engine.ts";
+import type { Command, CommandOutcome } from "./turn.ts";
+
+/** What crosses between the engine's thread and the rest. Plain data only, so that the engine can stand in a process of its own one day. */
+export type ToEngine =
+  | { kind: "inbox" }
+  | { kind: "command"; id: number; command: Command }
+  | { kind: "open load"; id: number; stream: string; periodMs: number }
+  | { kind: "load"; id: number; stream: string; readings: Reading[]; share: number }
+  | { kind: "close load"; id: number; stream: string }
+  | { kind: "stop" };
+
+export type FromEngine =
+  | { kind: "ready"; told: Told }
+  | { kind: "told"; told: Told }
+  | { kind: "health"; health: EngineHealth }
+  | { kind: "drained"; n: number }
+  | { kind: "reply"; id: number; outcome: CommandOutcome | LoadOutcome | { failed: string } }
+  | { kind: "log"; says: string }
+  | { kind: "failed"; says: string }
+  | { kind: "stopped" };
+
+export interface EngineSettings {
+  config: PlantConfig;
+  recordFile: string;
+  /** with the embedded broker: its inbox; readings come from there */
+  inboxFile?: string;
+  /** where results are published, and readings come from when there is no inbox */
+  brokerUrl: string;
+}

@@ -1,0 +1,148 @@
+import { readFileSync } from "node:fs";
+import { MillraceError } from "../../core/errors.ts";
+import { freshState, Scorer, type StreamRules, type StreamState } from "../../core/judging/index.ts";
+import { defaultAlarms, type LimitSet, parseAlarmRules, type StatisticLimit } from "../../core/limit-set/index.ts";
+import { defaultStatisticChoice, statisticLimits } from "../../core/limits/index.ts";
+import { type Model, parseModel } from "../../core/model/index.ts";
+import { type CompiledModel, compileModel } from "../../core/pls/index.ts";
+import type { StreamConfig } from "../config/plant-config.ts";
+import type { StoreWriter } from "../store/store.ts";
+
+/** One stream as the engine works on it. */
+export interface EngineStream {
+  rules: StreamRules;
+  state: StreamState;
+}
+
+/** A stream that goes silent or gapped is told by its period; these factors are the engine's, not the site's. */
+const gapPeriods = 5;
+const leastGapMs = 5_000;
+const lateGracePeriods = 3;
+const futureToleranceMs = 5_000;
+const frozenAfter = 3;
+
+export function gapMsOf(periodMs: number): number {
+  return Math.max(gapPeriods * periodMs, leastGapMs);
+}
+
+/**
+ * Makes a stream ready: loads its model, takes the newest limit set on record or makes the first one, and takes up its state where the
+ * record ends. A model that cannot be used does not stop the others: the stream's readings are then kept as unusable, with that reason.
+ */
+export function readyStream(config: StreamConfig, store: StoreWriter, now: number): EngineStream {
+  let scorer: Scorer | undefined;
+  let noModel: string | undefined;
+  try {
+    const { model, text } = readModel(config.model);
+    scorer = new Scorer(compileModel(model));
+    const properties = model.properties.map(({ name }) => name);
+    store.addModel({ id: scorer.compiled.id, name: model.name, properties, text });
+  } catch (error) {
+    if (!(error instanceof MillraceError)) throw error;
+    noModel = error.message;
+  }
+  const limitSet = limitSetFor(config, scorer?.compiled, store, now);
+  return {
+    rules: rulesOf(config, limitSet, scorer, noModel),
+    state: store.state(config.id) ?? freshState,
+  };
+}
+
+function readModel(file: string): { model: Model; text: string } {
+  let text: string;
+  try {
+    text = readFileSync(file, "utf8");
+  } catch (cause) {
+    throw new ModelNotThere(file, cause as NodeJS.ErrnoException);
+  }
+  return { model: parseModel(text, file), text };
+}
+
+class ModelNotThere extends MillraceError {
+  readonly code = "model-not-there";
+  constructor(file: string, cause: NodeJS.ErrnoException) {
+    super(`${file} is not readable (${cause.code}), expected a model file. Make one with 'millrace calibrate'.`, {
+      cause,
+    });
+  }
+}
+
+/** The same stream, judged with a state of its own: a load of recorded history, whose readings have their own spacing. */
+export function rulesForHistory(rules: StreamRules, periodMs: number): StreamRules {
+  const own = rules.scorer && new Scorer(rules.scorer.compiled);
+  return { ...rules, periodMs, gapMs: gapMsOf(periodMs), lateGraceMs: lateGracePeriods * periodMs, scorer: own };
+}
+
+function rulesOf(config: StreamConfig, limitSet: LimitSet, scorer: Scorer | undefined, noModel?: string): StreamRules {
+  return {
+    stream: config.id,
+    periodMs: config.periodMs,
+    gapMs: gapMsOf(config.periodMs),
+    lateGraceMs: lateGracePeriods * config.periodMs,
+    futureToleranceMs,
+    validity: { frozenAfter, ...(config.ceiling === undefined ? {} : { ceiling: config.ceiling }) },
+    limitSet,
+    scorer,
+    ...(noModel === undefined ? {} : { noModel }),
+  };
+}
+
+/** The newest limit set; the first one, or one for another model, is made here and goes on record with its reason. */
+function limitSetFor(
+  config: StreamConfig,
+  compiled: CompiledModel | undefined,
+  store: StoreWriter,
+  now: number,
+): LimitSet {
+  const newest = store.limitSet(config.id);
+  if (newest && (!compiled || newest.model === compiled.id)) return newest;
+  const made = newest ? forAnotherModel(newest, compiled!, now) : firstLimitSet(config, compiled, now);
+  // Without a model there are no statistics to put on record yet.
+  if (compiled) store.addLimitSet(made);
+  return made;
+}
+
+function firstLimitSet(config: StreamConfig, compiled: CompiledModel | undefined, now: number): LimitSet {
+  const properties = compiled?.properties.map(({ name }) => name) ?? [];
+  const own =
+    config.alarms && compiled
+      ? parseAlarmRules(readFileSync(config.alarms, "utf8"), config.alarms, properties)
+      : undefined;
+  return {
+    format: "millrace-limit-set",
+    formatVersion: 1,
+    stream: config.id,
+    version: 1,
+    model: compiled?.id ?? "",
+    statistics: statisticsFor(compiled?.model),
+    alarms: own?.alarms ?? defaultAlarms(),
+    author: own?.author ?? "Millrace",
+    reason: own?.reason ?? "First start of this stream: default limits of its model, and alarms on trust only.",
+    time: now,
+  };
+}
+
+function forAnotherModel(newest: LimitSet, compiled: CompiledModel, now: number): LimitSet {
+  const known = new Set(compiled.properties.map(({ name }) => name));
+  const alarms = newest.alarms.filter(({ watches }) => watches.kind !== "property" || known.has(watches.property));
+  return {
+    ...newest,
+    version: newest.version + 1,
+    model: compiled.id,
+    statistics: statisticsFor(compiled.model),
+    alarms,
+    author: "Millrace",
+    reason: `Another model is in charge (${compiled.model.name}): limits of its statistics made anew; alarms kept from version ${newest.version}.`,
+    time: now,
+  };
+}
+
+function statisticsFor(model: Model | undefined): LimitSet["statistics"] {
+  const choice = defaultStatisticChoice();
+  // Without a model nothing is scored, so nothing is compared with these.
+  const limits = model ? statisticLimits(model, choice) : { t2: 1, q: 1, nearest: 1 };
+  const described = (name: "t2" | "q" | "nearest"): StatisticLimit => {
+    return { ...choice[name], limit: limits[name] };
+  };
+  return { t2: described("t2"), q: described("q"), nearest: described("nearest") };
+}

@@ -1,0 +1,315 @@
+import {
+  acknowledge,
+  type Judgement,
+  judge,
+  type Note,
+  openAlarms,
+  openExcursions,
+  type StreamRules,
+  type StreamState,
+  tick,
+} from "../../core/judging/index.ts";
+import type { Excursion, Judged, Reading, RecordedEvent, StreamNow } from "../../core/messages/index.ts";
+import type { Changes, NewReading, NewRefusal } from "../store/store.ts";
+import { decodeReading } from "./decode.ts";
+import type { Message } from "./source.ts";
+import type { EngineStream } from "./streams.ts";
+import type { Topics } from "./topics.ts";
+
+/** What a person or a program asks of the engine. */
+export type Command = { kind: "acknowledge"; stream: string; key: string; by: string; note?: string };
+export type CommandOutcome = { done: true } | { done: false; says: string };
+
+export type Input =
+  | { kind: "message"; message: Message }
+  | { kind: "tick"; now: number; listeningSince: number }
+  | { kind: "command"; id: number; now: number; command: Command }
+  | { kind: "history"; load: Load; readings: Reading[] }
+  | { kind: "history ends"; load: Load; now: number };
+
+/** Recorded history of one stream on its way in: judged with a state of its own, beside the live one. */
+export interface Load {
+  stream: string;
+  rules: StreamRules;
+  state: StreamState;
+  /** readings from here on are the live record's: they are left out, and counted */
+  until: number;
+  counts: { recorded: number; repeated: number; refused: number };
+}
+
+/** What one turn of the engine comes to: everything to commit, and everything to say once it is committed. */
+export interface Turn {
+  changes: Changes;
+  streams: Map<string, EngineStream>;
+  loads: Map<string, Load>;
+  cursor: number;
+  judged: Judged[];
+  /** streams whose picture has changed */
+  touched: Set<string>;
+  replies: { id: number; outcome: CommandOutcome }[];
+  repeats: number;
+}
+
+export interface Context {
+  topics: Topics;
+  /** is this identity on record already? (not counting this turn) */
+  isRecorded: (stream: string, time: number, sequence: number) => boolean;
+}
+
+/** All inputs of one turn through judging, in their order. Changes nothing outside: the caller commits, then takes over what is returned. */
+export function takeTurn(
+  inputs: readonly Input[],
+  before: { streams: ReadonlyMap<string, EngineStream>; cursor: number },
+  context: Context,
+): Turn {
+  const turn = new TurnBuilder(before, context);
+  for (const input of inputs) turn.take(input);
+  return turn.finish();
+}
+
+class TurnBuilder {
+  readonly #streams: Map<string, EngineStream>;
+  readonly #context: Context;
+  readonly #readings: NewReading[] = [];
+  readonly #refusals: NewRefusal[] = [];
+  readonly #events: RecordedEvent[] = [];
+  readonly #excursions: Excursion[] = [];
+  readonly #judged: Judged[] = [];
+  readonly #changed = new Set<string>();
+  readonly #loads = new Map<string, Load>();
+  readonly #replies: Turn["replies"] = [];
+  /** identities within this turn: the store does not know them yet */
+  readonly #seen = new Set<string>();
+  #cursor: number;
+  #repeats = 0;
+
+  constructor(before: { streams: ReadonlyMap<string, EngineStream>; cursor: number }, context: Context) {
+    this.#streams = new Map(before.streams);
+    this.#cursor = before.cursor;
+    this.#context = context;
+  }
+
+  take(input: Input): void {
+    switch (input.kind) {
+      case "message":
+        this.#message(input.message);
+        break;
+      case "tick":
+        this.#tick(input.now, input.listeningSince);
+        break;
+      case "command":
+        this.#command(input.id, input.now, input.command);
+        break;
+      case "history":
+        this.#history(input.load, input.readings);
+        break;
+      case "history ends":
+        this.#historyEnds(input.load);
+        break;
+      default:
+        input satisfies never;
+    }
+  }
+
+  finish(): Turn {
+    const states = new Map([...this.#changed].map((id) => [id, this.#streams.get(id)!.state]));
+    return {
+      changes: {
+        readings: this.#readings,
+        refusals: this.#refusals,
+        events: this.#events,
+        excursions: this.#excursions,
+        states,
+      },
+      streams: this.#streams,
+      loads: this.#loads,
+      cursor: this.#cursor,
+      judged: this.#judged,
+      touched: this.#changed,
+      replies: this.#replies,
+      repeats: this.#repeats,
+    };
+  }
+
+  #message({ topic, payload, receivedAt }: Message): void {
+    const named = this.#context.topics.streamOf(topic);
+    const stream = named === undefined ? undefined : this.#streams.get(named);
+    const refuse = (reason: string, says: string) => {
+      this.#refusals.push({ stream: stream ? named! : null, topic, receivedAt, reason, says, payload });
+      if (stream) this.#changed.add(named!);
+    };
+    if (!stream) {
+      const known = [...this.#streams.keys()].join(", ");
+      refuse("unknown stream", `topic ${topic.slice(0, 200)} names no stream of this plant; it has ${known}`);
+      return;
+    }
+    const decoded = decodeReading(payload);
+    if (decoded.kind === "refused") {
+      refuse(decoded.reason, decoded.says);
+      return;
+    }
+    const { reading } = decoded;
+    const [next, judgement] = judge(
+      stream.state,
+      { reading, receivedAt, known: this.#isKnown(named!, reading, stream.state) },
+      stream.rules,
+    );
+    if (judgement.kind === "repeat") {
+      this.#repeats++;
+      return;
+    }
+    if (judgement.kind === "refused") {
+      refuse(judgement.reason, judgement.says);
+      return;
+    }
+    this.#streams.set(named!, { ...stream, state: next });
+    this.#changed.add(named!);
+    this.#record(reading, receivedAt, judgement, false);
+    if (judgement.refusal) refuse(judgement.refusal.reason, judgement.refusal.says);
+    this.#judged.push(judgement.judged);
+  }
+
+  #history(load: Load, readings: readonly Reading[]): void {
+    const { rules, counts } = this.#loadNow(load);
+    let { state } = this.#loadNow(load);
+    const refuse = (reading: Reading, reason: string, says: string) => {
+      const payload = Buffer.from(`time ${reading.time}, sequence ${reading.sequence}`);
+      this.#refusals.push({ stream: load.stream, topic: "load", receivedAt: reading.time, reason, says, payload });
+    };
+    for (const reading of readings) {
+      if (reading.time >= load.until) {
+        counts.repeated++; // the live record begins here: what follows is on record, or will be
+        continue;
+      }
+      const receivedAt = reading.time;
+      const [silent, silentNotes, silentExcursions] = tick(state, receivedAt, state.receivedAt ?? receivedAt, rules);
+      this.#note(silentNotes, true);
+      this.#excursions.push(...silentExcursions);
+      const known = this.#isKnown(load.stream, reading, undefined);
+      const [next, judgement] = judge(silent, { reading, receivedAt, known }, rules);
+      state = next;
+      if (judgement.kind === "repeat") counts.repeated++;
+      else if (judgement.kind === "refused") {
+        counts.refused++;
+        refuse(reading, judgement.reason, judgement.says);
+      } else {
+        counts.recorded++;
+        this.#record(reading, receivedAt, judgement, true);
+        if (judgement.refusal) refuse(reading, judgement.refusal.reason, judgement.refusal.says);
+      }
+    }
+    this.#loads.set(load.stream, { ...load, state, counts });
+  }
+
+  /** Where the history ends nothing is left open: nobody can acknowledge, and what came after is for the live record to say. */
+  #historyEnds(load: Load): void {
+    const { state, rules } = this.#loadNow(load);
+    for (const excursion of openExcursions(state, rules)) {
+      this.#excursions.push({ ...excursion, end: state.latest?.time ?? excursion.start, ended: "gap" });
+    }
+    const at = state.latest?.time ?? load.until;
+    const open = openAlarms(state, rules);
+    this.#note(
+      open.map((alarm) => ({
+        at,
+        stream: load.stream,
+        kind: "alarm left open by history",
+        says: `${alarm.title}: the history ends here; it was ${alarm.state}.`,
+        alarm,
+      })),
+      true,
+    );
+    const { recorded, repeated, refused } = load.counts;
+    this.#note(
+      [
+        {
+          at,
+          stream: load.stream,
+          kind: "history loaded",
+          says: `${recorded} readings recorded, ${repeated} already there, ${refused} refused.`,
+        },
+      ],
+      true,
+    );
+    this.#loads.delete(load.stream);
+    this.#changed.add(load.stream);
+  }
+
+  #loadNow(load: Load): Load {
+    return this.#loads.get(load.stream) ?? { ...load, counts: { ...load.counts } };
+  }
+
+  #tick(now: number, listeningSince: number): void {
+    for (const [id, stream] of this.#streams) {
+      const [next, notes, excursions] = tick(stream.state, now, listeningSince, stream.rules);
+      if (next === stream.state) continue;
+      this.#streams.set(id, { ...stream, state: next });
+      this.#changed.add(id);
+      this.#note(notes, false);
+      this.#excursions.push(...excursions);
+    }
+  }
+
+  #command(id: number, now: number, command: Command): void {
+    const stream = this.#streams.get(command.stream);
+    if (!stream) {
+      const says = `${command.stream} is no stream of this plant; it has ${[...this.#streams.keys()].join(", ")}`;
+      this.#replies.push({ id, outcome: { done: false, says } });
+      return;
+    }
+    const { key, by, note } = command;
+    const { state, notes, rejected } = acknowledge(stream.state, key, { at: now, by, note }, stream.rules);
+    if (rejected !== undefined) {
+      this.#replies.push({ id, outcome: { done: false, says: rejected } });
+      return;
+    }
+    this.#streams.set(command.stream, { ...stream, state });
+    this.#changed.add(command.stream);
+    this.#note(notes, false);
+    this.#replies.push({ id, outcome: { done: true } });
+  }
+
+  #isKnown(stream: string, { time, sequence }: Reading, state: StreamState | undefined): boolean {
+    const identity = `${stream} ${time} ${sequence}`;
+    if (this.#seen.has(identity)) return true;
+    // Newer than all that is on record: no need to ask the store.
+    if (state && time > (state.latest?.time ?? Number.NEGATIVE_INFINITY)) return false;
+    return this.#context.isRecorded(stream, time, sequence);
+  }
+
+  #record(
+    reading: Reading,
+    receivedAt: number,
+    judgement: Extract<Judgement, { kind: "judged" }>,
+    history: boolean,
+  ): void {
+    const { judged, late, gapFrom, notes, excursions } = judgement;
+    const { values, axis, quality, context } = reading;
+    this.#seen.add(`${judged.stream} ${judged.time} ${judged.sequence}`);
+    this.#readings.push({ judged, receivedAt, late, history, gapFrom, values, axis, quality, context });
+    this.#note(notes, history);
+    this.#excursions.push(...excursions);
+  }
+
+  #note(notes: readonly Note[], history: boolean): void {
+    for (const note of notes) {
+      this.#events.push({ cursor: ++this.#cursor, ...note, ...(history ? { history: true } : {}) });
+    }
+  }
+}
+
+/** A stream's present picture, as the screens get it. */
+export function streamNow({ rules, state }: EngineStream, refused: number): StreamNow {
+  const held = state.verdict !== null && state.verdict !== "inside";
+  return {
+    stream: rules.stream,
+    latest: state.latest,
+    receivedAt: state.receivedAt,
+    lastInside: state.lastInside,
+    verdictSince: state.verdictSince,
+    alarms: openAlarms(state, rules),
+    excursions: openExcursions(state, rules),
+    refused,
+    held: held && rules.limitSet.alarms.some((rule) => rule.watches.kind === "property" && rule.untrusted === "hold"),
+  };
+}

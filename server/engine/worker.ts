@@ -1,0 +1,95 @@
+import { parentPort, workerData } from "node:worker_threads";
+import { MillraceError } from "../../core/errors.ts";
+import { beatEveryMs } from "../../core/messages/index.ts";
+import { sqliteWriter } from "../store/sqlite/writer.ts";
+import { connectionOf } from "./connection.ts";
+import { Engine } from "./engine.ts";
+import { InboxSource } from "./inbox-source.ts";
+import { MqttSource } from "./mqtt-source.ts";
+import { Outside } from "./outside.ts";
+import type { EngineSettings, FromEngine, ToEngine } from "./protocol.ts";
+import { readyStream } from "./streams.ts";
+import { topicsOf } from "./topics.ts";
+
+const port = parentPort!;
+const settings = workerData as EngineSettings;
+const say = (message: FromEngine) => port.postMessage(message);
+const log = (says: string) => say({ kind: "log", says });
+
+function run(): void {
+  const { config, recordFile, inboxFile, brokerUrl } = settings;
+  const topics = topicsOf(config.mqtt.prefix, config.site);
+  const store = sqliteWriter(recordFile);
+  const streams = new Map(config.streams.map((stream) => [stream.id, readyStream(stream, store, Date.now())]));
+  const outside = new Outside(brokerUrl, connectionOf(config, "results"), topics, log);
+  let ready = false;
+  const engine = new Engine({
+    store,
+    topics,
+    streams,
+    log,
+    tell(told) {
+      say({ kind: ready ? "told" : "ready", told });
+      ready = true;
+      outside.publish(told);
+    },
+  });
+  const source = inboxFile
+    ? new InboxSource(inboxFile, (n) => say({ kind: "drained", n }))
+    : new MqttSource({
+        url: brokerUrl,
+        connection: connectionOf(config, "readings"),
+        topic: topics.readings,
+        wake: () => engine.wake(),
+        log,
+      });
+  engine.start(source);
+  const beat = setInterval(() => say({ kind: "health", health: engine.health() }), beatEveryMs);
+  port.on("message", (message: ToEngine) => void answer(engine, message));
+
+  async function answer(engine: Engine, message: ToEngine): Promise<void> {
+    switch (message.kind) {
+      case "inbox":
+        engine.wake();
+        return;
+      case "stop":
+        clearInterval(beat);
+        await engine.stop();
+        await outside.close();
+        say({ kind: "stopped" });
+        port.close();
+        return;
+      default:
+        try {
+          say({ kind: "reply", id: message.id, outcome: await outcomeOf(engine, message) });
+        } catch (error) {
+          say({ kind: "reply", id: message.id, outcome: { failed: (error as Error).message } });
+        }
+    }
+  }
+}
+
+type Asked = Exclude<ToEngine, { kind: "inbox" | "stop" }>;
+async function outcomeOf(engine: Engine, message: Asked) {
+  switch (message.kind) {
+    case "command":
+      return engine.command(message.command);
+    case "open load":
+      engine.openLoad(message.stream, message.periodMs);
+      return { recorded: 0, repeated: 0, refused: 0 };
+    case "load":
+      return engine.load(message.stream, message.readings, message.share);
+    case "close load":
+      return engine.closeLoad(message.stream);
+    default:
+      return message satisfies never;
+  }
+}
+
+try {
+  run();
+} catch (error) {
+  // Something that a person must mend has its sentence; anything else is a fault of ours and keeps its trace.
+  say({ kind: "failed", says: error instanceof MillraceError ? error.message : String((error as Error).stack) });
+  port.close();
+}
