@@ -1,0 +1,11 @@
+export { boxLimit, boxMomentsLimit } from "./box.ts";
+export { combinedIndex, combinedLimit } from "./combined-index.ts";
+export { empiricalQuantile } from "./empirical.ts";
+export { jacksonMudholkarLimit, thetasOf } from "./jackson-mudholkar.ts";
+export { type LearntRule, learntLimit, type ReferencePeriod } from "./learnt.ts";
+export { LimitError } from "./limit-error.ts";
+export { betaQuantile, chiSquaredQuantile, fQuantile, normalQuantile, tQuantile } from "./quantiles.ts";
+export { calibrationNearest, calibrationT2, type ScoreSpace, scoreSpaceOf } from "./score-space.ts";
+export { defaultStatisticChoice, type StatisticChoice, StatisticChoiceSchema } from "./statistic-choice.ts";
+export { nearestLimit, qLimit, type StatisticLimits, statisticLimits, t2Limit } from "./statistic-limits.ts";
+export { t2LimitBeta, t2LimitChiSquared, t2LimitF } from "./t2-limits.ts";

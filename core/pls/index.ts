@@ -1,0 +1,16 @@
+export { type Calibration, type CalibrationOptions, calibrate } from "./calibrate.ts";
+export { type CalibrationPlaces, calibrationPlaces } from "./calibration-places.ts";
+export { type CompiledModel, type CompiledProperty, compileModel } from "./compile-model.ts";
+export { predictionContributions, qContributions, t2Contributions } from "./contributions.ts";
+export { type CalibrationSet, type CrossValidation, crossValidate } from "./cross-validate.ts";
+export { type ErrorStatistics, errorStatistics } from "./error-statistics.ts";
+export { type Explanation, explain } from "./explain.ts";
+export { FitError } from "./fit-error.ts";
+export { fitPls, fitUpTo, type PlsFit } from "./fit-pls.ts";
+export { type Recommendation, recommendComponents, rmsecvOf } from "./recommend-components.ts";
+export { regionsOf } from "./regions.ts";
+export { coefficientsOf, rotationsOf } from "./rotations.ts";
+export { newScore, predictByCoefficients, type Score, scoreInto } from "./score.ts";
+export { seededRandom } from "./seeded-random.ts";
+export { byGroup, contiguous, interleaved, leaveOneOut, randomly, type Segments } from "./segments.ts";
+export { uncertaintyFactor } from "./uncertainty.ts";
