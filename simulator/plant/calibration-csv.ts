@@ -9,9 +9,9 @@ export function calibrationCsv(plan: StreamPlan, samples: readonly CalibrationSa
     sample,
     new Date(time).toISOString(),
     group,
-    // A laboratory reports four decimals here; an analyzer's export writes seven digits of a float32.
+    // A laboratory reports four decimals here; nine digits give a float32 back exactly.
     ...results.map((result) => result.toFixed(4)),
-    ...Array.from(values, (value) => Number(value.toPrecision(7))),
+    ...Array.from(values, (value) => Number(value.toPrecision(9))),
   ]);
   return `${[header, ...rows].map((row) => row.join(",")).join("\n")}\n`;
 }

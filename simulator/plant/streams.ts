@@ -71,7 +71,7 @@ export const streamPlans: Record<PlantStreamId, StreamPlan> = {
     noise: 4e-4,
     calibrationSamples: 90,
     steps: "savitzky-golay 15 2 1; center",
-    grades: { usual: "industrial", other: "fine", shift: { water: -0.018, propanol: -0.002 } },
+    grades: { usual: "industrial", other: "fine", shift: { water: -0.012, propanol: -0.002 } },
     sizes: { coSolvent: 0.025, feed: { water: 0.235 }, film: 0.01, heatK: 22, lamp: 0.016 },
   },
   "bq-305": {

@@ -38,7 +38,7 @@ export interface Publisher {
   stop(): Promise<void>;
 }
 
-/** After a broken link the analyzers' own memory fills the gap this far back; older readings are lost, and said to be. */
+/** After a broken link the analyzers' own memory fills the gap this far back (wall-clock time); older readings are lost, and said to be. */
 const rememberedMs = 15 * 60_000;
 const stopGraceMs = 2000;
 
@@ -65,10 +65,10 @@ export function startPublisher(options: PublisherOptions): Publisher {
       const events = scenarioEvents(scenario, start, time - options.periodMs, time);
       tellEvents(events, time);
       for (const change of tellStates(events, time)) await sending.start(change);
-      const behind = clock.now() - time;
-      if (behind > rememberedMs * Math.max(1, options.speed)) {
-        const from = sequenceFrom(options, stream, clock.now() - rememberedMs);
-        say(`${stream}: ${from - sequence} readings from ${iso(time)} on were lost while the broker was not reached`);
+      const memoryMs = rememberedMs * Math.max(1, options.speed);
+      if (clock.now() - time > memoryMs) {
+        const from = sequenceFrom(options, stream, clock.now() - memoryMs);
+        say(`${stream}: ${from - sequence} readings from ${iso(time)} on are lost: they could not be sent in time`);
         next.set(stream, from);
         continue;
       }
