@@ -13,3 +13,12 @@ export {
 } from "./step.ts";
 export { checkStepOrder } from "./step-order.ts";
 export { savitzkyGolayWeights } from "./steps/savitzky-golay.ts";
+export {
+  parseHeader,
+  parseRow,
+  parseTable,
+  type Table,
+  TableError,
+  type TableHeader,
+  type TableRow,
+} from "./table.ts";
