@@ -1,0 +1,169 @@
+import { type ChildProcess, spawn } from "node:child_process";
+import { mkdtemp, readdir, readFile, rm } from "node:fs/promises";
+import { tmpdir } from "node:os";
+import { join } from "node:path";
+import { decodeMultiple } from "cbor-x";
+import { afterAll, beforeAll, describe, expect, test } from "vitest";
+import { makePlant, spectrumAt, streamIds, streamPlans } from "../../simulator/plant/index.ts";
+import type { SimulatedReading, Truth } from "../../simulator/scenario/index.ts";
+
+/** The command line as it is built: `npm test` builds first. */
+const main = join(import.meta.dirname, "../../dist/simulator/main.js");
+
+async function simulator(...args: string[]): Promise<{ code: number | null; out: Buffer; err: string }> {
+  const child = spawn(process.execPath, [main, ...args]);
+  const out: Buffer[] = [];
+  const err: Buffer[] = [];
+  child.stdout.on("data", (piece: Buffer) => out.push(piece));
+  child.stderr.on("data", (piece: Buffer) => err.push(piece));
+  const code = await ended(child);
+  return { code, out: Buffer.concat(out), err: Buffer.concat(err).toString() };
+}
+
+function ended(child: ChildProcess): Promise<number | null> {
+  return new Promise((resolve, reject) => {
+    child.on("close", resolve);
+    child.on("error", reject);
+  });
+}
+
+let folder: string;
+beforeAll(async () => {
+  folder = await mkdtemp(join(tmpdir(), "millrace-simulator-"));
+});
+afterAll(() => rm(folder, { recursive: true, force: true }));
+
+describe("history", () => {
+  const from = Date.UTC(2026, 10, 27);
+  const to = from + 2 * 86_400_000;
+  const periodMs = 60_000;
+  let readings: SimulatedReading[];
+  let truth: Truth;
+
+  beforeAll(async () => {
+    const file = join(folder, "truth.json");
+    const stretch = ["--from", new Date(from).toISOString(), "--to", String(to), "--period-ms", String(periodMs)];
+    const { code, out, err } = await simulator("history", ...stretch, "--truth", file);
+    expect(err).toBe("");
+    expect(code).toBe(0);
+    readings = decodeMultiple(out) as SimulatedReading[];
+    truth = JSON.parse(await readFile(file, "utf8"));
+  });
+
+  test("is a CBOR sequence of readings in order of time, sequences without a gap but where the truth says silent", () => {
+    for (let i = 1; i < readings.length; i++) expect(readings[i]!.time > readings[i - 1]!.time).toBe(true);
+    for (const stream of streamIds) {
+      const ours = readings.filter((reading) => reading.stream === stream);
+      const silent = truth.events.filter((event) => event.stream === stream && event.kind === "silent");
+      const missing = silent.reduce((sum, { start, end }) => sum + (end - start) / periodMs, 0);
+      expect(ours.length).toBe(2 * 1440 - missing);
+      expect(ours[0]!.time).toBeGreaterThanOrEqual(from);
+      expect(ours.at(-1)!.time).toBeLessThan(to);
+    }
+    expect(truth.events.some(({ kind }) => kind === "silent")).toBe(true);
+  });
+
+  test("carries spectra as float32 typed arrays, bit for bit those of the plant where nothing happens", () => {
+    const plant = makePlant(1);
+    const healthy = readings.filter(
+      ({ stream, time }) =>
+        !truth.events.some((event) => event.stream === stream && event.start <= time && time <= event.settled),
+    );
+    expect(healthy.length).toBeGreaterThan(1000);
+    for (const { stream, time, values, context } of healthy.filter((_, i) => i % 50 === 0)) {
+      expect(values).toBeInstanceOf(Float32Array);
+      expect(values).toEqual(spectrumAt(plant, stream, time));
+      expect(context.temperature).toBeCloseTo(streamPlans[stream].temperature.middleC, -1);
+    }
+  });
+
+  test("is the same again, and a later start continues it without a difference", async () => {
+    const middle = from + 86_400_000;
+    const { out } = await simulator(
+      "history",
+      "--from",
+      String(middle),
+      "--to",
+      String(to),
+      "--period-ms",
+      String(periodMs),
+    );
+    expect(decodeMultiple(out)).toEqual(readings.filter(({ time }) => time >= middle));
+  });
+
+  test("gives only the streams that were asked for", async () => {
+    const { out } = await simulator(
+      ...["history", "--from", String(from), "--to", String(from + 600_000), "--period-ms", "60000"],
+      ...["--streams", "bq-410", "bq-201"],
+    );
+    const seen = decodeMultiple(out) as SimulatedReading[];
+    expect(seen.map(({ stream }) => stream).sort()).toEqual([...Array(10).fill("bq-201"), ...Array(10).fill("bq-410")]);
+  });
+
+  test("ends quietly when its reader has had enough", async () => {
+    const child = spawn(process.execPath, [
+      main,
+      "history",
+      "--from",
+      String(from),
+      "--to",
+      String(to),
+      "--period-ms",
+      "1000",
+    ]);
+    let err = "";
+    child.stderr.on("data", (piece: Buffer) => {
+      err += piece;
+    });
+    child.stdout.once("data", () => child.stdout.destroy());
+    expect(await ended(child)).toBe(0);
+    expect(err).toBe("");
+  });
+});
+
+describe("calibration", () => {
+  test("writes the table and the held-out samples of every stream", async () => {
+    const out = join(folder, "made", "here");
+    const { code } = await simulator("calibration", "--out", out, "--seed", "4");
+    expect(code).toBe(0);
+    expect((await readdir(out)).sort()).toEqual(
+      streamIds.flatMap((stream) => [`${stream}.calibration.csv`, `${stream}.validation.csv`]).sort(),
+    );
+  });
+
+  test("says what to do when it can't write, and ends with 1", async () => {
+    const { code, err } = await simulator("calibration", "--out", "/dev/null/x");
+    expect(code).toBe(1);
+    expect(err).toMatch(/--out \/dev\/null\/x can't be written: .*Name a folder that can\./);
+  });
+});
+
+describe("bad usage ends with 2 and says what is wrong", () => {
+  test.each([
+    [["history", "--from", "yesterday", "--to", "2", "--period-ms", "1000"], /"yesterday" is no moment: give RFC 3339/],
+    [
+      ["history", "--from", "1764547200000", "--to", "1764547100000", "--period-ms", "1000"],
+      /--to is not after --from/,
+    ],
+    [["history", "--from", "1764547200000", "--to", "1764547300000", "--period-ms", "0"], /not a whole number from 3/],
+    [
+      ["history", "--from", "1764547200000", "--to", "1764547300000", "--period-ms", "9", "--streams", "x"],
+      /no stream of the plant: bq-201/,
+    ],
+    [["calibration"], /--out/],
+    [["run", "--broker", "nowhere"], /--broker is "nowhere", expected an address/],
+    [["run", "--broker", "mqtt://127.0.0.1:1", "--speed", "5"], /would make readings from the future.*Add a --start/],
+    [["run", "--broker", "mqtt://127.0.0.1:1", "--speed", "-1"], /not a number above 0/],
+    [["walk"], /unknown command/],
+  ])("%j", async (args, says) => {
+    const { code, err } = await simulator(...args);
+    expect(err).toMatch(says);
+    expect(code).toBe(2);
+  });
+
+  test("a scenario that is none ends with 1", async () => {
+    const { code, err } = await simulator("run", "--broker", "mqtt://127.0.0.1:1", "--scenario", "storm");
+    expect(err).toMatch(/storm: .*expected one of calm, demo, faults, or a file/);
+    expect(code).toBe(1);
+  });
+});
