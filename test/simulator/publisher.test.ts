@@ -1,6 +1,3 @@
-import { once } from "node:events";
-import { createServer, type Server } from "node:net";
-import { Aedes } from "aedes";
 import { decode } from "cbor-x";
 import { afterEach, describe, expect, test } from "vitest";
 import { analyzerAxis, makePlant, streamIds } from "../../simulator/plant/index.ts";
@@ -11,39 +8,8 @@ import {
   startPublisher,
 } from "../../simulator/publisher/index.ts";
 import { builtInScenarios, readingAt, type Scenario } from "../../simulator/scenario/index.ts";
-
-interface Heard {
-  topic: string;
-  payload: Buffer;
-  qos: number;
-  retain: boolean;
-}
-
-/** A real broker on a free port of the loopback. */
-async function broker(port = 0) {
-  const aedes = await Aedes.createBroker();
-  const server: Server = createServer(aedes.handle);
-  server.listen(port, "127.0.0.1");
-  await once(server, "listening");
-  const heard: Heard[] = [];
-  aedes.on("publish", (packet, client) => {
-    if (client) heard.push({ ...packet, payload: packet.payload as Buffer });
-  });
-  const { port: given } = server.address() as { port: number };
-  return {
-    heard,
-    port: given,
-    url: `mqtt://127.0.0.1:${given}`,
-    aedes,
-    readings: () => heard.filter(({ topic }) => topic.endsWith("/reading")),
-    async close() {
-      const closed = once(server, "close");
-      server.close();
-      await new Promise<void>((resolve) => aedes.close(resolve));
-      await closed;
-    },
-  };
-}
+import { type Heard, loopbackBroker } from "./support/loopback-broker.ts";
+import { until } from "./support/until.ts";
 
 const open: { close(): Promise<void> }[] = [];
 const running: Publisher[] = [];
@@ -53,7 +19,7 @@ afterEach(async () => {
 });
 
 async function opened(port?: number) {
-  const made = await broker(port);
+  const made = await loopbackBroker(port);
   open.push(made);
   return made;
 }
@@ -77,14 +43,6 @@ function publish(url: string, change: Partial<PublisherOptions> = {}): { publish
   });
   running.push(publisher);
   return { publisher, lines };
-}
-
-async function until(holds: () => boolean, what: string): Promise<void> {
-  const deadline = Date.now() + 15_000;
-  while (!holds()) {
-    if (Date.now() > deadline) throw new Error(`waited 15 s for ${what}`);
-    await new Promise((resolve) => setTimeout(resolve, 10));
-  }
 }
 
 const read = ({ topic, payload }: Heard) => {
@@ -173,7 +131,7 @@ describe("the publisher", () => {
   });
 
   test("sends on after the broker was away: what was made meanwhile comes late, but comes, in order", async () => {
-    const first = await broker();
+    const first = await loopbackBroker();
     const { lines, publisher } = publish(first.url, { inFlight: 6 });
     await until(() => first.readings().length >= 12, "twelve readings");
     await first.close();

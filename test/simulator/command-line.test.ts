@@ -1,31 +1,13 @@
-import { type ChildProcess, spawn } from "node:child_process";
-import { mkdtemp, readdir, readFile, rm } from "node:fs/promises";
+import { mkdtemp, readdir, readFile, rm, writeFile } from "node:fs/promises";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { decodeMultiple } from "cbor-x";
 import { afterAll, beforeAll, describe, expect, test } from "vitest";
 import { makePlant, spectrumAt, streamIds, streamPlans } from "../../simulator/plant/index.ts";
 import type { SimulatedReading, Truth } from "../../simulator/scenario/index.ts";
-
-/** The command line as it is built: `npm test` builds first. */
-const main = join(import.meta.dirname, "../../dist/simulator/main.js");
-
-async function simulator(...args: string[]): Promise<{ code: number | null; out: Buffer; err: string }> {
-  const child = spawn(process.execPath, [main, ...args]);
-  const out: Buffer[] = [];
-  const err: Buffer[] = [];
-  child.stdout.on("data", (piece: Buffer) => out.push(piece));
-  child.stderr.on("data", (piece: Buffer) => err.push(piece));
-  const code = await ended(child);
-  return { code, out: Buffer.concat(out), err: Buffer.concat(err).toString() };
-}
-
-function ended(child: ChildProcess): Promise<number | null> {
-  return new Promise((resolve, reject) => {
-    child.on("close", resolve);
-    child.on("error", reject);
-  });
-}
+import { loopbackBroker } from "./support/loopback-broker.ts";
+import { simulator, startSimulator } from "./support/simulator-process.ts";
+import { until } from "./support/until.ts";
 
 let folder: string;
 beforeAll(async () => {
@@ -101,23 +83,13 @@ describe("history", () => {
   });
 
   test("ends quietly when its reader has had enough", async () => {
-    const child = spawn(process.execPath, [
-      main,
-      "history",
-      "--from",
-      String(from),
-      "--to",
-      String(to),
-      "--period-ms",
-      "1000",
-    ]);
-    let err = "";
-    child.stderr.on("data", (piece: Buffer) => {
-      err += piece;
-    });
+    const { child, ended } = startSimulator(
+      ...["history", "--from", String(from), "--to", String(to), "--period-ms", "1000"],
+    );
     child.stdout.once("data", () => child.stdout.destroy());
-    expect(await ended(child)).toBe(0);
+    const { code, err } = await ended;
     expect(err).toBe("");
+    expect(code).toBe(0);
   });
 });
 
@@ -166,4 +138,37 @@ describe("bad usage ends with 2 and says what is wrong", () => {
     expect(err).toMatch(/storm: .*expected one of calm, demo, faults, or a file/);
     expect(code).toBe(1);
   });
+});
+
+describe("run", () => {
+  test.each(["SIGTERM", "SIGINT"] as const)(
+    "publishes a scenario file's events, and on %s stops cleanly with 0",
+    async (signal) => {
+      const broker = await loopbackBroker();
+      const file = join(folder, `${signal}.json`);
+      const event = { kind: "silent", stream: "bq-201", startSeconds: 0, durationSeconds: 3600 };
+      await writeFile(
+        file,
+        JSON.stringify({ format: "millrace-scenario", formatVersion: 1, name: "test", events: [event] }),
+      );
+      const { child, ended } = startSimulator(
+        ...["run", "--broker", broker.url, "--scenario", file, "--period-ms", "60"],
+        ...["--site", "elsewhere", "--prefix", "mill"],
+      );
+      try {
+        await until(() => broker.readings().length >= 20, "twenty readings");
+        child.kill(signal);
+        const { code, out, err } = await ended;
+        expect(err).toBe("");
+        expect(code).toBe(0);
+        expect(out.toString()).toMatch(/bq-201 silent begins: the analyzer sends nothing/);
+        expect(out.toString()).toMatch(new RegExp(`${signal}: stopped; \\d+ readings were acknowledged\n$`));
+        const topics = new Set(broker.readings().map(({ topic }) => topic));
+        expect(topics).toEqual(new Set(["mill/elsewhere/bq-305/reading", "mill/elsewhere/bq-410/reading"]));
+      } finally {
+        child.kill("SIGKILL");
+        await broker.close();
+      }
+    },
+  );
 });
