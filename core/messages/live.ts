@@ -49,6 +49,8 @@ export const StreamNowSchema = Type.Object({
   refused: Type.Integer(),
   /** the property alarms are held while the reading is not inside */
   held: Type.Boolean(),
+  /** why the stream cannot be scored at present, and what to do */
+  trouble: Type.Optional(Type.String()),
 });
 export type StreamNow = Static<typeof StreamNowSchema>;
 

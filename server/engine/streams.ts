@@ -34,7 +34,9 @@ export function readyStream(config: StreamConfig, store: StoreWriter, now: numbe
   let noModel: string | undefined;
   try {
     const { model, text } = readModel(config.model);
-    scorer = new Scorer(compileModel(model));
+    const compiled = compileModel(model);
+    checkJudges(compiled, config.model);
+    scorer = new Scorer(compiled);
     const properties = model.properties.map(({ name }) => name);
     store.addModel({ id: scorer.compiled.id, name: model.name, properties, text });
   } catch (error) {
@@ -56,6 +58,21 @@ function readModel(file: string): { model: Model; text: string } {
     throw new ModelNotThere(file, cause as NodeJS.ErrnoException);
   }
   return { model: parseModel(text, file), text };
+}
+
+/** A number whose trust cannot be judged is not shown: such a model may score tables, but is not put in charge of a stream. */
+function checkJudges({ judges }: CompiledModel, file: string): void {
+  const missing = [...(judges.t2 ? [] : ["scores"]), ...(judges.q ? [] : ["loadings"])];
+  if (missing.length > 0) throw new ModelCannotJudge(file, missing);
+}
+
+class ModelCannotJudge extends MillraceError {
+  readonly code = "model-cannot-judge";
+  constructor(file: string, missing: readonly string[]) {
+    super(
+      `${file}: ${missing.join(" and ")} missing, expected a model that can judge its readings by T² and Q. Import it again with them.`,
+    );
+  }
 }
 
 class ModelNotThere extends MillraceError {

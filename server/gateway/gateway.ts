@@ -1,0 +1,163 @@
+import { existsSync } from "node:fs";
+import { fileURLToPath } from "node:url";
+import fastifyStatic from "@fastify/static";
+import fastifySwagger from "@fastify/swagger";
+import Fastify, { type FastifyError, type FastifyInstance } from "fastify";
+import { MillraceError, mismatchSentence } from "../../core/errors.ts";
+import type { Plant } from "../../core/messages/index.ts";
+import type { PlantConfig } from "../config/plant-config.ts";
+import type { EngineThread } from "../engine/engine-thread.ts";
+import type { StoreReader } from "../store/store.ts";
+import { isOurs } from "./guard.ts";
+import { LiveHub } from "./live-hub.ts";
+import { RequestError } from "./problem.ts";
+import { ReadingExplainer } from "./reading-view.ts";
+import { loadRoutes } from "./routes/load.ts";
+import { recordRoutes } from "./routes/record.ts";
+import { streamRoutes } from "./routes/streams.ts";
+
+/** What the routes work with. Reads go to the store; everything that changes something goes to the engine. */
+export interface GatewayParts {
+  config: PlantConfig;
+  store: StoreReader;
+  explainer: ReadingExplainer;
+  engine: EngineThread;
+  live: LiveHub;
+  person: Plant["person"];
+  version: string;
+  propertiesOf: (stream: string) => string[];
+}
+
+export interface Gateway {
+  live: LiveHub;
+  url: string;
+  close(): Promise<void>;
+}
+
+export class GatewayError extends MillraceError {
+  readonly code = "gateway";
+}
+
+// Scripts, fonts and connections from this origin only; uPlot and Lit set styles on elements.
+const contentSecurityPolicy =
+  "default-src 'self'; style-src 'self' 'unsafe-inline'; img-src 'self' data: blob:; object-src 'none'; base-uri 'none'; frame-ancestors 'none'; form-action 'self'";
+
+/** HTTP API, WebSocket and the screens. */
+export async function startGateway(options: {
+  config: PlantConfig;
+  store: StoreReader;
+  engine: EngineThread;
+  version: string;
+}): Promise<Gateway> {
+  const { config, store, engine, version } = options;
+  const app = Fastify({ bodyLimit: 64 * 1024, forceCloseConnections: true });
+  const explainer = new ReadingExplainer(store);
+  const live = new LiveHub(app.server, {
+    version,
+    eventsAfter: (cursor, limit) => store.events({ after: cursor, limit }),
+    streams: () => config.streams.map(({ id }) => id),
+  });
+  const parts: GatewayParts = {
+    ...{ config, store, explainer, engine, live, version },
+    // Nobody signs in yet and the service is reached from this machine only: an invented person in the demo, "this machine" elsewhere.
+    person: config.demo ? { name: "R. Quill", role: "operator" } : { name: "this machine", role: "operator" },
+    propertiesOf(stream) {
+      const limitSet = store.limitSet(stream);
+      return limitSet ? explainer.model(limitSet.model).properties.map(({ name }) => name) : [];
+    },
+  };
+
+  // The response schemas describe; JSON.stringify writes. (Checking every number of a trend against "number or null" costs more than it tells.)
+  app.setSerializerCompiler(() => JSON.stringify);
+
+  await app.register(fastifySwagger, {
+    openapi: {
+      openapi: "3.1.0",
+      info: { title: "Millrace", version, description: "What the screens read. Advisory only, not a safety function." },
+    },
+  });
+  app.addHook("onRequest", async (request, reply) => {
+    if (!isOurs(request.headers)) {
+      throw new RequestError(
+        403,
+        "foreign-origin",
+        "This request comes from another page or host name; open the service by its own address.",
+      );
+    }
+    reply.header("Content-Security-Policy", contentSecurityPolicy);
+    reply.header("X-Content-Type-Options", "nosniff");
+    reply.header("Referrer-Policy", "no-referrer");
+  });
+  app.setErrorHandler((error: FastifyError, _request, reply) => answerError(error, reply));
+  await app.register(
+    async (api) => {
+      api.addHook("onSend", async (_request, reply) => void reply.header("Cache-Control", "no-store"));
+      recordRoutes(api, parts);
+      streamRoutes(api, parts);
+      loadRoutes(api, parts);
+      api.get("/openapi.json", { schema: { hide: true } }, () => app.swagger());
+      api.setNotFoundHandler((request) => {
+        throw new RequestError(
+          404,
+          "unknown-path",
+          `${request.method} ${request.url} is not part of the interface; /api/v1/openapi.json lists what is.`,
+        );
+      });
+    },
+    { prefix: "/api/v1" },
+  );
+  await serveScreens(app);
+  const url = await listen(app, config.http);
+  return {
+    live,
+    url,
+    async close() {
+      live.close();
+      await app.close();
+      store.close();
+    },
+  };
+}
+
+function answerError(error: FastifyError, reply: import("fastify").FastifyReply): void {
+  if (error instanceof RequestError) {
+    reply.code(error.status).send({ code: error.code, says: error.message });
+  } else if (error.validation) {
+    reply.code(400).send({ code: "bad-request", says: `${error.message}.` });
+  } else if (error.statusCode !== undefined && error.statusCode < 500) {
+    reply.code(error.statusCode).send({ code: error.code, says: error.message });
+  } else {
+    reply.code(500).send({ code: "fault", says: `A fault of the service: ${error.message}` });
+  }
+}
+
+/** The built client. Any other path without a dot is a view of it, known to the client alone. */
+async function serveScreens(app: FastifyInstance): Promise<void> {
+  const root = fileURLToPath(new URL("../../client", import.meta.url));
+  if (!existsSync(root)) {
+    throw new GatewayError(
+      mismatchSentence(root, { got: "not there", expected: "the built screens", todo: "Run 'npm run build' first." }),
+    );
+  }
+  await app.register(fastifyStatic, { root, cacheControl: true, maxAge: 0 });
+  app.setNotFoundHandler((request, reply) => {
+    const path = request.url.split("?", 1)[0];
+    if (request.method === "GET" && !path.slice(path.lastIndexOf("/")).includes("."))
+      return reply.sendFile("index.html");
+    throw new RequestError(404, "unknown-path", `${path} is not here.`);
+  });
+}
+
+async function listen(app: FastifyInstance, { host, port }: PlantConfig["http"]): Promise<string> {
+  try {
+    return await app.listen({ host, port });
+  } catch (error) {
+    const cause = error as NodeJS.ErrnoException;
+    const mismatch = {
+      got: cause.code === "EADDRINUSE" ? "in use already" : `not to be had (${cause.code})`,
+      expected: "a free port",
+      todo: "Stop the program that holds it, or set another port.",
+    };
+    throw new GatewayError(mismatchSentence(`HTTP port ${host}:${port}`, mismatch), { cause });
+  }
+}

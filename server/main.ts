@@ -1,0 +1,50 @@
+#!/usr/bin/env node
+import { Command, CommanderError } from "commander";
+import { MillraceError } from "../core/errors.ts";
+import { calibrateCommand } from "./commands/calibrate.ts";
+import { demoCommand } from "./commands/demo.ts";
+import { inspectCommand } from "./commands/inspect.ts";
+import { loadCommand } from "./commands/load.ts";
+import { scoreCommand } from "./commands/score.ts";
+import { serveCommand } from "./commands/serve.ts";
+import { simulateCommand } from "./commands/simulate.ts";
+import { version } from "./version.ts";
+
+const program = new Command("millrace")
+  .description(
+    "Runs PLS calibration models on inline analyzer spectra: scores, judges, alarms, records and shows them.",
+  )
+  .version(version);
+for (const command of [
+  demoCommand(),
+  serveCommand(),
+  calibrateCommand(),
+  inspectCommand(),
+  scoreCommand(),
+  loadCommand(),
+  simulateCommand(),
+]) {
+  program.addCommand(command);
+}
+// Set after the commands are added: a command made apart does not inherit it.
+for (const command of [program, ...program.commands]) command.exitOverride();
+
+// A reader that closes our pipe has had enough: no error of ours.
+process.stdout.on("error", (error: NodeJS.ErrnoException) => {
+  if (error.code === "EPIPE") process.exit(0);
+  throw error;
+});
+
+try {
+  await program.parseAsync();
+} catch (error) {
+  process.exitCode = exitCodeOf(error);
+}
+
+/** 1: something that a person must mend, said on stderr · 2: the command was called wrongly. A fault of ours keeps its trace. */
+function exitCodeOf(error: unknown): number {
+  if (error instanceof CommanderError) return error.exitCode === 0 ? 0 : 2; // commander has printed its own
+  if (!(error instanceof MillraceError)) throw error;
+  process.stderr.write(`${error.message}\n`);
+  return 1;
+}

@@ -1,0 +1,104 @@
+import { join } from "node:path";
+import { type EmbeddedBroker, startEmbeddedBroker } from "./broker/embedded-broker.ts";
+import type { PlantConfig } from "./config/plant-config.ts";
+import type { Told } from "./engine/engine.ts";
+import { type EngineError, EngineThread } from "./engine/engine-thread.ts";
+import { type Gateway, startGateway } from "./gateway/gateway.ts";
+import { lockDataFolder } from "./service-lock.ts";
+import { sqliteReader } from "./store/sqlite/reader.ts";
+import type { StoreReader } from "./store/store.ts";
+import { version } from "./version.ts";
+
+export interface Service {
+  /** where the screens are */
+  url: string;
+  brokerUrl: string;
+  engine: EngineThread;
+  store: StoreReader;
+  stop(): Promise<void>;
+}
+
+/**
+ * Starts broker (where it is embedded), engine and gateway, in that order: what a publisher sends before the engine is up waits on disk.
+ *
+ * @param options.died the engine ended by itself: nothing is judged any more
+ */
+export async function startService(
+  config: PlantConfig,
+  options: { log: (says: string) => void; died: (error: EngineError) => void },
+): Promise<Service> {
+  const unlock = lockDataFolder(config.data);
+  const closing: (() => Promise<void> | void)[] = [unlock];
+  try {
+    return await assemble(config, options, closing);
+  } catch (error) {
+    for (const close of closing.reverse()) await close();
+    throw error;
+  }
+}
+
+async function assemble(
+  config: PlantConfig,
+  { log, died }: { log: (says: string) => void; died: (error: EngineError) => void },
+  closing: (() => Promise<void> | void)[],
+): Promise<Service> {
+  const recordFile = join(config.data, "record.db");
+  const inboxFile = join(config.data, "inbox.db");
+  const { broker: brokerConfig, prefix } = config.mqtt;
+  let broker: EmbeddedBroker | undefined;
+  let engine: EngineThread | undefined;
+  let brokerUrl: string;
+  if ("embedded" in brokerConfig) {
+    const isReading = (topic: string) => topic.startsWith(`${prefix}/`) && topic.endsWith("/reading");
+    broker = await startEmbeddedBroker({
+      ...brokerConfig.embedded,
+      inboxFile,
+      isReading,
+      onReading: () => engine?.inboxFilled(),
+    });
+    closing.push(() => broker?.close());
+    brokerUrl = `mqtt://${brokerConfig.embedded.host}:${broker.port}`;
+  } else {
+    brokerUrl = brokerConfig.url;
+  }
+
+  let gateway: Gateway | undefined;
+  const early: Told[] = [];
+  const started = await new Promise<EngineThread>((resolve, reject) => {
+    const thread = new EngineThread(
+      { config, recordFile, brokerUrl, ...(broker ? { inboxFile } : {}) },
+      {
+        ready(told) {
+          early.push(told);
+          resolve(thread);
+        },
+        told: (told) => (gateway ? gateway.live.told(told) : early.push(told)),
+        health: (health) => gateway?.live.health(health),
+        drained: (n) => broker?.drainedUpTo(n),
+        log,
+        died(error) {
+          reject(error);
+          if (engine) died(error);
+        },
+      },
+    );
+  });
+  engine = started;
+  closing.push(() => started.stop());
+  engine.inboxFilled(); // what came while it was getting ready
+
+  const store = sqliteReader(recordFile);
+  gateway = await startGateway({ config, store, engine, version });
+  for (const told of early) gateway.live.told(told);
+  const opened = gateway;
+  closing.push(() => opened.close());
+  return {
+    url: gateway.url,
+    brokerUrl,
+    engine,
+    store,
+    async stop() {
+      for (const close of closing.reverse()) await close();
+    },
+  };
+}
