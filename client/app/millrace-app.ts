@@ -1,0 +1,267 @@
+import { css, html, LitElement, nothing } from "lit";
+import type { Plant } from "../../core/messages/index.ts";
+import { api } from "../data/api.ts";
+import { Feed } from "../data/feed.ts";
+import { baseStyle } from "../parts/base-style.ts";
+import { type PlantTime, plantTime } from "../words/plant-time.ts";
+import { notices } from "./notices.ts";
+import { href, parseRoute, type Route } from "./route.ts";
+import "./top-bar.ts";
+import "../parts/verdict-mark.ts";
+import "../parts/priority-mark.ts";
+import "../parts/lane-number.ts";
+import "../parts/alarm-card.ts";
+import "../parts/range-bar.ts";
+import "../charts/lane-chart.ts";
+import "../views/watch-lane.ts";
+import "../views/watch-view.ts";
+import "../views/reading-view.ts";
+import "../views/excursions-view.ts";
+import "../views/alarms-view.ts";
+import "../views/plant-view.ts";
+
+const retryMs = 2000;
+/** A window that is dragged changes many times a second; browsers refuse more than about a hundred URL changes in half a minute. */
+const urlSettleMs = 400;
+
+/** The frame of every view: who and where, what is open, is it live; and which view the URL asks for. */
+export class MillraceApp extends LitElement {
+  static override properties = {
+    plant: { state: true },
+    trouble: { state: true },
+    route: { state: true },
+  };
+  declare plant: Plant | undefined;
+  declare trouble: Error | undefined;
+  declare route: Route;
+  #feed: Feed | undefined;
+  #time: PlantTime | undefined;
+  #timer: ReturnType<typeof setInterval> | undefined;
+  #settle: ReturnType<typeof setTimeout> | undefined;
+  readonly #stop = new AbortController();
+
+  constructor() {
+    super();
+    this.route = parseRoute(location.pathname, location.search);
+  }
+
+  static override styles = [
+    baseStyle,
+    css`
+      :host {
+        min-height: 100vh;
+        display: flex;
+        flex-direction: column;
+      }
+      .skip {
+        position: absolute;
+        left: -100vw;
+      }
+      .skip:focus {
+        left: 8px;
+        top: 8px;
+        z-index: 3;
+        background: var(--lane);
+        padding: 6px 12px;
+      }
+      main {
+        flex: 1;
+        display: flex;
+        flex-direction: column;
+        padding: 0 16px 8px;
+        min-width: 0;
+      }
+      main:focus {
+        outline: none;
+      }
+      .notices {
+        position: sticky;
+        top: 0;
+        z-index: 2;
+      }
+      .trouble {
+        background: var(--ink);
+        color: var(--lane);
+        padding: 8px 16px;
+        font-size: 16px;
+        font-weight: 700;
+        border-bottom: 1px solid var(--lane);
+      }
+      .news {
+        padding: 6px 16px;
+        border-bottom: 1px solid var(--rule);
+        background: var(--tone);
+      }
+      footer {
+        padding: 8px 16px;
+        border-top: 1px solid var(--rule);
+        font-size: 13px;
+        color: var(--quiet);
+        display: flex;
+        flex-wrap: wrap;
+        gap: 4px 24px;
+        position: sticky;
+        bottom: 0;
+        background: var(--page);
+        z-index: 1;
+      }
+      footer b {
+        color: var(--ink);
+        font-weight: 700;
+      }
+      .start {
+        margin: 15vh auto;
+        max-width: 60ch;
+        padding: 0 16px;
+        display: grid;
+        gap: 8px;
+      }
+      @media (max-width: 700px) {
+        main {
+          padding: 0 8px 8px;
+        }
+        footer {
+          position: static;
+        }
+      }
+    `,
+  ];
+
+  override connectedCallback(): void {
+    super.connectedCallback();
+    const { signal } = this.#stop;
+    addEventListener(
+      "popstate",
+      () => {
+        this.route = parseRoute(location.pathname, location.search);
+      },
+      { signal },
+    );
+    this.addEventListener("go", (event) => {
+      const { route, replace } = (event as CustomEvent<{ route: Route; replace: boolean }>).detail;
+      this.#go(route, replace);
+    });
+    this.addEventListener("click", (event) => this.#followLink(event));
+    this.#timer = setInterval(() => this.requestUpdate(), 500);
+    void this.#begin();
+  }
+
+  override disconnectedCallback(): void {
+    super.disconnectedCallback();
+    this.#stop.abort();
+    clearInterval(this.#timer);
+    this.#feed?.close();
+  }
+
+  async #begin(): Promise<void> {
+    try {
+      const plant = await api.plant();
+      this.#time = plantTime(plant.timeZone);
+      const socket = new URL("/live", location.href);
+      socket.protocol = socket.protocol === "https:" ? "wss:" : "ws:";
+      this.#feed = new Feed(
+        socket.href,
+        plant.streams.map(({ id }) => id),
+      );
+      this.#feed.clockOffsetMs = plant.serverTime - Date.now();
+      this.#feed.watch(() => this.requestUpdate());
+      this.#feed.open();
+      this.plant = plant;
+      this.trouble = undefined;
+    } catch (error) {
+      this.trouble = error as Error;
+      setTimeout(() => void this.#begin(), retryMs);
+    }
+  }
+
+  override render() {
+    const { plant } = this;
+    const feed = this.#feed;
+    const time = this.#time;
+    if (!plant || !feed || !time) return this.#start();
+    const now = feed.now();
+    const told = notices({
+      now,
+      linkUp: feed.linkUp,
+      everUp: feed.everUp,
+      heardAt: feed.heardAt,
+      clockOffsetMs: feed.clockOffsetMs,
+      engine: feed.engine,
+      refused: feed.refused,
+    });
+    document.title = `${nameOf(this.route)} · ${plant.name}`;
+    return html`
+      <a class="skip" href="#main" @click=${this.#skip}>Skip to the view</a>
+      <mill-top-bar .plant=${plant} .route=${this.route} .alarms=${feed.alarms()} .now=${now} .time=${time} .linkUp=${feed.linkUp}></mill-top-bar>
+      <div class="notices" role="alert">
+        ${told.filter(({ weight }) => weight === "trouble").map(({ says }) => html`<p class="trouble">${says}</p>`)}
+      </div>
+      <div role="status">
+        ${told.filter(({ weight }) => weight === "news").map(({ says }) => html`<p class="news">${says}</p>`)}
+      </div>
+      <main id="main" tabindex="-1">${this.#view(plant, feed, time)}</main>
+      <footer>
+        ${plant.demo ? html`<span><b>Demonstration:</b> ${plant.name} is an invented plant; nothing here is measured.</span>` : nothing}
+        <span><b>Caution:</b> ${plant.caution}</span>
+      </footer>
+    `;
+  }
+
+  #start() {
+    return html`<main class="start">
+      <h1>Millrace</h1>
+      ${
+        this.trouble
+          ? html`<p role="alert">The plant could not be read. ${this.trouble.message}</p>
+            <p class="quiet">Until it answers no number is shown here. Watch the process by other means.</p>`
+          : html`<p role="status">Reading the plant …</p>`
+      }
+    </main>`;
+  }
+
+  #view(plant: Plant, feed: Feed, time: PlantTime) {
+    const { route } = this;
+    switch (route.view) {
+      case "watch":
+        return html`<mill-watch-view .plant=${plant} .feed=${feed} .time=${time} .route=${route}></mill-watch-view>`;
+      case "reading":
+        return html`<mill-reading-view .plant=${plant} .feed=${feed} .time=${time} .route=${route}></mill-reading-view>`;
+      case "excursions":
+        return html`<mill-excursions-view .plant=${plant} .feed=${feed} .time=${time} .route=${route}></mill-excursions-view>`;
+      case "alarms":
+        return html`<mill-alarms-view .plant=${plant} .feed=${feed} .time=${time}></mill-alarms-view>`;
+      case "plant":
+        return html`<mill-plant-view .plant=${plant} .feed=${feed} .time=${time}></mill-plant-view>`;
+    }
+  }
+
+  #go(route: Route, replace: boolean): void {
+    const before = this.route.view;
+    this.route = route;
+    clearTimeout(this.#settle);
+    if (replace) this.#settle = setTimeout(() => history.replaceState(null, "", href(route)), urlSettleMs);
+    else history.pushState(null, "", href(route));
+    if (before !== route.view) scrollTo(0, 0);
+  }
+
+  /** Links within the product change the view without loading the page again. */
+  #followLink(event: MouseEvent): void {
+    if (event.defaultPrevented || event.button !== 0 || event.ctrlKey || event.metaKey || event.shiftKey) return;
+    const link = event.composedPath().find((each) => each instanceof HTMLAnchorElement);
+    if (!link || link.origin !== location.origin || link.target || link.getAttribute("href")?.startsWith("#")) return;
+    event.preventDefault();
+    this.#go(parseRoute(link.pathname, link.search), false);
+  }
+
+  #skip(event: Event): void {
+    event.preventDefault();
+    (this.renderRoot.querySelector("#main") as HTMLElement).focus();
+  }
+}
+
+function nameOf(route: Route): string {
+  const view = route.view[0].toUpperCase() + route.view.slice(1);
+  return "stream" in route && route.stream ? `${view} ${route.stream}` : view;
+}
+
+customElements.define("mill-app", MillraceApp);

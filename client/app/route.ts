@@ -1,0 +1,69 @@
+import type { TimeWindow } from "../data/time-window.ts";
+import { longestMs, shortestMs } from "../data/time-window.ts";
+
+/** Where a person is: the whole of it stands in the URL, so that it can be sent to someone else. */
+export type Route =
+  | { view: "watch"; window: TimeWindow; stream?: string }
+  | { view: "reading"; stream?: string; at?: number }
+  | { view: "excursions"; stream?: string }
+  | { view: "alarms" }
+  | { view: "plant" };
+export type ViewName = Route["view"];
+
+export const defaultWindow: TimeWindow = { kind: "live", spanMs: 3_600_000 };
+
+function timeOf(text: string | null): number | undefined {
+  if (text === null) return undefined;
+  const at = /^\d+$/.test(text) ? Number(text) : Date.parse(text);
+  return Number.isFinite(at) ? at : undefined;
+}
+
+function windowOf(query: URLSearchParams): TimeWindow {
+  const from = timeOf(query.get("from"));
+  const to = timeOf(query.get("to"));
+  if (from !== undefined && to !== undefined && to - from >= shortestMs && to - from <= longestMs) {
+    return { kind: "stopped", from, to };
+  }
+  const seconds = Number(query.get("last"));
+  if (seconds * 1000 >= shortestMs && seconds * 1000 <= longestMs) return { kind: "live", spanMs: seconds * 1000 };
+  return defaultWindow;
+}
+
+/** Reads a URL's path and query; what it cannot make sense of it leaves out, and an unknown path is Watch. */
+export function parseRoute(path: string, search: string): Route {
+  const query = new URLSearchParams(search);
+  const [view, segment] = path.split("/").filter(Boolean);
+  const stream = segment ? decodeURIComponent(segment) : undefined;
+  switch (view) {
+    case "reading":
+      return { view, stream, at: timeOf(query.get("at")) };
+    case "excursions":
+      return { view, stream };
+    case "alarms":
+    case "plant":
+      return { view };
+    default:
+      return { view: "watch", window: windowOf(query), stream: view === "watch" ? stream : undefined };
+  }
+}
+
+const iso = (at: number) => new Date(Math.round(at)).toISOString();
+
+/** The URL of a route; `parseRoute` gives the route back. */
+export function href(route: Route): string {
+  const stream = "stream" in route && route.stream ? `/${encodeURIComponent(route.stream)}` : "";
+  switch (route.view) {
+    case "watch": {
+      const { window } = route;
+      const query =
+        window.kind === "live"
+          ? `last=${Math.round(window.spanMs / 1000)}`
+          : `from=${iso(window.from)}&to=${iso(window.to)}`;
+      return `/watch${stream}?${query}`;
+    }
+    case "reading":
+      return `/reading${stream}${route.at === undefined ? "" : `?at=${iso(route.at)}`}`;
+    default:
+      return `/${route.view}${stream}`;
+  }
+}

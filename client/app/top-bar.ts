@@ -1,0 +1,208 @@
+import { css, html, LitElement, nothing } from "lit";
+import type { OpenAlarm, Plant } from "../../core/messages/index.ts";
+import { calling, countOf } from "../data/alarm-order.ts";
+import { baseStyle } from "../parts/base-style.ts";
+import type { PlantTime } from "../words/plant-time.ts";
+import { defaultWindow, href, type Route, type ViewName } from "./route.ts";
+import { chooseTheme, chosenTheme, themes } from "./theme-choice.ts";
+
+const views: { view: ViewName; name: string }[] = [
+  { view: "watch", name: "Watch" },
+  { view: "reading", name: "Reading" },
+  { view: "excursions", name: "Excursions" },
+  { view: "alarms", name: "Alarms" },
+  { view: "plant", name: "Plant" },
+];
+
+/** Site, views, open alarms by priority, link, the plant's clock and zone, who is signed in, light or dark. */
+export class TopBar extends LitElement {
+  static override properties = {
+    plant: { attribute: false },
+    route: { attribute: false },
+    alarms: { attribute: false },
+    now: { attribute: false },
+    time: { attribute: false },
+    linkUp: { attribute: false },
+  };
+  declare plant: Plant;
+  declare route: Route;
+  declare alarms: OpenAlarm[];
+  declare now: number;
+  declare time: PlantTime;
+  declare linkUp: boolean;
+  static override styles = [
+    baseStyle,
+    css`
+      header {
+        display: flex;
+        flex-wrap: wrap;
+        align-items: center;
+        gap: 0 20px;
+        padding: 0 16px;
+        min-height: 48px;
+        background: var(--lane);
+        border-bottom: 1px solid var(--rule);
+      }
+      .site {
+        font-size: 16px;
+        font-weight: 700;
+        display: flex;
+        align-items: center;
+        gap: 8px;
+      }
+      .site small {
+        font-size: 13px;
+        font-weight: 400;
+        color: var(--quiet);
+        border: 1px solid var(--edge);
+        border-radius: 4px;
+        padding: 0 6px;
+      }
+      nav ul {
+        display: flex;
+        flex-wrap: wrap;
+        gap: 2px;
+      }
+      nav a {
+        display: block;
+        padding: 12px 10px 9px;
+        border-bottom: 3px solid transparent;
+        color: var(--quiet);
+        text-decoration: none;
+      }
+      nav a:hover {
+        color: var(--ink);
+        border-color: var(--edge);
+      }
+      nav a[aria-current] {
+        color: var(--ink);
+        border-color: var(--ink);
+      }
+      nav a:focus-visible {
+        outline-offset: -3px;
+      }
+      .right {
+        margin-left: auto;
+        display: flex;
+        flex-wrap: wrap;
+        align-items: center;
+        gap: 4px 20px;
+      }
+      .counts {
+        display: flex;
+        gap: 14px;
+        color: inherit;
+        text-decoration: none;
+        min-height: 28px;
+        align-items: center;
+        padding: 0 4px;
+      }
+      .counts span {
+        display: flex;
+        align-items: center;
+        gap: 5px;
+      }
+      .counts .none {
+        color: var(--quiet);
+      }
+      .link {
+        display: flex;
+        align-items: center;
+        gap: 6px;
+        color: var(--quiet);
+      }
+      .link.lost {
+        color: var(--ink);
+        font-weight: 700;
+      }
+      .clock b {
+        font-weight: 400;
+        font-size: 16px;
+      }
+      select {
+        font: inherit;
+        color: var(--ink);
+        background: var(--lane);
+        border: 1px solid var(--edge);
+        border-radius: 4px;
+        min-height: 28px;
+      }
+      @media (max-width: 700px) {
+        header {
+          padding: 4px 8px;
+          gap: 0 12px;
+        }
+        nav {
+          order: 3;
+          width: 100%;
+        }
+        nav a {
+          padding: 9px 8px 6px;
+        }
+        .right {
+          gap: 2px 12px;
+          margin-left: 0;
+        }
+      }
+    `,
+  ];
+
+  override render() {
+    const { plant, now, time, linkUp } = this;
+    const { name, role } = plant.person;
+    return html`<header>
+      <div class="site">${plant.name} ${plant.demo ? html`<small>invented plant</small>` : nothing}</div>
+      <nav aria-label="Views">
+        <ul>
+          ${views.map(
+            ({ view, name: word }) =>
+              html`<li><a href=${this.#hrefOf(view)} aria-current=${this.route.view === view ? "page" : nothing}>${word}</a></li>`,
+          )}
+        </ul>
+      </nav>
+      <div class="right">
+        ${this.#counts()}
+        <span class="link ${linkUp ? "" : "lost"}">${linkUp ? "link up" : "link lost"}</span>
+        <span class="clock" title=${time.full(now)}
+          ><b>${time.clock(now)}</b> <span class="quiet">${time.zoneName(now)}</span></span
+        >
+        <span>${name}${role ? html`<span class="quiet">, ${role}</span>` : nothing}</span>
+        <label
+          ><span class="unseen">Light or dark</span>
+          <select @change=${this.#theme}>
+            ${themes.map((theme) => html`<option value=${theme} ?selected=${theme === chosenTheme()}>${theme}</option>`)}
+          </select>
+        </label>
+      </div>
+    </header>`;
+  }
+
+  #hrefOf(view: ViewName): string {
+    if (view === "watch")
+      return href({ view, window: this.route.view === "watch" ? this.route.window : defaultWindow });
+    return href({ view } as Route);
+  }
+
+  #counts() {
+    const counts = calling.map((priority) => ({ priority, ...countOf(this.alarms, priority) }));
+    const spoken = counts
+      .map(({ priority, open, waiting }) => `${open} ${priority}, ${waiting} not acknowledged`)
+      .join("; ");
+    return html`<a class="counts" href="/alarms" aria-label="Open alarms: ${spoken}" title="Open alarms: ${spoken}">
+      ${counts.map(
+        ({ priority, open, waiting }) =>
+          html`<span class=${open ? "" : "none"}
+            ><mill-priority-mark .priority=${priority} ?filled=${waiting > 0} ?calm=${open === 0}></mill-priority-mark
+            >${open}</span
+          >`,
+      )}
+    </a>`;
+  }
+
+  #theme(event: Event): void {
+    const { value } = event.target as HTMLSelectElement;
+    const theme = themes.find((each) => each === value);
+    if (theme) chooseTheme(theme);
+  }
+}
+customElements.define("mill-top-bar", TopBar);

@@ -1,0 +1,428 @@
+import type { PlantProperty } from "../../core/messages/index.ts";
+import { type Verdict, verdictsOfMask, worstOfMask } from "../../core/messages/index.ts";
+import { firstAtOrAfter, type HeldTrend } from "../data/trend-columns.ts";
+import { gapsOf, type Run, trendRuns } from "../data/trend-runs.ts";
+import { decimalsOfStep, fixed } from "../words/quantity.ts";
+import { hatch, scaledFont } from "./canvas-text.ts";
+import type { Colours } from "./colours.ts";
+import type { LaneLayout } from "./lane-layout.ts";
+import { ratioPlace } from "./ratio-scale.ts";
+import { spreadLabels, valueStep } from "./value-ticks.ts";
+
+/** What a lane's chart is drawn from. */
+export interface LanePicture {
+  trend: HeldTrend | undefined;
+  property: PlantProperty;
+  periodMs: number;
+  /** readings further apart leave a gap, ms */
+  gapMs: number;
+  from: number;
+  to: number;
+  live: boolean;
+  /** stretches during which something stayed beyond its limit, for the marks on top */
+  marks: readonly { kind: string; from: number; to: number }[];
+}
+
+/** The canvas and the two mappings, in canvas pixels. */
+export interface Pen {
+  ctx: CanvasRenderingContext2D;
+  /** canvas pixels to a CSS pixel */
+  ratio: number;
+  left: number;
+  top: number;
+  width: number;
+  x: (at: number) => number;
+  y: (value: number) => number;
+  layout: LaneLayout;
+  colours: Colours;
+}
+
+const ofVerdict = (colours: Colours, verdict: Verdict) =>
+  ({
+    inside: colours.ink,
+    sparse: colours.sparse,
+    extrapolated: colours.far,
+    unfamiliar: colours.odd,
+    unusable: colours.quiet,
+  })[verdict];
+
+/** Everything that lies under the line: target band, limits, hatched gaps. */
+export function drawGround(pen: Pen, picture: LanePicture): void {
+  const { ctx, colours, layout, left, width, ratio } = pen;
+  const { target, limits, scale } = picture.property;
+  const top = pen.top + layout.trendTop * ratio;
+  const bottom = pen.top + layout.trendBottom * ratio;
+  if (target) {
+    const [low, high] = target.map((value) => Math.min(bottom, Math.max(top, pen.y(value))));
+    ctx.fillStyle = colours.tone;
+    ctx.fillRect(left, high, width, low - high);
+  }
+  ctx.strokeStyle = colours.quiet;
+  ctx.lineWidth = ratio;
+  for (const { limit } of limits) {
+    if (limit < scale[0] || limit > scale[1]) continue;
+    const y = Math.round(pen.y(limit)) + 0.5;
+    ctx.beginPath();
+    ctx.moveTo(left, y);
+    ctx.lineTo(left + width, y);
+    ctx.stroke();
+  }
+  if (picture.trend) drawGaps(pen, picture, picture.trend, top);
+}
+
+function drawGaps(pen: Pen, picture: LanePicture, trend: HeldTrend, top: number): void {
+  const { ctx, colours, layout, ratio } = pen;
+  for (const gap of gapsOf(trend, picture, picture.gapMs)) {
+    const x = pen.x(gap.from);
+    const gapWidth = Math.max(ratio, pen.x(gap.to) - x);
+    ctx.fillStyle = hatch(ctx, colours.edge, ratio);
+    ctx.fillRect(x, top, gapWidth, layout.trendBottom * ratio + pen.top - top);
+    ctx.fillRect(x, pen.top + layout.t2Top * ratio, gapWidth, (layout.qTop + layout.strip - layout.t2Top) * ratio);
+    const words = "no readings";
+    ctx.font = scaledFont(ratio);
+    const wide = ctx.measureText(words).width + 12 * ratio;
+    if (gapWidth < wide + 8 * ratio) continue;
+    const middle = x + gapWidth / 2;
+    const y = pen.top + ((layout.trendTop + layout.trendBottom) / 2) * ratio;
+    ctx.fillStyle = colours.lane;
+    ctx.fillRect(middle - wide / 2, y - 10 * ratio, wide, 20 * ratio);
+    ctx.fillStyle = colours.ink;
+    ctx.textAlign = "center";
+    ctx.textBaseline = "middle";
+    ctx.fillText(words, middle, y);
+  }
+}
+
+/** The bands, the line in its manners, the ribbon, and the words at the right edge. */
+export function drawLane(pen: Pen, picture: LanePicture): void {
+  const { ctx, layout, left, width, ratio } = pen;
+  const { trend } = picture;
+  if (trend) {
+    ctx.save();
+    ctx.beginPath();
+    ctx.rect(left, pen.top, width, layout.height * ratio);
+    ctx.clip();
+    const first = Math.max(0, firstAtOrAfter(trend.time, picture.from) - 1);
+    const last = Math.min(trend.time.length - 1, firstAtOrAfter(trend.time, picture.to));
+    const runs = trendRuns(trend, picture.property.name).filter((run) => run.last >= first && run.first <= last);
+    for (const run of runs) drawBands(pen, picture, trend, run);
+    for (const run of runs) drawRun(pen, picture, trend, run);
+    drawRibbon(pen, picture, trend, first, last);
+    drawMarks(pen, picture);
+    ctx.restore();
+  }
+  drawRibbonScale(pen);
+  drawEdge(pen, picture);
+  drawLimitLabels(pen, picture.property);
+}
+
+/** A value as it is drawn: what lies outside the fixed scale stands at its edge. */
+const clamped = (value: number, [low, high]: readonly [number, number]) => Math.min(high, Math.max(low, value));
+
+function drawBands(pen: Pen, picture: LanePicture, trend: HeldTrend, run: Run): void {
+  const { ctx, colours } = pen;
+  const { mean, min, max, uncertainty } = trend.properties[picture.property.name];
+  const { scale } = picture.property;
+  const fill = (low: (index: number) => number | null, high: (index: number) => number | null, colour: string) => {
+    ctx.beginPath();
+    let begun = false;
+    for (let index = run.first; index <= run.last; index++) {
+      const value = high(index);
+      if (value === null) return;
+      const x = pen.x(trend.time[index]);
+      const y = pen.y(clamped(value, scale));
+      if (begun) ctx.lineTo(x, y);
+      else ctx.moveTo(x, y);
+      begun = true;
+    }
+    for (let index = run.last; index >= run.first; index--) {
+      const value = low(index);
+      if (value === null) return;
+      ctx.lineTo(pen.x(trend.time[index]), pen.y(clamped(value, scale)));
+    }
+    ctx.closePath();
+    ctx.fillStyle = colour;
+    ctx.fill();
+  };
+  if (!trend.whole) {
+    ctx.globalAlpha = 0.55;
+    fill(
+      (index) => min[index],
+      (index) => max[index],
+      run.verdict === "inside" ? colours.edge : ofVerdict(colours, run.verdict),
+    );
+  } else if (run.verdict === "inside") {
+    ctx.globalAlpha = 0.16;
+    const around = (index: number, side: 1 | -1) => {
+      const value = mean[index];
+      const half = uncertainty[index];
+      return value === null || half === null ? null : value + side * half;
+    };
+    fill(
+      (index) => around(index, -1),
+      (index) => around(index, 1),
+      colours.ink,
+    );
+  }
+  ctx.globalAlpha = 1;
+}
+
+function drawRun(pen: Pen, picture: LanePicture, trend: HeldTrend, run: Run): void {
+  const { ctx, colours, ratio } = pen;
+  const { mean } = trend.properties[picture.property.name];
+  const { scale } = picture.property;
+  const start = run.joins ? run.first - 1 : run.first;
+  const point = (index: number): [number, number] => [
+    pen.x(trend.time[index]),
+    pen.y(clamped(mean[index] as number, scale)),
+  ];
+  const inside = run.verdict === "inside";
+  const colour = ofVerdict(colours, run.verdict);
+  ctx.strokeStyle = colour;
+  ctx.lineWidth = (inside ? 1.8 : 1.2) * ratio;
+  ctx.lineJoin = "round";
+  ctx.setLineDash(inside ? [] : [4 * ratio, 3 * ratio]);
+  ctx.beginPath();
+  for (let index = start; index <= run.last; index++) {
+    const [x, y] = point(index);
+    if (index === start) ctx.moveTo(x, y);
+    else ctx.lineTo(x, y);
+  }
+  // A lone reading between two gaps is still a reading: a stroke of its own width.
+  if (inside && start === run.last) {
+    const [x, y] = point(start);
+    ctx.lineTo(x + ratio, y);
+  }
+  ctx.stroke();
+  ctx.setLineDash([]);
+  if (!inside) drawHollow(pen, trend, run, point, colour);
+  drawBeyondScale(pen, picture, trend, run, colour);
+}
+
+function drawHollow(
+  pen: Pen,
+  trend: HeldTrend,
+  run: Run,
+  point: (index: number) => [number, number],
+  colour: string,
+): void {
+  const { ctx, colours, ratio } = pen;
+  let lastX = Number.NEGATIVE_INFINITY;
+  ctx.fillStyle = colours.lane;
+  ctx.strokeStyle = colour;
+  ctx.lineWidth = 1.3 * ratio;
+  for (let index = run.first; index <= run.last; index++) {
+    const verdict = verdictsOfMask(trend.verdict[index]);
+    if (verdict.length === 1 && verdict[0] === "inside") continue; // the inside reading that the run leads up to
+    const [x, y] = point(index);
+    if (x - lastX < 9 * ratio) continue;
+    lastX = x;
+    ctx.beginPath();
+    ctx.arc(x, y, 2.7 * ratio, 0, 2 * Math.PI);
+    ctx.fill();
+    ctx.stroke();
+  }
+}
+
+/** Small arrows at the edge of the fixed scale where the value is beyond it. */
+function drawBeyondScale(pen: Pen, picture: LanePicture, trend: HeldTrend, run: Run, colour: string): void {
+  const { ctx, ratio } = pen;
+  const { mean } = trend.properties[picture.property.name];
+  const [low, high] = picture.property.scale;
+  let lastX = Number.NEGATIVE_INFINITY;
+  ctx.fillStyle = colour;
+  for (let index = run.first; index <= run.last; index++) {
+    const value = mean[index] as number;
+    if (value >= low && value <= high) continue;
+    const x = pen.x(trend.time[index]);
+    if (x - lastX < 12 * ratio) continue;
+    lastX = x;
+    const way = value > high ? -1 : 1;
+    const y = pen.y(value > high ? high : low) - way * 6 * ratio;
+    ctx.beginPath();
+    ctx.moveTo(x, y + way * 6 * ratio);
+    ctx.lineTo(x - 4 * ratio, y);
+    ctx.lineTo(x + 4 * ratio, y);
+    ctx.fill();
+  }
+}
+
+function drawRibbon(pen: Pen, picture: LanePicture, trend: HeldTrend, first: number, last: number): void {
+  const { colours, layout } = pen;
+  const widthMs = trend.whole ? picture.periodMs : trend.widthMs;
+  const rows = [
+    { top: layout.t2Top, columns: trend.t2, beyond: colours.far },
+    { top: layout.qTop, columns: trend.q, beyond: colours.odd },
+  ];
+  for (const { top, columns, beyond } of rows) {
+    const place = (value: number) => pen.top + (top + layout.strip * (1 - ratioPlace(value))) * pen.ratio;
+    drawStrip(pen, trend, columns, place, widthMs, beyond, first, last);
+  }
+  drawUnusable(pen, trend, widthMs, first, last);
+}
+
+function drawStrip(
+  pen: Pen,
+  trend: HeldTrend,
+  columns: HeldTrend["t2"],
+  place: (ratio: number) => number,
+  widthMs: number,
+  beyond: string,
+  first: number,
+  last: number,
+): void {
+  const { ctx, colours, ratio } = pen;
+  const limit = place(1);
+  const floor = place(0);
+  const wide = Math.max(ratio, pen.x(widthMs) - pen.x(0) + 0.6);
+  for (let index = first; index <= last; index++) {
+    const mean = columns.mean[index];
+    const max = columns.max[index];
+    if (mean === null || max === null) continue;
+    const x = pen.x(trend.time[index]) - wide / 2;
+    const top = place(mean);
+    ctx.fillStyle = colours.rule;
+    ctx.fillRect(x, Math.max(limit, top), wide, floor - Math.max(limit, top));
+    if (mean > 1) {
+      ctx.fillStyle = beyond;
+      ctx.fillRect(x, top, wide, limit - top);
+    }
+    if (max > 1 && max > mean) {
+      // One reading beyond the limit among many: a hairline, as high as it went.
+      ctx.fillStyle = beyond;
+      ctx.fillRect(x + wide / 2 - ratio * 0.6, place(max), 1.2 * ratio, limit - place(max));
+    }
+  }
+}
+
+/** Readings without any number stand as ticks between the strips. */
+function drawUnusable(pen: Pen, trend: HeldTrend, widthMs: number, first: number, last: number): void {
+  const { ctx, colours, layout, ratio } = pen;
+  ctx.fillStyle = colours.ink;
+  const wide = Math.max(1.5 * ratio, pen.x(widthMs) - pen.x(0));
+  for (let index = first; index <= last; index++) {
+    if (worstOfMask(trend.verdict[index]) !== "unusable") continue;
+    ctx.fillRect(
+      pen.x(trend.time[index]) - wide / 2,
+      pen.top + (layout.t2Top + layout.strip + 1) * ratio,
+      wide,
+      (layout.qTop - layout.t2Top - layout.strip - 2) * ratio,
+    );
+  }
+}
+
+function drawMarks(pen: Pen, picture: LanePicture): void {
+  const { ctx, colours, ratio } = pen;
+  for (const mark of picture.marks) {
+    const x = pen.x(Math.max(mark.from, picture.from));
+    const wide = Math.max(3 * ratio, pen.x(Math.min(mark.to, picture.to)) - x);
+    if (mark.to < picture.from || mark.from > picture.to) continue;
+    ctx.fillStyle =
+      mark.kind === "unfamiliar"
+        ? colours.odd
+        : mark.kind === "extrapolated"
+          ? colours.far
+          : mark.kind === "sparse"
+            ? colours.sparse
+            : colours.ink;
+    ctx.fillRect(x, pen.top, wide, 3 * ratio);
+    ctx.font = scaledFont(ratio);
+    const words = mark.kind;
+    if (ctx.measureText(words).width + 6 * ratio < wide) {
+      ctx.textAlign = "left";
+      ctx.textBaseline = "top";
+      ctx.fillText(words, x + 2 * ratio, pen.top + 5 * ratio);
+    }
+  }
+}
+
+/** Lines at ten times, once and half the limit, with their words at the right edge. */
+function drawRibbonScale(pen: Pen): void {
+  const { ctx, colours, layout, left, width, ratio } = pen;
+  ctx.font = scaledFont(ratio);
+  ctx.textBaseline = "middle";
+  for (const top of [layout.t2Top, layout.qTop]) {
+    const place = (value: number) => pen.top + (top + layout.strip * (1 - ratioPlace(value))) * ratio;
+    const line = (value: number, colour: string, dash: number[]) => {
+      const y = Math.round(place(value)) + 0.5;
+      ctx.strokeStyle = colour;
+      ctx.lineWidth = ratio;
+      ctx.setLineDash(dash);
+      ctx.beginPath();
+      ctx.moveTo(left, y);
+      ctx.lineTo(left + width, y);
+      ctx.stroke();
+      ctx.setLineDash([]);
+    };
+    line(10, colours.rule, []);
+    line(0.5, colours.edge, [ratio, 3 * ratio]);
+    line(1, colours.quiet, []);
+    ctx.fillStyle = colours.quiet;
+    ctx.textAlign = "left";
+    const words: [number, string][] =
+      layout.strip >= 34
+        ? [
+            [10, "10 ×"],
+            [1, "1 = limit"],
+            [0.5, "half"],
+          ]
+        : [
+            [10, "10 ×"],
+            [1, "1 = limit"],
+          ];
+    const spots = spreadLabels(
+      words.map(([value]) => place(value)),
+      12 * ratio,
+      0,
+      Number.POSITIVE_INFINITY,
+    );
+    words.forEach(([, word], index) => {
+      ctx.fillText(word, left + width + 8 * ratio, spots[index]);
+    });
+    ctx.textAlign = "right";
+    ctx.fillText(top === layout.t2Top ? "T²" : "Q", left - 8 * ratio, place(1));
+  }
+}
+
+function drawEdge(pen: Pen, picture: LanePicture): void {
+  const { ctx, colours, layout, left, width, ratio } = pen;
+  ctx.strokeStyle = picture.live ? colours.quiet : colours.ink;
+  ctx.lineWidth = (picture.live ? 1 : 2) * ratio;
+  ctx.setLineDash(picture.live ? [] : [5 * ratio, 4 * ratio]);
+  ctx.beginPath();
+  ctx.moveTo(left + width, pen.top);
+  ctx.lineTo(left + width, pen.top + layout.height * ratio);
+  ctx.stroke();
+  ctx.setLineDash([]);
+  ctx.fillStyle = picture.live ? colours.quiet : colours.ink;
+  ctx.font = scaledFont(ratio);
+  ctx.textAlign = "left";
+  ctx.textBaseline = "middle";
+  ctx.fillText(picture.live ? "now" : "stopped", left + width + 8 * ratio, pen.top + (layout.height + 14) * ratio);
+}
+
+function drawLimitLabels(pen: Pen, { limits, scale, target }: PlantProperty): void {
+  const { ctx, colours, layout, left, width, ratio } = pen;
+  const decimals = decimalsOfStep(valueStep(scale[0], scale[1], 5));
+  const shown = limits
+    .filter(({ limit }) => limit >= scale[0] && limit <= scale[1])
+    .map(({ side, limit }) => ({
+      at: limit,
+      words: `${side} ${fixed(limit, Math.max(decimals, decimalsOfStep(limit)))}`,
+      colour: colours.ink,
+    }));
+  if (target) shown.push({ at: (target[0] + target[1]) / 2, words: "target", colour: colours.quiet });
+  const spots = spreadLabels(
+    shown.map(({ at }) => pen.y(at)),
+    14 * ratio,
+    pen.top + 6 * ratio,
+    pen.top + layout.trendBottom * ratio,
+  );
+  ctx.font = scaledFont(ratio);
+  ctx.textAlign = "left";
+  ctx.textBaseline = "middle";
+  shown.forEach(({ words, colour }, index) => {
+    ctx.fillStyle = colour;
+    ctx.fillText(words, left + width + 8 * ratio, spots[index]);
+  });
+}

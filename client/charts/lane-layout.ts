@@ -1,0 +1,28 @@
+/** Where the parts of a lane's chart stand, px from the top of the plotting area. */
+export interface LaneLayout {
+  trendTop: number;
+  trendBottom: number;
+  t2Top: number;
+  qTop: number;
+  strip: number;
+  height: number;
+}
+
+export const axisHeight = 24;
+export const padTop = 6;
+const between = 6;
+
+/** @param height of the whole chart, px. The strips take a third of it: room enough for the words of their scale on a tall lane. */
+export function laneLayout(height: number): LaneLayout {
+  const plot = Math.max(120, height - axisHeight - padTop);
+  const strip = Math.round(Math.min(40, Math.max(24, plot * 0.155)));
+  const qTop = plot - strip;
+  const t2Top = qTop - between - strip;
+  return { trendTop: 4, trendBottom: t2Top - 10, t2Top, qTop, strip, height: plot };
+}
+
+/** The y scale whose part [low, high] falls on the trend's rows; the ribbon lies below `low`. */
+export function yRange(low: number, high: number, layout: LaneLayout): [number, number] {
+  const perPx = (high - low) / (layout.trendBottom - layout.trendTop);
+  return [low - perPx * (layout.height - layout.trendBottom), high + perPx * layout.trendTop];
+}

@@ -1,0 +1,181 @@
+import { css, html, LitElement, type PropertyValues, unsafeCSS } from "lit";
+import uPlot from "uplot";
+import uplotStyle from "uplot/dist/uPlot.min.css?inline";
+import { grouped } from "../words/quantity.ts";
+import { chartFont } from "./canvas-text.ts";
+import { coloursAt, onTheme } from "./colours.ts";
+import { drawPanel, drawPanelGround, type PanelPen, type PanelPicture, panelRange } from "./panel-drawing.ts";
+import { valueTicks } from "./value-ticks.ts";
+
+/** A number on a panel's axis: as short as it can be said. */
+export function panelNumber(value: number): string {
+  if (value === 0) return "0";
+  const size = Math.abs(value);
+  const text = size >= 0.001 && size < 10_000 ? String(Number(size.toPrecision(4))) : size.toExponential(0);
+  return value < 0 ? `−${text}` : text;
+}
+
+/** One panel over the wavelengths. Panels of a view share the cursor; "point-wavelength" tells where it is. */
+export class SpectrumPanel extends LitElement {
+  static override properties = {
+    picture: { attribute: false },
+    cursor: { attribute: false },
+    label: { attribute: false },
+    domain: { attribute: false },
+  };
+  declare picture: PanelPicture;
+  /** position on the axis, its unit */
+  declare cursor: number | undefined;
+  declare label: string;
+  /** first and last point that all panels show */
+  declare domain: [number, number];
+  #plot: uPlot | undefined;
+  #size = "";
+  #stop: (() => void)[] = [];
+  static override styles = [
+    unsafeCSS(uplotStyle),
+    css`
+      :host {
+        display: block;
+        position: relative;
+        height: 150px;
+        overflow: hidden;
+      }
+      .plot {
+        position: absolute;
+        inset: 0;
+      }
+      .plot:focus-visible {
+        outline: 3px solid var(--focus);
+        outline-offset: -3px;
+      }
+      .u-hz .u-cursor-x {
+        border-right: 1px solid var(--ink);
+      }
+      .uplot {
+        font-family: inherit;
+      }
+    `,
+  ];
+
+  override render() {
+    return html`<div class="plot" role="application" aria-roledescription="chart" tabindex="0" aria-label=${this.label ?? ""} @keydown=${this.#key}></div>`;
+  }
+
+  override connectedCallback(): void {
+    super.connectedCallback();
+    const resized = new ResizeObserver(() => this.#build());
+    resized.observe(this);
+    this.#stop = [() => resized.disconnect(), onTheme(() => this.#build(true))];
+    void document.fonts.ready.then(() => this.#build(true));
+  }
+
+  override disconnectedCallback(): void {
+    super.disconnectedCallback();
+    for (const stop of this.#stop) stop();
+    this.#plot?.destroy();
+    this.#plot = undefined;
+    this.#size = "";
+  }
+
+  override updated(changed: PropertyValues<this>): void {
+    if (changed.has("picture") || changed.has("domain")) this.#build(true);
+    else if (changed.has("cursor")) this.#placeCursor();
+  }
+
+  #build(always = false): void {
+    if (!this.picture || !this.hasUpdated || !this.isConnected) return;
+    const { width, height } = this.getBoundingClientRect();
+    const size = `${width} ${height}`;
+    if (width < 60 || height < 40 || (size === this.#size && !always)) return;
+    this.#size = size;
+    this.#plot?.destroy();
+    const root = this.renderRoot.querySelector(".plot") as HTMLElement;
+    const colours = coloursAt(this);
+    const pen = (u: uPlot): PanelPen => ({
+      ctx: u.ctx,
+      ratio: uPlot.pxRatio,
+      ...u.bbox,
+      x: (point) => u.valToPos(point, "x", true),
+      y: (value) => u.valToPos(value, "y", true),
+      colours,
+    });
+    const [low, high] = panelRange(this.picture);
+    const narrow = width < 520;
+    const axis = { font: chartFont, gap: 3, stroke: colours.quiet, grid: { show: false } };
+    const ticks = { show: true, size: 4, width: 1, stroke: colours.rule };
+    const plot = new uPlot(
+      {
+        width: Math.floor(width),
+        height: Math.floor(height),
+        padding: [4, narrow ? 76 : 96, 0, 0],
+        legend: { show: false },
+        cursor: {
+          y: false,
+          points: { show: false },
+          drag: { x: false, y: false, setScale: false },
+          bind: {
+            mousedown: () => null,
+            mouseup: () => null,
+            mousemove: () => null,
+            mouseleave: () => null,
+            mouseenter: () => null,
+            dblclick: () => null,
+            click: () => null,
+          },
+        },
+        scales: { x: { time: false, range: () => this.domain }, y: { range: () => [low, high] } },
+        series: [{}, { paths: () => null, points: { show: false } }],
+        axes: [
+          { ...axis, ticks, size: 20, values: (_, splits) => splits.map(grouped) },
+          {
+            ...axis,
+            ticks,
+            size: 52,
+            splits: () => valueTicks(low, high, Math.max(2, Math.floor(height / 36))),
+            values: (_, splits) => splits.map(panelNumber),
+          },
+        ],
+        hooks: {
+          drawClear: [(u) => drawPanelGround(pen(u), this.picture)],
+          draw: [(u) => drawPanel(pen(u), this.picture)],
+        },
+      },
+      [[...this.picture.axis], this.picture.axis.map(() => null)],
+      root,
+    );
+    this.#plot = plot;
+    plot.over.addEventListener("pointermove", (event) => {
+      const box = plot.over.getBoundingClientRect();
+      this.#point(plot.posToVal(event.clientX - box.left, "x"));
+    });
+    plot.over.addEventListener("pointerleave", () => this.#point(undefined));
+    this.#placeCursor();
+  }
+
+  #placeCursor(): void {
+    const shown = this.cursor !== undefined;
+    this.#plot?.setCursor(
+      { left: shown ? this.#plot.valToPos(this.cursor as number, "x") : -10, top: shown ? 0 : -10 },
+      false,
+    );
+  }
+
+  #point(at: number | undefined): void {
+    this.dispatchEvent(
+      new CustomEvent<number | undefined>("point-wavelength", { detail: at, bubbles: true, composed: true }),
+    );
+  }
+
+  #key(event: KeyboardEvent): void {
+    const [from, to] = this.domain;
+    const here = this.cursor ?? (from + to) / 2;
+    const step = ((to - from) / 300) * (event.shiftKey ? 10 : 1);
+    const target = { ArrowLeft: here - step, ArrowRight: here + step, Home: from, End: to }[event.key];
+    if (event.key === "Escape") this.#point(undefined);
+    else if (target === undefined) return;
+    else this.#point(Math.min(to, Math.max(from, target)));
+    event.preventDefault();
+  }
+}
+customElements.define("mill-spectrum-panel", SpectrumPanel);

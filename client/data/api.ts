@@ -1,0 +1,71 @@
+import type {
+  Excursion,
+  OpenAlarm,
+  Plant,
+  Problem,
+  ReadingView,
+  RecordedEvent,
+  Refusals,
+  Trend,
+} from "../../core/messages/index.ts";
+
+/** The server said no, or could not be asked. `message` is for people: what happened and what to do. */
+export class ApiError extends Error {
+  readonly code: string;
+  readonly status: number;
+  constructor(code: string, status: number, says: string, cause?: unknown) {
+    super(says, { cause });
+    this.code = code;
+    this.status = status;
+  }
+}
+
+async function problemOf(response: Response): Promise<ApiError> {
+  const text = await response.text();
+  try {
+    const problem = JSON.parse(text) as Partial<Problem>;
+    if (problem.says) return new ApiError(problem.code ?? "refused", response.status, problem.says);
+  } catch {
+    // Not ours: something between the browser and the server answered.
+  }
+  return new ApiError("http", response.status, `The server answered ${response.status} ${response.statusText}.`);
+}
+
+async function ask<T>(path: string, init?: RequestInit): Promise<T> {
+  let response: Response;
+  try {
+    response = await fetch(`/api/v1${path}`, init);
+  } catch (cause) {
+    if (init?.signal?.aborted) throw cause;
+    throw new ApiError("unreachable", 0, "The server could not be reached. It is asked again by itself.", cause);
+  }
+  if (!response.ok) throw await problemOf(response);
+  return (await response.json()) as T;
+}
+
+function query(values: Record<string, string | number | undefined>): string {
+  const entries = Object.entries(values).filter(([, value]) => value !== undefined);
+  return entries.length ? `?${new URLSearchParams(entries.map(([name, value]) => [name, String(value)]))}` : "";
+}
+
+const stream = (id: string) => `/streams/${encodeURIComponent(id)}`;
+
+/** The reads and commands of the HTTP API, as the screens need them. */
+export const api = {
+  plant: () => ask<Plant>("/plant"),
+  trend: (id: string, from: number, to: number, points: number, signal?: AbortSignal) =>
+    ask<Trend>(`${stream(id)}/trend${query({ from: Math.floor(from), to: Math.ceil(to), points })}`, { signal }),
+  reading: (id: string, at: number | undefined, signal?: AbortSignal) =>
+    ask<ReadingView>(`${stream(id)}/reading${query({ at })}`, { signal }),
+  excursions: (values: { stream?: string; from?: number; to?: number; limit?: number }, signal?: AbortSignal) =>
+    ask<{ excursions: Excursion[] }>(`/excursions${query(values)}`, { signal }),
+  events: (values: { stream?: string; before?: number; limit?: number }, signal?: AbortSignal) =>
+    ask<{ events: RecordedEvent[] }>(`/events${query(values)}`, { signal }),
+  refusals: (limit: number, signal?: AbortSignal) => ask<Refusals>(`/refusals${query({ limit })}`, { signal }),
+  acknowledge: (alarm: Pick<OpenAlarm, "stream" | "key">) =>
+    ask<unknown>(`${stream(alarm.stream)}/alarms/${encodeURIComponent(alarm.key)}/acknowledge`, {
+      method: "POST",
+      headers: { "content-type": "application/json" },
+      body: "{}",
+    }),
+};

@@ -1,0 +1,126 @@
+import { css, html, LitElement, nothing } from "lit";
+import { presets, span, type TimeWindow } from "../data/time-window.ts";
+import { duration } from "../words/duration.ts";
+import type { PlantTime } from "../words/plant-time.ts";
+import { baseStyle } from "./base-style.ts";
+
+export type RangeWish =
+  | { kind: "span"; spanMs: number }
+  | { kind: "pan"; share: number }
+  | { kind: "zoom"; factor: number }
+  | { kind: "live" }
+  | { kind: "stop" };
+
+/** Which stretch of time is on the screen, and whether it is the present. */
+export class RangeBar extends LitElement {
+  static override properties = {
+    window: { attribute: false },
+    now: { attribute: false },
+    time: { attribute: false },
+    linkUp: { attribute: false },
+    lastReadingAt: { attribute: false },
+  };
+  declare window: TimeWindow;
+  declare now: number;
+  declare time: PlantTime;
+  declare linkUp: boolean;
+  /** when the newest reading of any stream came */
+  declare lastReadingAt: number | undefined;
+  static override styles = [
+    baseStyle,
+    css`
+      .bar {
+        display: flex;
+        flex-wrap: wrap;
+        align-items: center;
+        gap: 6px 12px;
+        min-height: 44px;
+        padding: 6px 0;
+      }
+      .group {
+        display: flex;
+        flex-wrap: wrap;
+        gap: 4px;
+      }
+      .group button {
+        padding: 2px 10px;
+      }
+      .state {
+        margin-left: auto;
+        display: flex;
+        flex-wrap: wrap;
+        align-items: center;
+        gap: 4px 12px;
+      }
+      .stopped {
+        flex-basis: 100%;
+        border: 3px dashed var(--ink);
+        border-radius: 6px;
+        padding: 6px 14px;
+        font-size: 16px;
+        background: var(--lane);
+        justify-content: space-between;
+      }
+      .stopped button {
+        background: var(--ink);
+        color: var(--lane);
+        border-color: var(--ink);
+      }
+    `,
+  ];
+
+  override render() {
+    const spanMs = span(this.window);
+    const wish = (detail: RangeWish) => () =>
+      this.dispatchEvent(new CustomEvent<RangeWish>("range-wish", { detail, bubbles: true, composed: true }));
+    const preset = presets.some((each) => each.spanMs === spanMs);
+    return html`<div class="bar">
+      <div class="group" role="group" aria-label="Time on the screen">
+        ${presets.map(
+          (each) =>
+            html`<button aria-pressed=${each.spanMs === spanMs} @click=${wish({ kind: "span", spanMs: each.spanMs })}>
+              ${each.name}
+            </button>`,
+        )}
+        ${preset ? nothing : html`<button aria-pressed="true" disabled>${duration(spanMs)}</button>`}
+      </div>
+      <div class="group" role="group" aria-label="Move through time">
+        <button @click=${wish({ kind: "pan", share: -0.5 })} aria-label="Half a screen earlier">◂ earlier</button>
+        <button
+          @click=${wish({ kind: "pan", share: 0.5 })}
+          ?disabled=${this.window.kind === "live"}
+          aria-label="Half a screen later"
+        >
+          later ▸
+        </button>
+        <button @click=${wish({ kind: "zoom", factor: 0.5 })} aria-label="Show half the time">closer</button>
+        <button @click=${wish({ kind: "zoom", factor: 2 })} aria-label="Show twice the time">wider</button>
+      </div>
+      ${this.window.kind === "live" ? this.#live(wish) : this.#stopped(this.window.to, wish)}
+    </div>`;
+  }
+
+  #live(wish: (detail: RangeWish) => () => void) {
+    const { now, lastReadingAt, linkUp } = this;
+    const words = !linkUp
+      ? "Not live: link lost"
+      : lastReadingAt === undefined
+        ? "Live · no reading yet"
+        : `Live · last reading ${duration(now - lastReadingAt)} ago`;
+    return html`<div class="state">
+      <span class="quiet">${words}</span><button @click=${wish({ kind: "stop" })}>Stop here</button>
+    </div>`;
+  }
+
+  #stopped(to: number, wish: (detail: RangeWish) => () => void) {
+    const { now, time } = this;
+    return html`<div class="state stopped" role="status">
+      <span
+        ><b>Trends are not live:</b> stopped at <span class="whole">${time.exact(to, now)}</span>,
+        <span class="whole">${duration(now - to)}</span> before now. Numbers and alarms are still the present ones.</span
+      >
+      <button @click=${wish({ kind: "live" })}>Back to live</button>
+    </div>`;
+  }
+}
+customElements.define("mill-range-bar", RangeBar);

@@ -1,0 +1,429 @@
+import { css, html, LitElement, nothing } from "lit";
+import type { Plant, PlantStream, ReadingView as ReadingAnswer, Region } from "../../core/messages/index.ts";
+import { href, type Route } from "../app/route.ts";
+import { type PanelPicture, regionName } from "../charts/panel-drawing.ts";
+import { panelNumber } from "../charts/spectrum-panel.ts";
+import "../charts/place-map.ts";
+import { api } from "../data/api.ts";
+import type { Feed } from "../data/feed.ts";
+import { ticking } from "../data/listening.ts";
+import { Loaded } from "../data/loaded.ts";
+import { nearestSamples } from "../data/nearest-samples.ts";
+import { centredOn, type TimeWindow } from "../data/time-window.ts";
+import { baseStyle } from "../parts/base-style.ts";
+import { verdictColour } from "../parts/verdict-mark.ts";
+import { duration } from "../words/duration.ts";
+import type { PlantTime } from "../words/plant-time.ts";
+import { axisUnit, decimalsFor, fixed, grouped, percent, ratio, thin } from "../words/quantity.ts";
+import { verdictMeaning } from "../words/verdict-words.ts";
+import { readingPanels } from "./reading-panels.ts";
+
+const watchSpanMs = 3_600_000;
+
+/** Why was this reading judged so? */
+export class ReadingView extends LitElement {
+  static override properties = {
+    plant: { attribute: false },
+    feed: { attribute: false },
+    time: { attribute: false },
+    route: { attribute: false },
+    cursor: { state: true },
+  };
+  declare plant: Plant;
+  declare feed: Feed;
+  declare time: PlantTime;
+  declare route: Extract<Route, { view: "reading" }>;
+  /** on the spectral axis */
+  declare cursor: number | undefined;
+  readonly #loaded = new Loaded<ReadingAnswer>(this, (key, signal) => {
+    const [stream, at] = key.split(" ");
+    return api.reading(stream, at ? Number(at) : undefined, signal);
+  });
+  #panels: { of: ReadingAnswer; made: PanelPicture[] } | undefined;
+
+  constructor() {
+    super();
+    ticking(this);
+  }
+
+  static override styles = [
+    baseStyle,
+    css`
+      .head {
+        display: flex;
+        flex-wrap: wrap;
+        align-items: center;
+        gap: 8px 12px;
+        padding: 8px 0;
+        min-height: 52px;
+      }
+      select {
+        font: inherit;
+        color: var(--ink);
+        background: var(--lane);
+        border: 1px solid var(--edge);
+        border-radius: 4px;
+        min-height: 28px;
+      }
+      .body {
+        display: grid;
+        grid-template-columns: minmax(0, 1fr) 380px;
+        gap: 8px;
+        align-items: start;
+      }
+      .body[aria-busy="true"] {
+        opacity: 0.55;
+      }
+      .panels {
+        background: var(--lane);
+        border: 1px solid var(--rule);
+        border-radius: 6px;
+        padding: 4px 0 4px;
+      }
+      .panels h2 {
+        font-size: 13px;
+        font-weight: 400;
+        color: var(--quiet);
+        padding: 4px 8px 0 52px;
+        min-height: 22px;
+      }
+      .panels h2 span {
+        color: var(--ink);
+      }
+      .facts {
+        display: grid;
+        gap: 8px;
+      }
+      .facts section {
+        background: var(--lane);
+        border: 1px solid var(--rule);
+        border-radius: 6px;
+        padding: 10px 14px;
+      }
+      .facts h2 {
+        margin-bottom: 4px;
+      }
+      .verdict {
+        display: flex;
+        align-items: center;
+        gap: 8px;
+        font-size: 20px;
+      }
+      .says {
+        margin-top: 6px;
+        font-size: 16px;
+      }
+      .facts table td,
+      .facts table th {
+        padding: 4px 8px 4px 0;
+      }
+      .axis {
+        padding: 0 8px 4px 52px;
+        font-size: 13px;
+      }
+      .doubted {
+        color: var(--quiet);
+        border-bottom: 1px dashed var(--edge);
+      }
+      .table {
+        max-height: 320px;
+        overflow: auto;
+      }
+      @media (max-width: 1000px) {
+        .body {
+          grid-template-columns: minmax(0, 1fr);
+        }
+        .facts {
+          order: -1;
+        }
+        .panels h2 {
+          padding-left: 12px;
+        }
+      }
+    `,
+  ];
+
+  override render() {
+    const stream = this.plant.streams.find(({ id }) => id === this.route.stream) ?? this.plant.streams[0];
+    if (!stream) return html`<h1>Reading</h1><p class="card">No streams yet, so there is no reading to explain.</p>`;
+    if (this.route.stream && stream.id !== this.route.stream) {
+      return html`<h1>Reading</h1><p class="card">There is no stream ${this.route.stream} in this plant. <a href="/reading">Show another</a></p>`;
+    }
+    this.#loaded.want(`${stream.id} ${this.route.at === undefined ? "" : Math.round(this.route.at)}`);
+    const { value, error, loading } = this.#loaded;
+    const reading = value?.judged.stream === stream.id ? value : undefined;
+    return html`
+      ${this.#head(stream, reading)}
+      ${error ? html`<p class="card" role="status">The reading could not be shown. ${error.message}</p>` : nothing}
+      ${!reading && loading ? html`<p class="card">Reading …</p>` : nothing}
+      ${reading ? this.#body(stream, reading, loading) : nothing}
+    `;
+  }
+
+  #head(stream: PlantStream, reading: ReadingAnswer | undefined) {
+    const { time } = this;
+    const now = this.feed.now();
+    const step = (at: number | null | undefined, words: string) =>
+      at === null || at === undefined
+        ? html`<button disabled>${words}</button>`
+        : html`<a class="button" href=${href({ view: "reading", stream: stream.id, at })}>${words}</a>`;
+    const at = reading?.judged.time;
+    return html`<div class="head">
+      <h1>Reading</h1>
+      <label
+        ><span class="unseen">Stream</span>
+        <select @change=${this.#choose}>
+          ${this.plant.streams.map((each) => html`<option value=${each.id} ?selected=${each.id === stream.id}>${each.name} (${each.id})</option>`)}
+        </select></label
+      >
+      ${
+        at === undefined
+          ? nothing
+          : html`<span title=${time.full(at)}
+            ><b>${time.exact(at, now)}</b> <span class="quiet">${time.zoneName(at)}, ${duration(now - at)} ago</span></span
+          >`
+      }
+      <span style="margin-left:auto"></span>
+      ${step(reading?.previous, "◂ previous")} ${step(reading?.next, "next ▸")}
+      <a class="button" href=${href({ view: "reading", stream: stream.id })} @click=${this.#newest}>newest</a>
+      ${at === undefined ? nothing : html`<a class="button" href=${href({ view: "watch", window: around(at, now) })}>Show on Watch</a>`}
+    </div>`;
+  }
+
+  #body(stream: PlantStream, reading: ReadingAnswer, busy: boolean) {
+    if (this.#panels?.of !== reading) this.#panels = { of: reading, made: readingPanels(reading) };
+    const panels = this.#panels.made;
+    const { points, unit } = reading.axis;
+    const domain: [number, number] = [Math.min(...points), Math.max(...points)];
+    return html`<div class="body" aria-busy=${busy}>
+      <div
+        class="panels"
+        @point-wavelength=${({ detail }: CustomEvent<number | undefined>) => {
+          this.cursor = detail;
+        }}
+      >
+        ${
+          panels.length === 0
+            ? html`<p class="axis">The spectrum of this reading is no longer kept; its numbers are.</p>`
+            : nothing
+        }
+        ${panels.map(
+          (picture) => html`
+            <h2>${picture.title}${this.#atCursor(picture)}</h2>
+            <mill-spectrum-panel
+              .picture=${picture}
+              .cursor=${this.cursor}
+              .domain=${domain}
+              .label=${`${picture.title}. Left and right move the cursor.`}
+            ></mill-spectrum-panel>
+          `,
+        )}
+        <p class="axis quiet">Axis: ${unit === "nm" ? "wavelength" : "wavenumber"}, ${axisUnit(unit)}</p>
+        ${panels.length ? this.#table(panels, unit) : nothing}
+      </div>
+      <div class="facts">
+        ${this.#verdict(reading)} ${this.#values(stream, reading)} ${this.#statistics(reading)} ${this.#place(reading)}
+        ${this.#regions(reading)}
+      </div>
+    </div>`;
+  }
+
+  #atCursor({ axis, unit, lines, bars }: PanelPicture) {
+    if (this.cursor === undefined || axis.length === 0) return nothing;
+    const at = this.cursor;
+    let index = 0;
+    axis.forEach((point, each) => {
+      if (Math.abs(point - at) < Math.abs(axis[index] - at)) index = each;
+    });
+    const values = [...lines, ...(bars ? [bars] : [])].map(({ label, values }) => {
+      const value = values[index];
+      return `${label} ${value === null ? "—" : panelNumber(Number(value.toPrecision(3)))}`;
+    });
+    return html` · <span>${grouped(axis[index])} ${axisUnit(unit)}: ${values.join(", ")}</span>`;
+  }
+
+  #verdict({ judged, explanation }: ReadingAnswer) {
+    const [worst, ...rest] = judged.verdict;
+    return html`<section>
+      <h2 class="verdict" style="color:var(${verdictColour[worst]})">
+        <mill-verdict-mark .verdict=${worst}></mill-verdict-mark>${worst}${rest.length ? html`<small class="quiet">also ${rest.join(", ")}</small>` : nothing}
+      </h2>
+      <p class="says">${explanation?.says ?? judged.unusable ?? ""}</p>
+      <p class="quiet">${verdictMeaning[worst]}</p>
+    </section>`;
+  }
+
+  #values(stream: PlantStream, { judged }: ReadingAnswer) {
+    const inside = judged.verdict[0] === "inside";
+    return html`<section>
+      <h2>${inside ? "Predicted" : "Predicted, not to be believed"}</h2>
+      <table>
+        <tbody>
+          ${stream.properties.map((property) => {
+            const prediction = judged.properties[property.name];
+            const value = prediction?.value ?? null;
+            const decimals = decimalsFor(prediction?.uncertainty ?? (property.scale[1] - property.scale[0]) / 100);
+            const around = inside && prediction?.uncertainty ? ` ± ${fixed(prediction.uncertainty, decimals)}` : "";
+            return html`<tr>
+              <td>${property.name}</td>
+              <td class="number">
+                <span class="whole ${inside ? "" : "doubted"}"
+                  >${value === null ? "no number" : `${fixed(value, decimals)}${around}${thin}${property.unit}`}</span
+                >
+              </td>
+            </tr>`;
+          })}
+        </tbody>
+      </table>
+    </section>`;
+  }
+
+  #statistics({ judged, limits, model }: ReadingAnswer) {
+    const rows = [
+      { name: "T²", says: "amounts", value: judged.t2, limit: limits.t2, of: judged.ratios.t2 },
+      { name: "Q", says: "shape", value: judged.q, limit: limits.q, of: judged.ratios.q },
+      {
+        name: "Nearest sample",
+        says: "distance",
+        value: judged.nearest,
+        limit: limits.nearest,
+        of: judged.ratios.nearest,
+      },
+    ];
+    return html`<section>
+      <table>
+        <caption>
+          ${
+            model
+              ? html`Model ${model.name}, ${model.components} components; limit set ${judged.limitSet}; leverage
+              ${judged.leverage === null ? "—" : judged.leverage.toPrecision(2)}`
+              : "No model scored this reading."
+          }
+        </caption>
+        <thead>
+          <tr>
+            <th scope="col">Statistic</th>
+            <th scope="col" class="number">Value</th>
+            <th scope="col" class="number">Limit</th>
+            <th scope="col" class="number">Ratio</th>
+          </tr>
+        </thead>
+        <tbody>
+          ${rows.map(
+            ({ name, says, value, limit, of }) => html`<tr>
+              <td>${name} <span class="quiet">(${says})</span></td>
+              <td class="number">${value === null ? "—" : panelNumber(Number(value.toPrecision(3)))}</td>
+              <td class="number">${panelNumber(Number(limit.toPrecision(3)))}</td>
+              <td class="number">${of !== null && of > 1 ? html`<b>${ratio(of)} × limit</b>` : ratio(of)}</td>
+            </tr>`,
+          )}
+        </tbody>
+      </table>
+    </section>`;
+  }
+
+  #place({ judged, samples, explanation }: ReadingAnswer) {
+    const { t2, q } = judged.ratios;
+    if (!samples || t2 === null || q === null) return nothing;
+    const picture = {
+      samples: samples.t2.map((each, index) => ({ t2: each, q: samples.q[index] })),
+      reading: { t2, q, verdict: judged.verdict[0] },
+    };
+    const near = explanation ? nearestSamples(explanation.scores, samples, 3) : [];
+    const words = `T² ratio ${ratio(t2)}, Q ratio ${ratio(q)}, among ${samples.names.length} calibration samples`;
+    return html`<section>
+      <h2>Its place among the calibration samples</h2>
+      <mill-place-map .picture=${picture} .label=${`${words}.`}></mill-place-map>
+      <p class="quiet">Filled: this reading. Open circles: the ${samples.names.length} calibration samples. Lines at 1: the limits.</p>
+      ${
+        near.length
+          ? html`<p>
+            Nearest samples: ${near.map(({ name, distance }) => `${name} (${distance.toFixed(1)})`).join(", ")}
+            <span class="quiet">(distance in standard deviations of the scores)</span>
+          </p>`
+          : nothing
+      }
+    </section>`;
+  }
+
+  #regions({ explanation }: ReadingAnswer) {
+    if (!explanation) return nothing;
+    const list = (regions: readonly Region[], what: string, signed: boolean) =>
+      html`<tr>
+        <td>${what}</td>
+        <td>
+          ${
+            regions.length === 0
+              ? "no region stands out"
+              : regions.map(
+                  (region) =>
+                    html`<div><span class="whole">${regionName(region)}</span>: ${percent(region.share)}${signed ? (region.sign > 0 ? ", more than modelled" : ", less than modelled") : ""}</div>`,
+                )
+          }
+        </td>
+      </tr>`;
+    return html`<section>
+      <h2>Where it comes from</h2>
+      <table>
+        <tbody>
+          ${list(explanation.qRegions, "Q", true)} ${list(explanation.t2Regions, "T²", false)}
+        </tbody>
+      </table>
+    </section>`;
+  }
+
+  #table(panels: readonly PanelPicture[], unit: "nm" | "cm-1") {
+    return html`<details class="axis">
+      <summary>The charts as a table</summary>
+      <div class="table" tabindex="0" role="region" aria-label="The charts as a table">
+        ${panels.map(({ title, axis, lines, bars }) => {
+          const columns = [...lines, ...(bars ? [bars] : [])];
+          const step = Math.max(1, Math.ceil(axis.length / 60));
+          return html`<table>
+            <caption>
+              ${title}${step > 1 ? `; every ${step}th channel` : ""}
+            </caption>
+            <thead>
+              <tr>
+                <th scope="col">${axisUnit(unit)}</th>
+                ${columns.map(({ label }) => html`<th scope="col" class="number">${label}</th>`)}
+              </tr>
+            </thead>
+            <tbody>
+              ${axis
+                .map((point, index) => ({ point, index }))
+                .filter(({ index }) => index % step === 0)
+                .map(
+                  ({ point, index }) =>
+                    html`<tr>
+                      <td>${grouped(point)}</td>
+                      ${columns.map(({ values }) => {
+                        const value = values[index];
+                        return html`<td class="number">${value === null ? "—" : panelNumber(Number(value.toPrecision(3)))}</td>`;
+                      })}
+                    </tr>`,
+                )}
+            </tbody>
+          </table>`;
+        })}
+      </div>
+    </details>`;
+  }
+
+  #choose(event: Event): void {
+    const stream = (event.target as HTMLSelectElement).value;
+    const route: Route = { view: "reading", stream, at: this.route.at };
+    this.dispatchEvent(new CustomEvent("go", { detail: { route, replace: false }, bubbles: true, composed: true }));
+  }
+
+  #newest(): void {
+    // The key is the same as before when the newest was on the screen already: ask again.
+    this.#loaded.refresh();
+  }
+}
+
+function around(at: number, now: number): TimeWindow {
+  return centredOn({ kind: "live", spanMs: watchSpanMs }, at, now);
+}
+
+customElements.define("mill-reading-view", ReadingView);

@@ -1,0 +1,324 @@
+import { css, html, LitElement, nothing } from "lit";
+import type { PlantProperty, PlantStream } from "../../core/messages/index.ts";
+import type { LanePicture } from "../charts/lane-drawing.ts";
+import { byUrgency } from "../data/alarm-order.ts";
+import type { Feed } from "../data/feed.ts";
+import { freshness } from "../data/freshness.ts";
+import { Listening } from "../data/listening.ts";
+import { edges, type TimeWindow } from "../data/time-window.ts";
+import { type HeldTrend, nearestIndex, reachMs } from "../data/trend-columns.ts";
+import { TrendLoader } from "../data/trend-loader.ts";
+import { type TrendSight, trendRow, trendRows, trendSentence } from "../data/trend-words.ts";
+import { baseStyle } from "../parts/base-style.ts";
+import type { PlantTime } from "../words/plant-time.ts";
+import { counted } from "../words/quantity.ts";
+
+/** One stream: the number, the trend with its ribbon, and what is open at its end. */
+export class WatchLane extends LitElement {
+  static override properties = {
+    stream: { attribute: false },
+    feed: { attribute: false },
+    time: { attribute: false },
+    window: { attribute: false },
+    now: { attribute: false },
+    cursor: { attribute: false },
+    chosen: { attribute: false },
+    tabled: { state: true },
+  };
+  declare stream: PlantStream;
+  declare feed: Feed;
+  declare time: PlantTime;
+  declare window: TimeWindow;
+  /** the server's clock at this drawing: all lanes of a screen share it */
+  declare now: number;
+  declare cursor: number | undefined;
+  /** name of the property that is drawn */
+  declare chosen: string | undefined;
+  declare tabled: boolean;
+  readonly #trend = new TrendLoader(
+    this,
+    () => this.feed,
+    () => this.stream,
+  );
+  #sentence = { made: 0, text: "" };
+
+  constructor() {
+    super();
+    this.tabled = false;
+    new Listening(this, (changed) => this.feed?.watchStream(this.stream.id, changed));
+  }
+
+  static override styles = [
+    baseStyle,
+    css`
+      :host {
+        display: grid;
+        grid-template-columns: 236px minmax(0, 1fr) 272px;
+        background: var(--lane);
+        border: 1px solid var(--rule);
+        border-radius: 6px;
+        min-height: 232px;
+      }
+      .now {
+        padding: 10px 14px;
+        border-right: 1px solid var(--rule);
+      }
+      .open {
+        padding: 10px 14px;
+        border-left: 1px solid var(--rule);
+        display: grid;
+        gap: 12px;
+        align-content: start;
+      }
+      .chart {
+        display: grid;
+        grid-template-rows: auto minmax(0, 1fr) auto;
+        padding: 4px 0 2px 0;
+        min-width: 0;
+      }
+      .caption {
+        display: flex;
+        gap: 12px;
+        justify-content: space-between;
+        align-items: center;
+        padding: 0 8px 0 52px;
+        min-height: 28px;
+        font-size: 13px;
+        color: var(--quiet);
+      }
+      .caption .at {
+        color: var(--ink);
+        overflow: hidden;
+        text-overflow: ellipsis;
+        white-space: nowrap;
+      }
+      .caption button {
+        min-height: 24px;
+        padding: 0 8px;
+        font-size: 13px;
+        color: var(--quiet);
+        border-color: transparent;
+      }
+      .caption button:hover,
+      .caption button[aria-expanded="true"] {
+        border-color: var(--edge);
+      }
+      .wait {
+        place-self: center;
+        color: var(--quiet);
+        max-width: 48ch;
+        text-align: center;
+        padding: 16px;
+        grid-row: 2;
+        grid-column: 1;
+      }
+      mill-lane-chart {
+        grid-row: 2;
+        grid-column: 1;
+      }
+      .table {
+        max-height: 260px;
+        overflow: auto;
+        padding: 0 12px 8px 52px;
+      }
+      @media (max-width: 1100px) {
+        :host {
+          grid-template-columns: 220px minmax(0, 1fr);
+        }
+        .open {
+          grid-column: 1 / -1;
+          border-left: 0;
+          border-top: 1px solid var(--rule);
+        }
+      }
+      @media (max-width: 700px) {
+        :host {
+          grid-template-columns: minmax(0, 1fr);
+        }
+        .now {
+          border-right: 0;
+          border-bottom: 1px solid var(--rule);
+        }
+        .chart {
+          height: 280px;
+        }
+        .chart:has(.table) {
+          height: auto;
+        }
+        .caption {
+          padding-left: 12px;
+        }
+        .table {
+          padding-left: 12px;
+        }
+      }
+      @media print {
+        :host {
+          break-inside: avoid;
+        }
+      }
+    `,
+  ];
+
+  override render() {
+    const { stream, feed, now, time } = this;
+    const state = feed.of(stream.id);
+    const property = stream.properties.find(({ name }) => name === this.chosen) ?? stream.properties[0];
+    if (!property)
+      return html`<div class="now"><h2>${stream.name}</h2><p>${stream.trouble ?? "No model gives this stream a property yet."}</p></div>`;
+    const fresh = freshness({
+      now,
+      linkUp: feed.linkUp,
+      heardAt: feed.heardAt,
+      engine: feed.engine,
+      readingAt: state?.latest?.time ?? null,
+      receivedAt: state?.receivedAt ?? null,
+      periodMs: stream.periodMs,
+    });
+    return html`
+      <div class="now">
+        <mill-lane-number
+          .stream=${stream}
+          .state=${state}
+          .chosen=${property}
+          .freshness=${fresh}
+          .now=${now}
+          .time=${time}
+        ></mill-lane-number>
+      </div>
+      ${this.#chart(property)}
+      <div class="open">${this.#open()}</div>
+    `;
+  }
+
+  #chart(property: PlantProperty) {
+    const { from, to } = edges(this.window, this.now);
+    const width = this.clientWidth > 1100 ? this.clientWidth - 640 : Math.max(240, this.clientWidth - 360);
+    this.#trend.want({ from, to, points: Math.round(Math.min(1200, width)) });
+    const { trend, version, error, loading } = this.#trend;
+    const picture: LanePicture = {
+      trend,
+      property,
+      periodMs: this.stream.periodMs,
+      gapMs: this.stream.gapMs,
+      from,
+      to,
+      live: this.window.kind === "live",
+      marks: this.#marks(),
+    };
+    const empty = trend && !trend.time.some((at) => at >= from && at <= to);
+    return html`<div class="chart">
+      <div class="caption">
+        <span class="at">${this.#caption(property)}</span>
+        <button
+          aria-expanded=${this.tabled}
+          aria-label="Table of ${this.stream.name}"
+          @click=${() => {
+            this.tabled = !this.tabled;
+          }}
+        >
+          Table
+        </button>
+      </div>
+      <mill-lane-chart
+        .picture=${picture}
+        .version=${version}
+        .cursor=${this.cursor}
+        .time=${this.time}
+        .label=${trend ? this.#label(property, from, to) : `${this.stream.name}: the trend is loading`}
+      ></mill-lane-chart>
+      ${error ? html`<p class="wait" role="status">The trend could not be read. ${error.message}</p>` : nothing}
+      ${!trend && loading && !error ? html`<p class="wait">Reading the trend …</p>` : nothing}
+      ${empty && !error ? html`<p class="wait">No readings in this stretch.</p>` : nothing}
+      ${this.tabled && trend ? this.#table(property, from, to) : nothing}
+    </div>`;
+  }
+
+  #marks(): LanePicture["marks"] {
+    const state = this.feed.of(this.stream.id);
+    return (state?.excursions ?? []).map(({ kind, start, end }) => ({ kind, from: start, to: end ?? this.now }));
+  }
+
+  /** At rest what the axis shows; with the cursor on, the values at it. */
+  #caption(property: PlantProperty) {
+    const { trend } = this.#trend;
+    const named = `${property.name}, ${property.unit}`;
+    if (this.cursor === undefined || !trend) return named;
+    const index = nearestIndex(trend.time, this.cursor, reachMs(trend, this.stream.gapMs));
+    const at = this.time.exact(this.cursor, this.now);
+    if (index === undefined) return html`<b>${at}</b> no reading`;
+    const row = trendRow(trend, property, index);
+    return html`<b>${this.time.exact(row.at, this.now)}</b> ${row.value} · ${row.verdict} · T² ${row.t2} · Q ${row.q} × limit`;
+  }
+
+  /** Made anew every few seconds only: it is read, not watched. */
+  #label(property: PlantProperty, from: number, to: number): string {
+    const { trend } = this.#trend;
+    const at = performance.now();
+    if (trend && (at - this.#sentence.made > 5000 || !this.#sentence.text)) {
+      this.#sentence = {
+        made: at,
+        text: `${this.stream.name}. ${trendSentence(this.#sight(trend, property, from, to))} Arrow keys move the cursor, Page Up and Page Down pan, plus and minus zoom, Enter opens the reading.`,
+      };
+    }
+    return this.#sentence.text;
+  }
+
+  #sight(trend: HeldTrend, property: PlantProperty, from: number, to: number): TrendSight {
+    const { now, time, window, stream } = this;
+    return { trend, property, from, to, now, time, gapMs: stream.gapMs, live: window.kind === "live" };
+  }
+
+  #table(property: PlantProperty, from: number, to: number) {
+    const { now, time } = this;
+    const { trend } = this.#trend;
+    if (!trend) return nothing;
+    const sight = this.#sight(trend, property, from, to);
+    return html`<div class="table" tabindex="0" role="region" aria-label="Table of ${this.stream.name}">
+      <table>
+        <caption>
+          ${trendSentence(sight)}
+        </caption>
+        <thead>
+          <tr>
+            <th scope="col">Time, ${time.zoneName(now)}</th>
+            <th scope="col">${property.name}</th>
+            <th scope="col">Verdict</th>
+            <th scope="col" class="number">T² ratio</th>
+            <th scope="col" class="number">Q ratio</th>
+          </tr>
+        </thead>
+        <tbody>
+          ${trendRows(sight).map(
+            (row) => html`<tr>
+              <td>${time.exact(row.at, now)}</td>
+              <td>${row.value}</td>
+              <td>${row.verdict}</td>
+              <td class="number">${row.t2}</td>
+              <td class="number">${row.q}</td>
+            </tr>`,
+          )}
+        </tbody>
+      </table>
+    </div>`;
+  }
+
+  #open() {
+    const { feed, stream, now, time } = this;
+    const state = feed.of(stream.id);
+    const alarms = byUrgency(state?.alarms ?? []).filter(({ priority }) => priority !== "record only");
+    const refused = state?.refused ?? 0;
+    const trouble = state?.trouble ?? stream.trouble;
+    return html`
+      ${alarms.length === 0 ? html`<p class="quiet">No open alarms.</p>` : nothing}
+      ${alarms.map(
+        (alarm) =>
+          html`<mill-alarm-card .alarm=${alarm} .now=${now} .time=${time} .linkUp=${feed.linkUp}></mill-alarm-card>`,
+      )}
+      ${state?.held ? html`<p class="quiet">Property alarms are held while the reading is not inside.</p>` : nothing}
+      ${trouble ? html`<p><b>Not scored.</b> ${trouble}</p>` : nothing}
+      ${refused > 0 ? html`<p class="quiet"><a href="/plant">${counted(refused, "message")} refused</a></p>` : nothing}
+    `;
+  }
+}
+customElements.define("mill-watch-lane", WatchLane);

@@ -1,0 +1,186 @@
+import { css, html, LitElement, nothing } from "lit";
+import type { Plant } from "../../core/messages/index.ts";
+import { href, type Route } from "../app/route.ts";
+import type { ChartGesture } from "../charts/lane-chart.ts";
+import type { Feed } from "../data/feed.ts";
+import { Listening, ticking } from "../data/listening.ts";
+import { remembered } from "../data/remembered.ts";
+import { edges, pan, span, stopAt, type TimeWindow, zoom } from "../data/time-window.ts";
+import { baseStyle } from "../parts/base-style.ts";
+import type { RangeWish } from "../parts/range-bar.ts";
+import type { PlantTime } from "../words/plant-time.ts";
+
+const chosenProperties = remembered<Record<string, string>>("properties", {});
+
+/** All streams over one stretch of time, with one cursor. It owns the window; the URL follows it. */
+export class WatchView extends LitElement {
+  static override properties = {
+    plant: { attribute: false },
+    feed: { attribute: false },
+    time: { attribute: false },
+    route: { attribute: false },
+    cursor: { state: true },
+    chosen: { state: true },
+  };
+  declare plant: Plant;
+  declare feed: Feed;
+  declare time: PlantTime;
+  declare route: Extract<Route, { view: "watch" }>;
+  declare cursor: number | undefined;
+  declare chosen: Record<string, string>;
+
+  constructor() {
+    super();
+    this.chosen = chosenProperties.get();
+    ticking(this);
+    new Listening(this, (changed) => this.feed?.watch(changed));
+  }
+
+  static override styles = [
+    baseStyle,
+    css`
+      :host {
+        display: flex;
+        flex-direction: column;
+        flex: 1;
+      }
+      .lanes {
+        flex: 1;
+        display: grid;
+        gap: 8px;
+        grid-auto-rows: minmax(min-content, 1fr);
+      }
+      .one {
+        margin-bottom: 8px;
+      }
+      .keys {
+        margin-top: 8px;
+        font-size: 13px;
+        color: var(--quiet);
+      }
+      @media (max-width: 700px) {
+        .lanes {
+          grid-auto-rows: auto;
+        }
+      }
+    `,
+  ];
+
+  override render() {
+    const { plant, feed, time, route } = this;
+    const now = feed.now();
+    const streams = route.stream ? plant.streams.filter(({ id }) => id === route.stream) : plant.streams;
+    const received = plant.streams.map(({ id }) => feed.of(id)?.receivedAt ?? 0);
+    const lastReadingAt = Math.max(0, ...received) || undefined;
+    return html`
+      <h1 class="unseen">Watch</h1>
+      <mill-range-bar
+        .window=${route.window}
+        .now=${now}
+        .time=${time}
+        .linkUp=${feed.linkUp || !feed.everUp}
+        .lastReadingAt=${lastReadingAt}
+        @range-wish=${({ detail }: CustomEvent<RangeWish>) => this.#grant(detail)}
+      ></mill-range-bar>
+      ${
+        route.stream
+          ? html`<p class="one quiet">
+            Only ${route.stream}. <a href=${href({ view: "watch", window: route.window })}>Show all streams</a>
+          </p>`
+          : nothing
+      }
+      ${streams.length === 0 ? this.#empty() : nothing}
+      <div class="lanes" @chart-gesture=${({ detail }: CustomEvent<ChartGesture>) => this.#pointAt(detail)}>
+        ${streams.map(
+          (stream) =>
+            html`<mill-watch-lane
+              .stream=${stream}
+              .feed=${feed}
+              .time=${time}
+              .window=${route.window}
+              .now=${now}
+              .cursor=${this.cursor}
+              .chosen=${this.chosen[stream.id]}
+              @chart-gesture=${(event: CustomEvent<ChartGesture>) => this.#answer(event.detail, stream.id)}
+              @choose-property=${({ detail }: CustomEvent<string>) => this.#choose(stream.id, detail)}
+            ></mill-watch-lane>`,
+        )}
+      </div>
+      <p class="keys">
+        Drag a trend to move through time, turn the wheel to see more or less of it, click to open a reading. With the keyboard: arrows
+        move the cursor, Page Up and Page Down pan, + and − zoom, Enter opens the reading.
+      </p>
+    `;
+  }
+
+  #empty() {
+    return this.route.stream
+      ? html`<p class="card">There is no stream ${this.route.stream} in this plant. <a href="/watch">Show all streams</a></p>`
+      : html`<p class="card">
+          No streams yet. Each stream of the plant's configuration gets a lane here: add one with its model and limit set, and
+          start the service again.
+        </p>`;
+  }
+
+  #pointAt(gesture: ChartGesture): void {
+    if (gesture.kind === "point") this.cursor = gesture.at;
+  }
+
+  #answer(gesture: ChartGesture, stream: string): void {
+    const now = this.feed.now();
+    switch (gesture.kind) {
+      case "pan":
+        this.#show(pan(this.route.window, gesture.share, now));
+        return;
+      case "zoom":
+        this.#show(zoom(this.route.window, gesture.factor, gesture.about, now));
+        return;
+      case "open":
+        this.#go({ view: "reading", stream, at: gesture.at });
+        return;
+      case "point":
+        return; // all lanes share the cursor: answered once, for all of them
+    }
+  }
+
+  #grant(wish: RangeWish): void {
+    const now = this.feed.now();
+    const { window } = this.route;
+    const middle = () => {
+      const { from, to } = edges(window, now);
+      return (from + to) / 2;
+    };
+    switch (wish.kind) {
+      case "span":
+        this.#show(zoom(window, wish.spanMs / span(window), edges(window, now).to, now));
+        return;
+      case "pan":
+        this.#show(pan(window, wish.share, now));
+        return;
+      case "zoom":
+        this.#show(zoom(window, wish.factor, middle(), now));
+        return;
+      case "stop":
+        this.#show(stopAt(window, now));
+        return;
+      case "live":
+        this.#show({ kind: "live", spanMs: span(window) });
+        return;
+    }
+  }
+
+  #show(window: TimeWindow): void {
+    this.#go({ ...this.route, window }, true);
+  }
+
+  #go(route: Route, replace = false): void {
+    this.dispatchEvent(new CustomEvent("go", { detail: { route, replace }, bubbles: true, composed: true }));
+  }
+
+  #choose(stream: string, property: string): void {
+    this.chosen = { ...this.chosen, [stream]: property };
+    chosenProperties.set(this.chosen);
+  }
+}
+
+customElements.define("mill-watch-view", WatchView);
