@@ -1,8 +1,8 @@
 import betaOf from "@stdlib/stats-base-dists-beta-quantile";
-import chiSquaredOf from "@stdlib/stats-base-dists-chisquare-quantile";
 import fOf from "@stdlib/stats-base-dists-f-quantile";
 import normalOf from "@stdlib/stats-base-dists-normal-quantile";
 import tOf from "@stdlib/stats-base-dists-t-quantile";
+import { chiSquaredQuantileOf } from "./chi-squared-quantile.ts";
 import { LimitError } from "./limit-error.ts";
 
 // Each gives the value below which a share `p` of the distribution lies. Checked against 60-digit arithmetic: test/reference/quantiles.test.ts.
@@ -24,7 +24,7 @@ export function betaQuantile(p: number, a: number, b: number): number {
 }
 
 export function chiSquaredQuantile(p: number, freedom: number): number {
-  return checked("χ²", p, chiSquaredOf(p, freedom));
+  return checked("χ²", p, chiSquaredQuantileOf(p, freedom));
 }
 
 function checked(name: string, p: number, found: number): number {
