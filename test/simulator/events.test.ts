@@ -89,6 +89,8 @@ describe("how an event comes and goes", () => {
     expect(together.film).toBeCloseTo(0.5, 12);
     expect(together.coSolvent).toBeGreaterThan(0.99);
     expect({ ...together, film: 0, coSolvent: 0 }).toEqual(undisturbed);
+    const twice = disturbanceAt([event("fouling"), { ...event("fouling"), size: 2 }], "bq-305", at);
+    expect(twice.film).toBeCloseTo(1.5, 12);
   });
 });
 

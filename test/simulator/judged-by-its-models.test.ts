@@ -15,7 +15,9 @@ import {
 import {
   builtInScenarios,
   type EventKind,
+  eventKinds,
   historyEvents,
+  kindOf,
   type PlantEvent,
   readingAt,
   scenarioEvents,
@@ -158,6 +160,20 @@ describe("the models of all streams", () => {
       expectVerdicts(kind, judged(stream, events, { start: early, end, periodMs: 6000 }), `${stream} ${kind}`);
     }
   });
+
+  const shown = eventKinds.filter((kind) => ["lagged", "growing"].includes(kindOf[kind].course));
+  test.each(streamIds.flatMap((stream) => shown.map((kind) => [kind, stream] as const)))(
+    "judge %s on %s as its truth says, at three times of the fortnight",
+    (kind, stream) => {
+      for (const days of [1.3, 5.7, 11.1]) {
+        const start = from + days * day;
+        const event = { kind, stream, start, end: start + 40 * minute, size: 1 };
+        const early = start + (kindOf[kind].course === "growing" ? 25 : 18) * minute;
+        const seen = judged(stream, [event], { start: early, end: event.end, periodMs: 10_000 });
+        expectVerdicts(kind, seen, `${stream} ${kind} of ${new Date(start).toISOString()}`);
+      }
+    },
+  );
 
   test("see fouling and a failing lamp grow: inside at first, unfamiliar later, and Q only ever more so", () => {
     const events = scenarioEvents(builtInScenarios.faults, to, to, to + 120 * minute);
