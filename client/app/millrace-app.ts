@@ -1,4 +1,4 @@
-import { css, html, LitElement, nothing } from "lit";
+import { css, html, LitElement } from "lit";
 import type { Plant } from "../../core/messages/index.ts";
 import { api } from "../data/api.ts";
 import { Feed } from "../data/feed.ts";
@@ -93,7 +93,7 @@ export class MillraceApp extends LitElement {
         background: var(--tone);
       }
       footer {
-        padding: 8px 16px;
+        padding: 4px 16px;
         border-top: 1px solid var(--rule);
         font-size: 13px;
         color: var(--quiet);
@@ -201,7 +201,6 @@ export class MillraceApp extends LitElement {
       </div>
       <main id="main" tabindex="-1">${this.#view(plant, feed, time)}</main>
       <footer>
-        ${plant.demo ? html`<span><b>Demonstration:</b> ${plant.name} is an invented plant; nothing here is measured.</span>` : nothing}
         <span><b>Caution:</b> ${plant.caution}</span>
       </footer>
     `;

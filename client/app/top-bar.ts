@@ -4,8 +4,13 @@ import { calling, countOf } from "../data/alarm-order.ts";
 import { baseStyle } from "../parts/base-style.ts";
 import type { PlantTime } from "../words/plant-time.ts";
 import { defaultWindow, href, type Route, type ViewName } from "./route.ts";
-import { chooseTheme, chosenTheme, themes } from "./theme-choice.ts";
+import { chooseTheme, chosenTheme, type ThemeChoice, themes } from "./theme-choice.ts";
 
+const themeNames: Record<ThemeChoice, string> = {
+  system: "light or dark: as the system",
+  light: "light",
+  dark: "dark",
+};
 const views: { view: ViewName; name: string }[] = [
   { view: "watch", name: "Watch" },
   { view: "reading", name: "Reading" },
@@ -37,9 +42,9 @@ export class TopBar extends LitElement {
         display: flex;
         flex-wrap: wrap;
         align-items: center;
-        gap: 0 20px;
+        gap: 0 16px;
         padding: 0 16px;
-        min-height: 48px;
+        min-height: 46px;
         background: var(--lane);
         border-bottom: 1px solid var(--rule);
       }
@@ -120,6 +125,7 @@ export class TopBar extends LitElement {
         font-size: 16px;
       }
       select {
+        width: 11ch;
         font: inherit;
         color: var(--ink);
         background: var(--lane);
@@ -151,7 +157,7 @@ export class TopBar extends LitElement {
     const { plant, now, time, linkUp } = this;
     const { name, role } = plant.person;
     return html`<header>
-      <div class="site">${plant.name} ${plant.demo ? html`<small>invented plant</small>` : nothing}</div>
+      <div class="site">${plant.name} ${plant.demo ? html`<small title="Nothing on these screens is measured.">demonstration: an invented plant</small>` : nothing}</div>
       <nav aria-label="Views">
         <ul>
           ${views.map(
@@ -170,7 +176,7 @@ export class TopBar extends LitElement {
         <label
           ><span class="unseen">Light or dark</span>
           <select @change=${this.#theme}>
-            ${themes.map((theme) => html`<option value=${theme} ?selected=${theme === chosenTheme()}>${theme}</option>`)}
+            ${themes.map((theme) => html`<option value=${theme} ?selected=${theme === chosenTheme()}>${themeNames[theme]}</option>`)}
           </select>
         </label>
       </div>

@@ -5,6 +5,7 @@ const names = [
   "edge",
   "tone",
   "band",
+  "fill",
   "ink",
   "quiet",
   "far",

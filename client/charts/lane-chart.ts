@@ -46,7 +46,7 @@ export class LaneChart extends LitElement {
         display: block;
         position: relative;
         height: 100%;
-        min-height: 190px;
+        min-height: 180px;
         overflow: hidden;
       }
       .plot {

@@ -5,7 +5,7 @@ import { gapsOf, type Run, trendRuns } from "../data/trend-runs.ts";
 import { decimalsOfStep, fixed } from "../words/quantity.ts";
 import { hatch, scaledFont } from "./canvas-text.ts";
 import type { Colours } from "./colours.ts";
-import type { LaneLayout } from "./lane-layout.ts";
+import { type LaneLayout, wordyStrip } from "./lane-layout.ts";
 import { ratioPlace } from "./ratio-scale.ts";
 import { spreadLabels, valueStep } from "./value-ticks.ts";
 
@@ -249,24 +249,23 @@ function drawBeyondScale(pen: Pen, picture: LanePicture, trend: HeldTrend, run: 
 
 function drawRibbon(pen: Pen, picture: LanePicture, trend: HeldTrend, first: number, last: number): void {
   const { colours, layout } = pen;
-  const widthMs = trend.whole ? picture.periodMs : trend.widthMs;
+  const spanOf = columnSpans(pen, trend, picture.periodMs, picture.gapMs);
   const rows = [
     { top: layout.t2Top, columns: trend.t2, beyond: colours.far },
     { top: layout.qTop, columns: trend.q, beyond: colours.odd },
   ];
   for (const { top, columns, beyond } of rows) {
     const place = (value: number) => pen.top + (top + layout.strip * (1 - ratioPlace(value))) * pen.ratio;
-    drawStrip(pen, trend, columns, place, widthMs, beyond, first, last);
+    drawStrip(pen, columns, place, spanOf, beyond, first, last);
   }
-  drawUnusable(pen, trend, widthMs, first, last);
+  drawUnusable(pen, trend, spanOf, first, last);
 }
 
 function drawStrip(
   pen: Pen,
-  trend: HeldTrend,
   columns: HeldTrend["t2"],
   place: (ratio: number) => number,
-  widthMs: number,
+  spanOf: (index: number) => [number, number],
   beyond: string,
   first: number,
   last: number,
@@ -274,14 +273,13 @@ function drawStrip(
   const { ctx, colours, ratio } = pen;
   const limit = place(1);
   const floor = place(0);
-  const wide = Math.max(ratio, pen.x(widthMs) - pen.x(0) + 0.6);
   for (let index = first; index <= last; index++) {
     const mean = columns.mean[index];
     const max = columns.max[index];
     if (mean === null || max === null) continue;
-    const x = pen.x(trend.time[index]) - wide / 2;
+    const [x, wide] = spanOf(index);
     const top = place(mean);
-    ctx.fillStyle = colours.rule;
+    ctx.fillStyle = colours.fill;
     ctx.fillRect(x, Math.max(limit, top), wide, floor - Math.max(limit, top));
     if (mean > 1) {
       ctx.fillStyle = beyond;
@@ -295,19 +293,39 @@ function drawStrip(
   }
 }
 
+/** Where an entry's column begins and how wide it is, canvas px. A reading speaks until the next one; an interval has its own width. */
+function columnSpans(pen: Pen, trend: HeldTrend, periodMs: number, gapMs: number): (index: number) => [number, number] {
+  const { time, whole, widthMs } = trend;
+  const least = pen.ratio;
+  const overlap = 0.6;
+  if (!whole) {
+    const wide = Math.max(least, pen.x(widthMs) - pen.x(0));
+    return (index) => [pen.x(time[index]) - wide / 2, wide + overlap];
+  }
+  return (index) => {
+    const step = (time[index + 1] ?? Number.POSITIVE_INFINITY) - time[index];
+    const x = pen.x(time[index]);
+    const crossesGap = step > gapMs && trend.gaps.some(([from]) => from === time[index]);
+    const ms = crossesGap || !Number.isFinite(step) ? periodMs : step;
+    return [x, Math.max(least, pen.x(time[index] + ms) - x) + overlap];
+  };
+}
+
 /** Readings without any number stand as ticks between the strips. */
-function drawUnusable(pen: Pen, trend: HeldTrend, widthMs: number, first: number, last: number): void {
+function drawUnusable(
+  pen: Pen,
+  trend: HeldTrend,
+  spanOf: (index: number) => [number, number],
+  first: number,
+  last: number,
+): void {
   const { ctx, colours, layout, ratio } = pen;
   ctx.fillStyle = colours.ink;
-  const wide = Math.max(1.5 * ratio, pen.x(widthMs) - pen.x(0));
   for (let index = first; index <= last; index++) {
     if (worstOfMask(trend.verdict[index]) !== "unusable") continue;
-    ctx.fillRect(
-      pen.x(trend.time[index]) - wide / 2,
-      pen.top + (layout.t2Top + layout.strip + 1) * ratio,
-      wide,
-      (layout.qTop - layout.t2Top - layout.strip - 2) * ratio,
-    );
+    const [x, wide] = spanOf(index);
+    const top = pen.top + (layout.t2Top + layout.strip + 1) * ratio;
+    ctx.fillRect(x, top, Math.max(1.5 * ratio, wide), (layout.qTop - layout.t2Top - layout.strip - 2) * ratio);
   }
 }
 
@@ -360,7 +378,7 @@ function drawRibbonScale(pen: Pen): void {
     ctx.fillStyle = colours.quiet;
     ctx.textAlign = "left";
     const words: [number, string][] =
-      layout.strip >= 34
+      layout.strip >= wordyStrip
         ? [
             [10, "10 ×"],
             [1, "1 = limit"],

@@ -10,15 +10,17 @@ export interface LaneLayout {
 
 export const axisHeight = 24;
 export const padTop = 6;
-const between = 6;
+/** a strip of this height has room for three words beside it */
+export const wordyStrip = 38;
 
 /** @param height of the whole chart, px. The strips take a third of it: room enough for the words of their scale on a tall lane. */
 export function laneLayout(height: number): LaneLayout {
   const plot = Math.max(120, height - axisHeight - padTop);
-  const strip = Math.round(Math.min(40, Math.max(24, plot * 0.155)));
+  const strip = Math.round(Math.min(44, Math.max(26, plot * 0.18)));
+  const between = strip >= wordyStrip ? 14 : 6;
   const qTop = plot - strip;
   const t2Top = qTop - between - strip;
-  return { trendTop: 4, trendBottom: t2Top - 10, t2Top, qTop, strip, height: plot };
+  return { trendTop: 4, trendBottom: t2Top - 12, t2Top, qTop, strip, height: plot };
 }
 
 /** The y scale whose part [low, high] falls on the trend's rows; the ribbon lies below `low`. */

@@ -19,7 +19,7 @@ export interface LaneOptions {
 
 const leftGutter = 52;
 /** room for the limits' labels */
-export const rightGutter = 84;
+export const rightGutter = 104;
 
 /** uPlot's options for one lane: scales and axes; the line and the ribbon are drawn by the two hooks. */
 export function laneOptions(options: LaneOptions): uPlot.Options {

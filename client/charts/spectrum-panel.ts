@@ -1,19 +1,11 @@
 import { css, html, LitElement, type PropertyValues, unsafeCSS } from "lit";
 import uPlot from "uplot";
 import uplotStyle from "uplot/dist/uPlot.min.css?inline";
-import { grouped } from "../words/quantity.ts";
+import { figure, grouped } from "../words/quantity.ts";
 import { chartFont } from "./canvas-text.ts";
 import { coloursAt, onTheme } from "./colours.ts";
 import { drawPanel, drawPanelGround, type PanelPen, type PanelPicture, panelRange } from "./panel-drawing.ts";
 import { valueTicks } from "./value-ticks.ts";
-
-/** A number on a panel's axis: as short as it can be said. */
-export function panelNumber(value: number): string {
-  if (value === 0) return "0";
-  const size = Math.abs(value);
-  const text = size >= 0.001 && size < 10_000 ? String(Number(size.toPrecision(4))) : size.toExponential(0);
-  return value < 0 ? `−${text}` : text;
-}
 
 /** One panel over the wavelengths. Panels of a view share the cursor; "point-wavelength" tells where it is. */
 export class SpectrumPanel extends LitElement {
@@ -21,12 +13,15 @@ export class SpectrumPanel extends LitElement {
     picture: { attribute: false },
     cursor: { attribute: false },
     label: { attribute: false },
+    withAxis: { attribute: false },
     domain: { attribute: false },
   };
   declare picture: PanelPicture;
   /** position on the axis, its unit */
   declare cursor: number | undefined;
   declare label: string;
+  /** panels above one another share the axis of the lowest */
+  declare withAxis: boolean;
   /** first and last point that all panels show */
   declare domain: [number, number];
   #plot: uPlot | undefined;
@@ -38,8 +33,11 @@ export class SpectrumPanel extends LitElement {
       :host {
         display: block;
         position: relative;
-        height: 150px;
+        height: 116px;
         overflow: hidden;
+      }
+      :host([tall]) {
+        height: 176px;
       }
       .plot {
         position: absolute;
@@ -127,13 +125,18 @@ export class SpectrumPanel extends LitElement {
         scales: { x: { time: false, range: () => this.domain }, y: { range: () => [low, high] } },
         series: [{}, { paths: () => null, points: { show: false } }],
         axes: [
-          { ...axis, ticks, size: 20, values: (_, splits) => splits.map(grouped) },
           {
             ...axis,
             ticks,
-            size: 52,
+            size: this.withAxis ? 20 : 4,
+            values: (_, splits) => (this.withAxis ? splits.map(grouped) : []),
+          },
+          {
+            ...axis,
+            ticks,
+            size: 64,
             splits: () => valueTicks(low, high, Math.max(2, Math.floor(height / 36))),
-            values: (_, splits) => splits.map(panelNumber),
+            values: (_, splits) => splits.map((value) => figure(value, 4)),
           },
         ],
         hooks: {

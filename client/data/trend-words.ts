@@ -2,7 +2,7 @@ import type { PlantProperty } from "../../core/messages/index.ts";
 import { type Verdict, verdictsOfMask, worstOfMask } from "../../core/messages/index.ts";
 import { duration } from "../words/duration.ts";
 import type { PlantTime } from "../words/plant-time.ts";
-import { counted, decimalsFor, fixed, ratio, withUnit } from "../words/quantity.ts";
+import { counted, decimalsFor, fixed, named, ratio, withUnit } from "../words/quantity.ts";
 import { firstAtOrAfter, type HeldTrend } from "./trend-columns.ts";
 import { gapsOf } from "./trend-runs.ts";
 
@@ -21,7 +21,7 @@ export interface TrendSight {
 export function trendSentence({ trend, property, from, to, now, time, gapMs, live }: TrendSight): string {
   const first = firstAtOrAfter(trend.time, from);
   const end = firstAtOrAfter(trend.time, to);
-  const stretch = `${property.name}, ${time.exact(from, now)} to ${time.exact(to, now)} (${duration(to - from)})`;
+  const stretch = `${named(property.name)}, ${time.exact(from, now)} to ${time.exact(to, now)} (${duration(to - from)})`;
   if (end <= first) return `${stretch}: no readings.`;
   const { min, max } = trend.properties[property.name];
   let low = Number.POSITIVE_INFINITY;

@@ -3,7 +3,7 @@ import type { Judged, PlantProperty, PlantStream, Prediction, StreamNow } from "
 import type { Freshness } from "../data/freshness.ts";
 import { duration } from "../words/duration.ts";
 import type { PlantTime } from "../words/plant-time.ts";
-import { decimalsFor, fixed, thin } from "../words/quantity.ts";
+import { decimalsFor, fixed, named, thin } from "../words/quantity.ts";
 import { evidence, verdictMeaning } from "../words/verdict-words.ts";
 import { baseStyle } from "./base-style.ts";
 import { verdictColour } from "./verdict-mark.ts";
@@ -79,7 +79,7 @@ export class LaneNumber extends LitElement {
         margin-top: 4px;
       }
       .verdict mill-verdict-mark {
-        margin-left: -2px;
+        margin: -5px 0 0 -2px;
       }
       .trusted {
         margin-top: 4px;
@@ -122,7 +122,7 @@ export class LaneNumber extends LitElement {
     const inside = latest?.verdict[0] === "inside";
     return html`<div class=${old ? "old" : inside || !latest ? "" : "doubtful"}>
       <h2>${stream.name} <small>${stream.id}</small></h2>
-      <div class="property">${this.chosen.name}</div>
+      <div class="property">${named(this.chosen.name)}</div>
       ${latest ? this.#value(latest, inside && !old) : this.#nothingYet()}
       ${this.freshness.kind === "old" ? this.#age(this.freshness.asOf, this.freshness.ageMs, this.freshness.says) : nothing}
       ${latest ? this.#verdict(latest, old) : nothing} ${latest && !inside ? this.#lastInside() : nothing}
@@ -210,7 +210,7 @@ export class LaneNumber extends LitElement {
         }
         return html`<li>
           <button title="Draw ${property.name}" @click=${() => this.#choose(property.name)}>
-            <span>${property.name}</span><span class="whole">${words}</span>
+            <span>${named(property.name)}</span><span class="whole">${words}</span>
           </button>
         </li>`;
       })}

@@ -9,7 +9,7 @@ import { Loaded } from "../data/loaded.ts";
 import { baseStyle } from "../parts/base-style.ts";
 import { duration, period } from "../words/duration.ts";
 import type { PlantTime } from "../words/plant-time.ts";
-import { counted, grouped, percent, thin } from "../words/quantity.ts";
+import { counted, grouped, named, percent, thin } from "../words/quantity.ts";
 
 const refreshMs = 5000;
 
@@ -153,7 +153,7 @@ export class PlantView extends LitElement {
       <td>
         ${stream.properties.map(
           ({ name, unit, range }) =>
-            html`<div>${name} <span class="quiet whole">${Number(range[0].toPrecision(3))} to ${Number(range[1].toPrecision(3))}${thin}${unit}</span></div>`,
+            html`<div>${named(name)} <span class="quiet whole">${Number(range[0].toPrecision(3))} to ${Number(range[1].toPrecision(3))}${thin}${unit}</span></div>`,
         )}
       </td>
       <td>

@@ -2,7 +2,7 @@ import { css, html, LitElement, nothing } from "lit";
 import type { Plant, PlantStream, ReadingView as ReadingAnswer, Region } from "../../core/messages/index.ts";
 import { href, type Route } from "../app/route.ts";
 import { type PanelPicture, regionName } from "../charts/panel-drawing.ts";
-import { panelNumber } from "../charts/spectrum-panel.ts";
+import "../charts/spectrum-panel.ts";
 import "../charts/place-map.ts";
 import { api } from "../data/api.ts";
 import type { Feed } from "../data/feed.ts";
@@ -14,10 +14,12 @@ import { baseStyle } from "../parts/base-style.ts";
 import { verdictColour } from "../parts/verdict-mark.ts";
 import { duration } from "../words/duration.ts";
 import type { PlantTime } from "../words/plant-time.ts";
-import { axisUnit, decimalsFor, fixed, grouped, percent, ratio, thin } from "../words/quantity.ts";
+import { axisUnit, decimalsFor, figure, fixed, grouped, named, percent, ratio, thin } from "../words/quantity.ts";
 import { verdictMeaning } from "../words/verdict-words.ts";
 import { readingPanels } from "./reading-panels.ts";
 
+/** regions beyond these say little */
+const listedRegions = 4;
 const watchSpanMs = 3_600_000;
 
 /** Why was this reading judged so? */
@@ -84,7 +86,7 @@ export class ReadingView extends LitElement {
         font-size: 13px;
         font-weight: 400;
         color: var(--quiet);
-        padding: 4px 8px 0 52px;
+        padding: 4px 8px 0 64px;
         min-height: 22px;
       }
       .panels h2 span {
@@ -118,7 +120,7 @@ export class ReadingView extends LitElement {
         padding: 4px 8px 4px 0;
       }
       .axis {
-        padding: 0 8px 4px 52px;
+        padding: 0 8px 4px 64px;
         font-size: 13px;
       }
       .doubted {
@@ -208,11 +210,13 @@ export class ReadingView extends LitElement {
             : nothing
         }
         ${panels.map(
-          (picture) => html`
+          (picture, index) => html`
             <h2>${picture.title}${this.#atCursor(picture)}</h2>
             <mill-spectrum-panel
+              ?tall=${index === 0}
               .picture=${picture}
               .cursor=${this.cursor}
+              .withAxis=${index === 0 || index === panels.length - 1}
               .domain=${domain}
               .label=${`${picture.title}. Left and right move the cursor.`}
             ></mill-spectrum-panel>
@@ -222,8 +226,8 @@ export class ReadingView extends LitElement {
         ${panels.length ? this.#table(panels, unit) : nothing}
       </div>
       <div class="facts">
-        ${this.#verdict(reading)} ${this.#values(stream, reading)} ${this.#statistics(reading)} ${this.#place(reading)}
-        ${this.#regions(reading)}
+        ${this.#verdict(reading)} ${this.#values(stream, reading)} ${this.#regions(reading)}
+        ${this.#statistics(reading)} ${this.#place(reading)}
       </div>
     </div>`;
   }
@@ -237,7 +241,7 @@ export class ReadingView extends LitElement {
     });
     const values = [...lines, ...(bars ? [bars] : [])].map(({ label, values }) => {
       const value = values[index];
-      return `${label} ${value === null ? "—" : panelNumber(Number(value.toPrecision(3)))}`;
+      return `${label} ${value === null ? "—" : figure(value)}`;
     });
     return html` · <span>${grouped(axis[index])} ${axisUnit(unit)}: ${values.join(", ")}</span>`;
   }
@@ -265,7 +269,7 @@ export class ReadingView extends LitElement {
             const decimals = decimalsFor(prediction?.uncertainty ?? (property.scale[1] - property.scale[0]) / 100);
             const around = inside && prediction?.uncertainty ? ` ± ${fixed(prediction.uncertainty, decimals)}` : "";
             return html`<tr>
-              <td>${property.name}</td>
+              <td>${named(property.name)}</td>
               <td class="number">
                 <span class="whole ${inside ? "" : "doubted"}"
                   >${value === null ? "no number" : `${fixed(value, decimals)}${around}${thin}${property.unit}`}</span
@@ -312,8 +316,8 @@ export class ReadingView extends LitElement {
           ${rows.map(
             ({ name, says, value, limit, of }) => html`<tr>
               <td>${name} <span class="quiet">(${says})</span></td>
-              <td class="number">${value === null ? "—" : panelNumber(Number(value.toPrecision(3)))}</td>
-              <td class="number">${panelNumber(Number(limit.toPrecision(3)))}</td>
+              <td class="number">${value === null ? "—" : figure(value)}</td>
+              <td class="number">${figure(limit)}</td>
               <td class="number">${of !== null && of > 1 ? html`<b>${ratio(of)} × limit</b>` : ratio(of)}</td>
             </tr>`,
           )}
@@ -355,10 +359,12 @@ export class ReadingView extends LitElement {
           ${
             regions.length === 0
               ? "no region stands out"
-              : regions.map(
-                  (region) =>
-                    html`<div><span class="whole">${regionName(region)}</span>: ${percent(region.share)}${signed ? (region.sign > 0 ? ", more than modelled" : ", less than modelled") : ""}</div>`,
-                )
+              : regions
+                  .slice(0, listedRegions)
+                  .map(
+                    (region) =>
+                      html`<div><span class="whole">${regionName(region)}</span>: ${percent(region.share)}${signed ? (region.sign > 0 ? ", more than modelled" : ", less than modelled") : ""}</div>`,
+                  )
           }
         </td>
       </tr>`;
@@ -399,7 +405,7 @@ export class ReadingView extends LitElement {
                       <td>${grouped(point)}</td>
                       ${columns.map(({ values }) => {
                         const value = values[index];
-                        return html`<td class="number">${value === null ? "—" : panelNumber(Number(value.toPrecision(3)))}</td>`;
+                        return html`<td class="number">${value === null ? "—" : figure(value)}</td>`;
                       })}
                     </tr>`,
                 )}

@@ -1,5 +1,5 @@
 import { css, html, LitElement, nothing } from "lit";
-import type { PlantProperty, PlantStream } from "../../core/messages/index.ts";
+import type { Excursion, PlantProperty, PlantStream } from "../../core/messages/index.ts";
 import type { LanePicture } from "../charts/lane-drawing.ts";
 import { byUrgency } from "../data/alarm-order.ts";
 import type { Feed } from "../data/feed.ts";
@@ -11,7 +11,7 @@ import { TrendLoader } from "../data/trend-loader.ts";
 import { type TrendSight, trendRow, trendRows, trendSentence } from "../data/trend-words.ts";
 import { baseStyle } from "../parts/base-style.ts";
 import type { PlantTime } from "../words/plant-time.ts";
-import { counted } from "../words/quantity.ts";
+import { counted, named } from "../words/quantity.ts";
 
 /** One stream: the number, the trend with its ribbon, and what is open at its end. */
 export class WatchLane extends LitElement {
@@ -22,6 +22,7 @@ export class WatchLane extends LitElement {
     window: { attribute: false },
     now: { attribute: false },
     cursor: { attribute: false },
+    excursions: { attribute: false },
     chosen: { attribute: false },
     tabled: { state: true },
   };
@@ -32,6 +33,8 @@ export class WatchLane extends LitElement {
   /** the server's clock at this drawing: all lanes of a screen share it */
   declare now: number;
   declare cursor: number | undefined;
+  /** of all streams, in and about the window */
+  declare excursions: readonly Excursion[];
   /** name of the property that is drawn */
   declare chosen: string | undefined;
   declare tabled: boolean;
@@ -53,14 +56,14 @@ export class WatchLane extends LitElement {
     css`
       :host {
         display: grid;
-        grid-template-columns: 236px minmax(0, 1fr) 272px;
+        grid-template-columns: 232px minmax(0, 1fr) 268px;
         background: var(--lane);
         border: 1px solid var(--rule);
         border-radius: 6px;
-        min-height: 232px;
+        min-height: 216px;
       }
       .now {
-        padding: 10px 14px;
+        padding: 8px 14px;
         border-right: 1px solid var(--rule);
       }
       .open {
@@ -73,7 +76,7 @@ export class WatchLane extends LitElement {
       .chart {
         display: grid;
         grid-template-rows: auto minmax(0, 1fr) auto;
-        padding: 4px 0 2px 0;
+        padding: 2px 0 0 0;
         min-width: 0;
       }
       .caption {
@@ -82,7 +85,7 @@ export class WatchLane extends LitElement {
         justify-content: space-between;
         align-items: center;
         padding: 0 8px 0 52px;
-        min-height: 28px;
+        min-height: 24px;
         font-size: 13px;
         color: var(--quiet);
       }
@@ -235,15 +238,17 @@ export class WatchLane extends LitElement {
   }
 
   #marks(): LanePicture["marks"] {
-    const state = this.feed.of(this.stream.id);
-    return (state?.excursions ?? []).map(({ kind, start, end }) => ({ kind, from: start, to: end ?? this.now }));
+    const { id } = this.stream;
+    const open = this.feed.of(id)?.excursions ?? [];
+    const past = this.excursions.filter((each) => each.stream === id && !open.some((other) => other.id === each.id));
+    return [...past, ...open].map(({ kind, start, end }) => ({ kind, from: start, to: end ?? this.now }));
   }
 
   /** At rest what the axis shows; with the cursor on, the values at it. */
   #caption(property: PlantProperty) {
     const { trend } = this.#trend;
-    const named = `${property.name}, ${property.unit}`;
-    if (this.cursor === undefined || !trend) return named;
+    const title = `${named(property.name)}, ${property.unit}`;
+    if (this.cursor === undefined || !trend) return title;
     const index = nearestIndex(trend.time, this.cursor, reachMs(trend, this.stream.gapMs));
     const at = this.time.exact(this.cursor, this.now);
     if (index === undefined) return html`<b>${at}</b> no reading`;
@@ -282,7 +287,7 @@ export class WatchLane extends LitElement {
         <thead>
           <tr>
             <th scope="col">Time, ${time.zoneName(now)}</th>
-            <th scope="col">${property.name}</th>
+            <th scope="col">${named(property.name)}</th>
             <th scope="col">Verdict</th>
             <th scope="col" class="number">T² ratio</th>
             <th scope="col" class="number">Q ratio</th>

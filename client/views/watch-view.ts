@@ -2,14 +2,18 @@ import { css, html, LitElement, nothing } from "lit";
 import type { Plant } from "../../core/messages/index.ts";
 import { href, type Route } from "../app/route.ts";
 import type { ChartGesture } from "../charts/lane-chart.ts";
+import { api } from "../data/api.ts";
 import type { Feed } from "../data/feed.ts";
 import { Listening, ticking } from "../data/listening.ts";
+import { Loaded } from "../data/loaded.ts";
 import { remembered } from "../data/remembered.ts";
 import { edges, pan, span, stopAt, type TimeWindow, zoom } from "../data/time-window.ts";
 import { baseStyle } from "../parts/base-style.ts";
 import type { RangeWish } from "../parts/range-bar.ts";
 import type { PlantTime } from "../words/plant-time.ts";
 
+/** excursions that are marked on the time axis, at most */
+const mostMarks = 500;
 const chosenProperties = remembered<Record<string, string>>("properties", {});
 
 /** All streams over one stretch of time, with one cursor. It owns the window; the URL follows it. */
@@ -29,11 +33,22 @@ export class WatchView extends LitElement {
   declare cursor: number | undefined;
   declare chosen: Record<string, string>;
 
+  readonly #excursions = new Loaded(this, (key, signal) => {
+    const [from, to] = key.split(" ").map(Number);
+    return api.excursions({ from, to, limit: mostMarks }, signal);
+  });
+  #cursorOfEvents = 0;
+
   constructor() {
     super();
     this.chosen = chosenProperties.get();
     ticking(this);
-    new Listening(this, (changed) => this.feed?.watch(changed));
+    new Listening(this, (changed) =>
+      this.feed?.watch(() => {
+        this.#heardEvents();
+        changed();
+      }),
+    );
   }
 
   static override styles = [
@@ -69,6 +84,7 @@ export class WatchView extends LitElement {
   override render() {
     const { plant, feed, time, route } = this;
     const now = feed.now();
+    this.#wantExcursions(now);
     const streams = route.stream ? plant.streams.filter(({ id }) => id === route.stream) : plant.streams;
     const received = plant.streams.map(({ id }) => feed.of(id)?.receivedAt ?? 0);
     const lastReadingAt = Math.max(0, ...received) || undefined;
@@ -100,6 +116,7 @@ export class WatchView extends LitElement {
               .window=${route.window}
               .now=${now}
               .cursor=${this.cursor}
+              .excursions=${this.#excursions.value?.excursions ?? []}
               .chosen=${this.chosen[stream.id]}
               @chart-gesture=${(event: CustomEvent<ChartGesture>) => this.#answer(event.detail, stream.id)}
               @choose-property=${({ detail }: CustomEvent<string>) => this.#choose(stream.id, detail)}
@@ -111,6 +128,22 @@ export class WatchView extends LitElement {
         move the cursor, Page Up and Page Down pan, + and − zoom, Enter opens the reading.
       </p>
     `;
+  }
+
+  /** Asked for in steps of a quarter of the window, so that a live window does not ask at every tick. */
+  #wantExcursions(now: number): void {
+    const { from, to } = edges(this.route.window, now);
+    const step = (to - from) / 4;
+    const first = Math.floor(from / step) * step;
+    this.#excursions.want(`${Math.floor(first)} ${Math.ceil(first + 6 * step)}`);
+  }
+
+  /** One that has ended leaves the stream's open ones: its end is asked for. */
+  #heardEvents(): void {
+    const newest = this.feed.events.at(-1)?.cursor ?? 0;
+    if (newest === this.#cursorOfEvents) return;
+    this.#cursorOfEvents = newest;
+    this.#excursions.refresh();
   }
 
   #empty() {

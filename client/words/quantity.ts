@@ -61,6 +61,30 @@ export function axisUnit(unit: "nm" | "cm-1"): string {
   return unit === "nm" ? "nm" : "cm⁻¹";
 }
 
+const superscripts = "⁰¹²³⁴⁵⁶⁷⁸⁹";
+
+/**
+ * A number without a unit of its own (a statistic, an absorbance) in `digits` significant digits; very small and very large ones as a power
+ * of ten: "0.00252", "8.1 × 10⁻⁶".
+ */
+export function figure(value: number, digits = 3): string {
+  if (value === 0) return "0";
+  if (!Number.isFinite(value)) return "—";
+  const size = Math.abs(value);
+  const sign = value < 0 ? "−" : "";
+  if (size >= 0.001 && size < 100_000) return sign + String(Number(size.toPrecision(digits)));
+  const [mantissa, exponent] = size.toExponential(digits - 1).split("e");
+  const raised = [...exponent.replace("+", "")]
+    .map((each) => (each === "-" ? "⁻" : superscripts[Number(each)]))
+    .join("");
+  return `${sign}${Number(mantissa)} × 10${raised}`;
+}
+
+/** A name at the beginning of a line: "ethyl acetate" → "Ethyl acetate". */
+export function named(name: string): string {
+  return name.slice(0, 1).toUpperCase() + name.slice(1);
+}
+
 /** "1 reading", "3 readings". */
 export function counted(count: number, one: string, many = `${one}s`): string {
   return `${grouped(count)} ${count === 1 ? one : many}`;
