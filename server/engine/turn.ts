@@ -187,7 +187,7 @@ class TurnBuilder {
       this.#excursions.push(...silentExcursions);
       const known = this.#isKnown(load.stream, reading, undefined);
       const [next, judgement] = judge(silent, { reading, receivedAt, known }, rules);
-      state = next;
+      state = unattended(next);
       if (judgement.kind === "repeat") counts.repeated++;
       else if (judgement.kind === "refused") {
         counts.refused++;
@@ -296,6 +296,13 @@ class TurnBuilder {
       this.#events.push({ cursor: ++this.#cursor, ...note, ...(history ? { history: true } : {}) });
     }
   }
+}
+
+/** Nobody was there to acknowledge what history raised: an alarm that returned to normal is done, and does not wait to be raised "again". */
+function unattended(state: StreamState): StreamState {
+  const returned = Object.values(state.alarms).some(({ active }) => !active);
+  if (!returned) return state;
+  return { ...state, alarms: Object.fromEntries(Object.entries(state.alarms).filter(([, { active }]) => active)) };
 }
 
 /** A stream's present picture, as the screens get it. */

@@ -56,20 +56,20 @@ export function sqliteReader(file: string): StoreReader {
         "SELECT json FROM limit_set WHERE stream = ? AND version <= ? ORDER BY version DESC LIMIT 1",
       )
       .pluck(),
-    totals: db.prepare<[string | null], { stream: string; reason: string; count: number }>(
-      "SELECT stream, reason, count FROM refusal_total WHERE ?1 IS NULL OR stream = ?1 ORDER BY stream, reason",
+    totals: db.prepare<Named, { stream: string; reason: string; count: number }>(
+      "SELECT stream, reason, count FROM refusal_total WHERE @stream IS NULL OR stream = @stream ORDER BY stream, reason",
     ),
-    refusals: db.prepare<[string | null, number], RefusalRow>(
-      "SELECT id, stream, topic, received, last, count, reason, says FROM refusal WHERE ?1 IS NULL OR stream = ?1 ORDER BY last DESC, id DESC LIMIT ?2",
+    refusals: db.prepare<Named, RefusalRow>(
+      "SELECT id, stream, topic, received, last, count, reason, says FROM refusal WHERE @stream IS NULL OR stream = @stream ORDER BY last DESC, id DESC LIMIT @limit",
     ),
     events: db
-      .prepare<[string | null, number, number, number], string>(
-        "SELECT json FROM event WHERE (?1 IS NULL OR stream = ?1) AND cursor > ?2 AND cursor < ?3 ORDER BY cursor DESC LIMIT ?4",
+      .prepare<Named, string>(
+        "SELECT json FROM event WHERE (@stream IS NULL OR stream = @stream) AND cursor > @after AND cursor < @before ORDER BY cursor DESC LIMIT @limit",
       )
       .pluck(),
     excursions: db
-      .prepare<[string | null, number, number, number], string>(
-        "SELECT json FROM excursion WHERE (?1 IS NULL OR stream = ?1) AND last >= ?2 AND start < ?3 ORDER BY start DESC LIMIT ?4",
+      .prepare<Named, string>(
+        "SELECT json FROM excursion WHERE (@stream IS NULL OR stream = @stream) AND last >= @from AND start < @to ORDER BY start DESC LIMIT @limit",
       )
       .pluck(),
     extent: db.prepare<[number], { readings: number; first: number | null }>(
@@ -117,8 +117,8 @@ export function sqliteReader(file: string): StoreReader {
     trend: (stream, properties, from, to, points) => trend(stream, streamKey(stream), properties, from, to, points),
     refusals(stream, limit) {
       return {
-        totals: sql.totals.all(stream ?? null),
-        latest: sql.refusals.all(stream ?? null, limit).map(({ received, last, ...row }) => ({
+        totals: sql.totals.all({ stream: stream ?? null }),
+        latest: sql.refusals.all({ stream: stream ?? null, limit }).map(({ received, last, ...row }) => ({
           ...row,
           stream: row.stream === "" ? null : row.stream,
           receivedAt: received,
@@ -127,10 +127,14 @@ export function sqliteReader(file: string): StoreReader {
       };
     },
     events({ stream, after = 0, before = Number.MAX_SAFE_INTEGER, limit }) {
-      return sql.events.all(stream ?? null, after, before, limit).map((json) => JSON.parse(json) as RecordedEvent);
+      return sql.events
+        .all({ stream: stream ?? null, after, before, limit })
+        .map((json) => JSON.parse(json) as RecordedEvent);
     },
     excursions({ stream, from = 0, to = Number.MAX_SAFE_INTEGER, limit }) {
-      return sql.excursions.all(stream ?? null, from, to, limit).map((json) => JSON.parse(json) as Excursion);
+      return sql.excursions
+        .all({ stream: stream ?? null, from, to, limit })
+        .map((json) => JSON.parse(json) as Excursion);
     },
     limitSet(stream, version = Number.MAX_SAFE_INTEGER) {
       const json = sql.limitSet.get(streamKey(stream), version);
@@ -141,6 +145,8 @@ export function sqliteReader(file: string): StoreReader {
     close: () => void db.close(),
   };
 }
+
+type Named = Record<string, string | number | null>;
 
 interface RefusalRow {
   id: number;
