@@ -7,7 +7,7 @@ import { endOf, spawnSimulator } from "./simulator-process.ts";
 /** How the invented plant's chemometrician calibrates each stream. */
 const calibrations = [
   { stream: "bq-201", properties: ["ethanol", "water"], steps: "savitzky-golay 15 2 1; center" },
-  { stream: "bq-305", properties: ["ethyl acetate", "ethanol", "water"], steps: "snv; savitzky-golay 15 2 1; center" },
+  { stream: "bq-305", properties: ["ethyl acetate", "ethanol", "water"], steps: "savitzky-golay 15 2 1; center" },
   { stream: "bq-410", properties: ["water"], steps: "snv; savitzky-golay 15 2 1; center" },
 ];
 
