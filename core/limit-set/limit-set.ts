@@ -1,5 +1,5 @@
 import { type Static, Type } from "typebox";
-import { PrioritySchema } from "../messages/alarm.ts";
+import { PrioritySchema } from "../messages/index.ts";
 
 /** One statistic's limit: the number in force, and where it came from. The number rules; method and confidence say how to make it again. */
 export const StatisticLimitSchema = Type.Object({

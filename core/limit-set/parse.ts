@@ -1,5 +1,5 @@
 import { MillraceError, type Mismatch, mismatchSentence } from "../errors.ts";
-import { checker } from "../messages/check.ts";
+import { checker } from "../messages/index.ts";
 import {
   type AlarmRule,
   type AlarmRulesFile,

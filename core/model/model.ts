@@ -1,5 +1,5 @@
 import { type Static, Type } from "typebox";
-import { AxisSpecSchema } from "../messages/reading.ts";
+import { AxisSpecSchema } from "../messages/index.ts";
 import { FittedStepSchema } from "../spectrum/index.ts";
 
 const numbers = Type.Array(Type.Number());

@@ -1,5 +1,5 @@
 import { MillraceError, type Mismatch, mismatchSentence } from "../errors.ts";
-import type { AxisSpec } from "../messages/reading.ts";
+import type { AxisSpec } from "../messages/index.ts";
 
 /** Where the values of a spectrum stand: strictly ascending or strictly descending, all above zero. */
 export interface Axis {
