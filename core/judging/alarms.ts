@@ -15,7 +15,7 @@ import type { Judged, OpenAlarm } from "../messages/index.ts";
 import type { StreamRules } from "./judge.ts";
 import type { Note } from "./notes.ts";
 import type { StreamState } from "./state.ts";
-import { extrapolatedWords, short, sparseWords, unfamiliarWords } from "./words.ts";
+import { extrapolatedWords, nothingExplained, short, sparseWords, unfamiliarWords } from "./words.ts";
 
 /** One judged reading through every alarm of its stream. Pure. */
 export function runAlarms(
@@ -215,9 +215,9 @@ function evidence(rule: AlarmRule, judged: Judged, rules: StreamRules): string {
       return `${watches.property} ${short(value)}\u202f${unit}, ${isUpper(watches) ? "above" : "below"} ${watches.limit}\u202f${unit}.`;
     }
     case "unfamiliar":
-      return `Q ${short(judged.ratios.q ?? Number.NaN)} × limit. ${unfamiliarWords(rules.scorer?.regions().qRegions ?? [])}`;
+      return `Q ${short(judged.ratios.q ?? Number.NaN)} × limit. ${unfamiliarWords(rules.scorer?.explained() ?? nothingExplained)}`;
     case "extrapolated":
-      return `T² ${short(judged.ratios.t2 ?? Number.NaN)} × limit. ${extrapolatedWords(rules.scorer?.regions().t2Regions ?? [])}`;
+      return `T² ${short(judged.ratios.t2 ?? Number.NaN)} × limit. ${extrapolatedWords(rules.scorer?.explained() ?? nothingExplained)}`;
     case "sparse":
       return sparseWords;
     case "unusable share":

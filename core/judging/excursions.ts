@@ -3,7 +3,7 @@ import type { Excursion, Judged } from "../messages/index.ts";
 import type { StreamRules } from "./judge.ts";
 import type { Note } from "./notes.ts";
 import type { StreamState } from "./state.ts";
-import { extrapolatedWords, short, sparseWords, unfamiliarWords } from "./words.ts";
+import { extrapolatedWords, nothingExplained, short, sparseWords, unfamiliarWords } from "./words.ts";
 
 interface Look {
   kind: string;
@@ -64,15 +64,15 @@ export function openExcursions(state: StreamState, rules: StreamRules): Excursio
 }
 
 function looks(judged: Judged, rules: StreamRules): Look[] {
-  const regions = () => rules.scorer?.regions() ?? { qRegions: [], t2Regions: [] };
+  const explained = () => rules.scorer?.explained() ?? nothingExplained;
   const statistic = (kind: string, ratio: number | null, describe: () => string): Look => ({
     kind,
     outcome: ratio === null ? undefined : ratio > 1 ? beyond(judged, ratio, ratio, "× limit") : "within",
     describe,
   });
   return [
-    statistic("unfamiliar", judged.ratios.q, () => unfamiliarWords(regions().qRegions)),
-    statistic("extrapolated", judged.ratios.t2, () => extrapolatedWords(regions().t2Regions)),
+    statistic("unfamiliar", judged.ratios.q, () => unfamiliarWords(explained())),
+    statistic("extrapolated", judged.ratios.t2, () => extrapolatedWords(explained())),
     statistic(
       "sparse",
       judged.verdict.includes("sparse") || judged.ratios.nearest === null ? judged.ratios.nearest : 0,

@@ -10,7 +10,7 @@ export {
   verdictOf,
 } from "./judge.ts";
 export type { Note } from "./notes.ts";
-export { Scorer } from "./scorer.ts";
+export { explainedOf, Scorer } from "./scorer.ts";
 export { freshState, type StreamState } from "./state.ts";
 export type { ValidityRules } from "./validity.ts";
 export { grouped, rangeWords, readingWords, short } from "./words.ts";

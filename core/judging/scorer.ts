@@ -1,6 +1,13 @@
-import type { AxisSpec, Region } from "../messages/index.ts";
-import { type CompiledModel, explain, newScore, type Score, scoreInto } from "../pls/index.ts";
+import type { AxisSpec } from "../messages/index.ts";
+import { type CompiledModel, type Explanation, explain, newScore, type Score, scoreInto } from "../pls/index.ts";
 import { axisFromSpec, resampler, sameAxis } from "../spectrum/index.ts";
+import type { Explained } from "./words.ts";
+
+/** What the words about a reading are made of. */
+export function explainedOf({ qRegions, t2Regions }: Explanation, { model }: CompiledModel): Explained {
+  const slopes = model.steps.some((step) => step.step === "savitzky-golay" && step.derivative > 0);
+  return { qRegions, t2Regions, slopes };
+}
 
 type Bring = (values: Float64Array, out: Float64Array) => void;
 
@@ -44,9 +51,8 @@ export class Scorer {
   }
 
   /** Which regions make T² and Q of the spectrum that was scored last. */
-  regions(): { qRegions: Region[]; t2Regions: Region[] } {
-    const { qRegions, t2Regions } = explain(this.onAxis, this.compiled);
-    return { qRegions, t2Regions };
+  explained(): Explained {
+    return explainedOf(explain(this.onAxis, this.compiled), this.compiled);
   }
 
   #bringInto(values: Float64Array, axis: AxisSpec | undefined, out: Float64Array): void {

@@ -22,17 +22,24 @@ export function rangeWords({ from, to, unit }: Pick<Region, "from" | "to" | "uni
   return low === high ? `${grouped(low)} ${unitWord[unit]}` : `${grouped(low)}–${grouped(high)} ${unitWord[unit]}`;
 }
 
+/** What the words are made of. */
+export interface Explained {
+  qRegions: readonly Region[];
+  t2Regions: readonly Region[];
+  /** the model's steps take a derivative: a residual then tells of a slope, and "more" or "less" would be wrong */
+  slopes: boolean;
+}
+
 /** "1 724–1 768 nm gives 81 % of Q: more absorption than the model can explain." Says where it differs, never what causes it. */
-export function unfamiliarWords(regions: readonly Region[]): string {
-  const [first] = regions;
+export function unfamiliarWords({ qRegions: [first], slopes }: Explained): string {
   if (!first) return "No region of the spectrum stands out in Q.";
-  const how = first.sign >= 0 ? "more" : "less";
-  return `${rangeWords(first)} gives ${percent(first.share)} of Q: ${how} absorption than the model can explain.`;
+  const how = slopes ? "a shape" : first.sign >= 0 ? "more absorption" : "less absorption";
+  const than = slopes ? "that the calibration never saw" : "than the model can explain";
+  return `${rangeWords(first)} gives ${percent(first.share)} of Q: ${how} ${than}.`;
 }
 
 /** "1 180–1 220 nm gives 54 % of T²: the known ingredients are in amounts outside the calibration." */
-export function extrapolatedWords(regions: readonly Region[]): string {
-  const [first] = regions;
+export function extrapolatedWords({ t2Regions: [first] }: Explained): string {
   const where = first ? `${rangeWords(first)} gives ${percent(first.share)} of T²: ` : "";
   return `${where}known ingredients, in amounts outside the calibration.`;
 }
@@ -44,20 +51,19 @@ function percent(share: number): string {
 }
 
 /** One sentence for a judged reading: its worst verdict first, with what made it. */
-export function readingWords(
-  judged: Judged,
-  explained?: { qRegions: readonly Region[]; t2Regions: readonly Region[] },
-): string {
+export function readingWords(judged: Judged, explained: Explained): string {
   switch (judged.verdict[0]) {
     case "unusable":
       return `Not a valid spectrum: ${judged.unusable ?? "no reason recorded"}.`;
     case "unfamiliar":
-      return unfamiliarWords(explained?.qRegions ?? []);
+      return unfamiliarWords(explained);
     case "extrapolated":
-      return extrapolatedWords(explained?.t2Regions ?? []);
+      return extrapolatedWords(explained);
     case "sparse":
       return sparseWords;
     default:
       return "Like the calibration samples: the model has seen spectra of this kind, in these amounts.";
   }
 }
+
+export const nothingExplained: Explained = { qRegions: [], t2Regions: [], slopes: false };

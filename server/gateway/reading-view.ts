@@ -1,4 +1,4 @@
-import { readingWords } from "../../core/judging/index.ts";
+import { explainedOf, readingWords } from "../../core/judging/index.ts";
 import type { LimitSet } from "../../core/limit-set/index.ts";
 import type { ReadingView } from "../../core/messages/index.ts";
 import { parseModel } from "../../core/model/index.ts";
@@ -39,7 +39,7 @@ export class ReadingExplainer {
       spectrum: shownValues(spectrum ?? stored.values),
       calibration: compiled?.model.band ?? null,
       ...(explained && {
-        explanation: { ...explained, says: readingWords(judged, explained) },
+        explanation: { ...explained, says: readingWords(judged, explainedOf(explained, compiled!)) },
       }),
       ...samplesOf(compiled, limits),
     };
