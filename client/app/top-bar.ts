@@ -7,7 +7,7 @@ import { defaultWindow, href, type Route, type ViewName } from "./route.ts";
 import { chooseTheme, chosenTheme, type ThemeChoice, themes } from "./theme-choice.ts";
 
 const themeNames: Record<ThemeChoice, string> = {
-  system: "light or dark: as the system",
+  system: "as system",
   light: "light",
   dark: "dark",
 };
@@ -91,7 +91,7 @@ export class TopBar extends LitElement {
         display: flex;
         flex-wrap: wrap;
         align-items: center;
-        gap: 4px 20px;
+        gap: 4px 16px;
       }
       .counts {
         display: flex;
@@ -157,7 +157,7 @@ export class TopBar extends LitElement {
     const { plant, now, time, linkUp } = this;
     const { name, role } = plant.person;
     return html`<header>
-      <div class="site">${plant.name} ${plant.demo ? html`<small title="Nothing on these screens is measured.">demonstration: an invented plant</small>` : nothing}</div>
+      <div class="site">${plant.name} ${plant.demo ? html`<small title="Nothing on these screens is measured.">demo: invented plant</small>` : nothing}</div>
       <nav aria-label="Views">
         <ul>
           ${views.map(

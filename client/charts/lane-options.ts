@@ -26,7 +26,7 @@ export function laneOptions(options: LaneOptions): uPlot.Options {
   const { width, height, scale, time } = options;
   const layout = laneLayout(height);
   const [low, high] = scale;
-  const step = valueStep(low, high, Math.max(2, Math.floor((layout.trendBottom - layout.trendTop) / 30)));
+  const step = valueStep(low, high, Math.max(3, Math.floor((layout.trendBottom - layout.trendTop) / 30)));
   const most = Math.max(2, Math.floor((width - leftGutter - rightGutter) / 84));
   const stroke = () => options.colour("quiet");
   const ticks = { show: true, size: 4, width: 1, stroke: () => options.colour("rule") };
@@ -72,8 +72,11 @@ export function laneOptions(options: LaneOptions): uPlot.Options {
         splits: (_, __, from, to) => timeTicks(from, to, timeStep(to - from, most), time),
         values: (u, splits) => {
           const { min, max } = u.scales["x"];
-          const stepMs = timeStep((max as number) - (min as number), most);
-          return splits.map((at) => tickLabel(at, stepMs, time));
+          const spanMs = (max as number) - (min as number);
+          const stepMs = timeStep(spanMs, most);
+          // The word at the edge ("now", "stopped") needs the room.
+          const clear = (spanMs * 26) / (width - leftGutter - rightGutter);
+          return splits.map((at) => ((max as number) - at > clear ? tickLabel(at, stepMs, time) : ""));
         },
       },
       {

@@ -11,6 +11,16 @@ export interface TrendWish {
   points: number;
 }
 
+/** A stretch that was asked for. `to` is ∞ where it reached the present: from then on the live link keeps it complete. */
+interface Stretch {
+  stream: string;
+  from: number;
+  to: number;
+  /** ms a point */
+  fineness: number;
+  whole: boolean;
+}
+
 /** The wish is widened by this share of its span on either side, so that a small pan shows data at once. */
 const margin = 0.3;
 const settleMs = 120;
@@ -23,21 +33,19 @@ const retryMs = 2000;
 export class TrendLoader implements ReactiveController {
   trend: HeldTrend | undefined;
   error: Error | undefined;
-  loading = false;
   /** goes up with every change of `trend`: charts compare it */
   version = 0;
   readonly #host: ReactiveControllerHost;
   readonly #feed: () => Feed;
   readonly #stream: () => Pick<PlantStream, "id" | "gapMs">;
   #wish: TrendWish | undefined;
-  /** how fine the held trend is, ms a point */
-  #fineness = 0;
-  #heldFrom = 0;
-  #heldTo = 0;
-  #held: string | undefined;
-  #timer: ReturnType<typeof setTimeout> | undefined;
+  #held: Stretch | undefined;
+  #asked: Stretch | undefined;
   #abort: AbortController | undefined;
+  #timer: ReturnType<typeof setTimeout> | undefined;
+  /** readings that came while a request was under way: the answer may not have them yet */
   #waiting: Judged[] = [];
+  #listensTo: string | undefined;
   #close: (() => void) | undefined;
 
   constructor(host: ReactiveControllerHost, feed: () => Feed, stream: () => Pick<PlantStream, "id" | "gapMs">) {
@@ -47,72 +55,85 @@ export class TrendLoader implements ReactiveController {
     host.addController(this);
   }
 
+  get loading(): boolean {
+    return this.#asked !== undefined;
+  }
+
   hostConnected(): void {
     this.#listen();
   }
 
   hostDisconnected(): void {
     this.#close?.();
-    this.#close = undefined;
-    this.#abort?.abort();
-    clearTimeout(this.#timer);
+    this.#listensTo = undefined;
+    this.#forget();
   }
 
   /** Says what the screen shows now. Cheap: it may be called on every drawing. */
   want(wish: TrendWish): void {
     this.#wish = wish;
-    if (this.#held !== this.#stream().id) {
-      this.trend = undefined;
+    if (this.#listensTo !== this.#stream().id) {
+      this.#forget();
       this.#listen();
-      this.#schedule(0);
-    } else if (this.#isOutgrown(wish)) this.#schedule(this.trend ? settleMs : 0);
+    }
+    if (!this.#serves(this.#asked ?? this.#held, wish)) this.#schedule(this.trend ? settleMs : 0);
+  }
+
+  /** Lets go of everything that belongs to another stream, or to a time when nobody listened. */
+  #forget(): void {
+    this.#abort?.abort();
+    clearTimeout(this.#timer);
+    this.#timer = undefined;
+    this.#asked = undefined;
+    this.#held = undefined;
+    this.trend = undefined;
+    this.error = undefined;
   }
 
   #listen(): void {
     this.#close?.();
-    this.#close = this.#feed().watchReadings(this.#stream().id, (readings, missed) => {
-      if (missed) this.#schedule(settleMs, true);
-      if (this.loading) this.#waiting.push(...readings);
-      if (this.trend) this.#append(readings);
+    const { id } = this.#stream();
+    this.#listensTo = id;
+    this.#close = this.#feed().watchReadings(id, (readings, missed) => {
+      if (missed) this.#schedule(settleMs);
+      if (this.#asked) this.#waiting.push(...readings);
+      this.#append(readings);
     });
   }
 
   #append(readings: readonly Judged[]): void {
     const { trend } = this;
-    if (!trend) return;
+    if (!trend || this.#held?.to !== Number.POSITIVE_INFINITY) return;
     let changed = false;
     for (const judged of readings) changed = appendInPlace(trend, judged, this.#stream().gapMs) || changed;
     if (!changed) return;
-    // A live window moves on: let go of what has left it, a little at a time.
-    const wish = this.#wish;
-    if (wish && trend.time[0] < wish.from - (wish.to - wish.from) * margin * 2) {
-      const keep = wish.from - (wish.to - wish.from) * margin;
-      trimInPlace(trend, keep);
-      this.#heldFrom = Math.max(this.#heldFrom, keep);
-    }
-    this.#heldTo = Math.max(this.#heldTo, trend.to);
+    this.#trim(trend, this.#held);
     this.version += 1;
     this.#host.requestUpdate();
   }
 
-  #isOutgrown({ from, to, points }: TrendWish): boolean {
-    if (!this.trend && !this.error) return true;
-    if (this.error) return false; // its own retry is under way
-    const now = this.#feed().now();
-    const fineness = (to - from) / points;
-    if (from < this.#heldFrom - 1) return true;
-    if (Math.min(to, now) > this.#heldTo + Math.max(60_000, (to - from) * 0.02) && to < now - 60_000) return true;
-    if (this.trend?.whole) return fineness > this.#fineness * 4;
-    return fineness < this.#fineness * 0.7 || fineness > this.#fineness * 2;
+  /** A live window moves on: let go of what has left it. */
+  #trim(trend: HeldTrend, held: Stretch): void {
+    if (!this.#wish) return;
+    const spanMs = this.#wish.to - this.#wish.from;
+    if (trend.time[0] >= this.#wish.from - spanMs * margin * 2) return;
+    held.from = Math.max(held.from, this.#wish.from - spanMs * margin);
+    trimInPlace(trend, held.from);
   }
 
-  #schedule(afterMs: number, evenIfLoading = false): void {
-    if (this.#timer !== undefined || (this.loading && !evenIfLoading && this.#held === this.#stream().id)) {
-      if (afterMs > 0) return;
-    }
-    clearTimeout(this.#timer);
-    this.#held = this.#stream().id;
-    this.#timer = setTimeout(() => {
+  #serves(stretch: Stretch | undefined, { from, to, points }: TrendWish): boolean {
+    if (!stretch || stretch.stream !== this.#stream().id) return false;
+    const slack = (to - from) / points;
+    if (from < stretch.from - slack || Math.min(to, this.#feed().now()) > stretch.to + slack) return false;
+    const fineness = (to - from) / points;
+    // Every reading is held: whoever looks closer needs nothing more.
+    const tooCoarse = !stretch.whole && stretch.fineness > fineness * 1.5;
+    return !tooCoarse && stretch.fineness > fineness / 4;
+  }
+
+  /** Asks soon. What is scheduled already stays: a window that is dragged on and on must not put the asking off for ever. */
+  #schedule(afterMs: number): void {
+    this.#timer ??= setTimeout(() => {
       this.#timer = undefined;
       void this.#load();
     }, afterMs);
@@ -124,33 +145,35 @@ export class TrendLoader implements ReactiveController {
     this.#abort?.abort();
     const abort = new AbortController();
     this.#abort = abort;
-    const { id } = this.#stream();
     const spanMs = wish.to - wish.from;
+    const now = this.#feed().now();
     const from = wish.from - spanMs * margin;
-    const to = Math.min(wish.to + spanMs * margin, this.#feed().now());
+    const to = Math.min(wish.to + spanMs * margin, now);
     const points = Math.min(2000, Math.ceil((wish.points * (to - from)) / spanMs));
-    this.loading = true;
+    const asked: Stretch = {
+      stream: this.#stream().id,
+      from,
+      to: to >= now ? Number.POSITIVE_INFINITY : to,
+      fineness: (to - from) / points,
+      whole: false,
+    };
+    this.#asked = asked;
     this.#waiting = [];
     try {
-      const trend = await api.trend(id, from, to, points, abort.signal);
+      const trend = await api.trend(asked.stream, from, to, points, abort.signal);
+      this.#asked = undefined;
+      this.#held = { ...asked, whole: trend.whole };
       this.trend = held(trend);
       this.error = undefined;
-      this.#fineness = (to - from) / points;
-      this.#heldFrom = from;
-      this.#heldTo = to;
       this.version += 1;
       this.#append(this.#waiting);
     } catch (error) {
       if (abort.signal.aborted) return;
+      this.#asked = undefined;
       this.error = error as Error;
-      this.#timer = setTimeout(() => {
-        this.#timer = undefined;
-        void this.#load();
-      }, retryMs);
+      this.#schedule(retryMs);
     }
-    this.loading = false;
     this.#waiting = [];
     this.#host.requestUpdate();
-    if (this.#wish && this.#isOutgrown(this.#wish)) this.#schedule(settleMs);
   }
 }

@@ -104,7 +104,7 @@ export class AlarmCard extends LitElement {
         return html`raised ${whole(alarm.raisedAt)} · gone since
         ${alarm.clearedAt ? whole(alarm.clearedAt) : "then"} · not acknowledged`;
       default:
-        return html`since ${whole(alarm.since)}, for ${age} · not acknowledged`;
+        return html`since ${whole(alarm.since)}, ${age} · not acknowledged`;
     }
   }
 

@@ -76,7 +76,7 @@ export class LaneNumber extends LitElement {
         display: flex;
         gap: 6px;
         align-items: flex-start;
-        margin-top: 4px;
+        margin-top: 8px;
       }
       .verdict mill-verdict-mark {
         margin: -5px 0 0 -2px;

@@ -59,9 +59,14 @@ export class ExcursionsView extends LitElement {
       }
       .kind {
         display: flex;
-        align-items: center;
         gap: 6px;
         white-space: nowrap;
+      }
+      td {
+        vertical-align: top;
+      }
+      .kind mill-verdict-mark {
+        margin-top: -6px;
       }
       td.says {
         min-width: 26ch;

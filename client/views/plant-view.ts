@@ -127,6 +127,9 @@ export class PlantView extends LitElement {
   #stream(stream: PlantStream, now: number, feed: Feed) {
     const state = feed.of(stream.id);
     const trouble = state?.trouble ?? stream.trouble;
+    const refused = (this.#refusals.value?.totals ?? [])
+      .filter((total) => total.stream === stream.id)
+      .reduce((sum, { count }) => sum + count, 0);
     const fresh = freshness({
       now,
       linkUp: feed.linkUp,
@@ -167,7 +170,7 @@ export class PlantView extends LitElement {
         }
       </td>
       <td class="number">${stream.limitSet}</td>
-      <td class="number">${grouped(state?.refused ?? 0)}</td>
+      <td class="number">${grouped(refused)}</td>
     </tr>`;
   }
 

@@ -259,6 +259,7 @@ export class ReadingView extends LitElement {
 
   #values(stream: PlantStream, { judged }: ReadingAnswer) {
     const inside = judged.verdict[0] === "inside";
+    const lastInside = this.feed.of(stream.id)?.lastInside;
     return html`<section>
       <h2>${inside ? "Predicted" : "Predicted, not to be believed"}</h2>
       <table>
@@ -266,7 +267,8 @@ export class ReadingView extends LitElement {
           ${stream.properties.map((property) => {
             const prediction = judged.properties[property.name];
             const value = prediction?.value ?? null;
-            const decimals = decimalsFor(prediction?.uncertainty ?? (property.scale[1] - property.scale[0]) / 100);
+            const known = prediction?.uncertainty ?? lastInside?.properties[property.name]?.uncertainty;
+            const decimals = decimalsFor(known ?? (property.scale[1] - property.scale[0]) / 100);
             const around = inside && prediction?.uncertainty ? ` ± ${fixed(prediction.uncertainty, decimals)}` : "";
             return html`<tr>
               <td>${named(property.name)}</td>

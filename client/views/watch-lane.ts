@@ -56,7 +56,7 @@ export class WatchLane extends LitElement {
     css`
       :host {
         display: grid;
-        grid-template-columns: 232px minmax(0, 1fr) 268px;
+        grid-template-columns: 232px minmax(0, 1fr) 292px;
         background: var(--lane);
         border: 1px solid var(--rule);
         border-radius: 6px;
@@ -70,7 +70,7 @@ export class WatchLane extends LitElement {
         padding: 10px 14px;
         border-left: 1px solid var(--rule);
         display: grid;
-        gap: 12px;
+        gap: 10px;
         align-content: start;
       }
       .chart {

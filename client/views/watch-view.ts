@@ -63,7 +63,7 @@ export class WatchView extends LitElement {
         flex: 1;
         display: grid;
         gap: 8px;
-        grid-auto-rows: minmax(min-content, 1fr);
+        grid-auto-rows: auto;
       }
       .one {
         margin-bottom: 8px;
