@@ -95,8 +95,8 @@ export function calibrate(set: CalibrationSet, options: CalibrationOptions): Cal
 }
 
 /** What was found at every number of components that was tried, beside what was kept at the chosen one. */
-function sizesOf({ components, predicted, q, t2 }: CrossValidation) {
-  return { components, predicted, q, t2 };
+function sizesOf({ components, predicted, q, t2, scores, yScores }: CrossValidation) {
+  return { components, predicted, q, t2, scores, yScores };
 }
 
 function checkSet({ spectra, y, propertyNames }: CalibrationSet): void {

@@ -34,6 +34,10 @@ export interface CrossValidation {
   q: Float64Array[];
   /** T² by number of components, each with the covariance of its own fit: n each */
   t2: Float64Array[];
+  /** t of each sample by the fit without it: n × components */
+  scores: Float64Array[];
+  /** u of each sample by that fit, from the y that is left before each component: n × components */
+  yScores: Float64Array[];
   /** at `keepAt`: the residual spectra n × channels, and each segment's coefficients B, m × channels */
   kept?: { residuals: Float64Array[]; coefficients: Float64Array[][] };
 }
@@ -53,6 +57,8 @@ export function crossValidate(set: CalibrationSet, options: CrossValidationOptio
   const predicted = Array.from({ length: limit + 1 }, () => blank(n, set.y[0].length));
   const q = blank(limit + 1, n);
   const t2 = blank(limit + 1, n);
+  const scores = blank(n, limit);
+  const yScores = blank(n, limit);
   const residuals: Float64Array[] = [];
   const coefficients: Float64Array[][] = [];
   let reached = limit;
@@ -61,11 +67,15 @@ export function crossValidate(set: CalibrationSet, options: CrossValidationOptio
     reached = Math.min(reached, fit.components);
     const variances = scoreVariances(fit);
     segment.forEach((i, k) => {
-      walkComponents(heldOut[k], fit, variances, reached, options.keepAt, {
+      walkComponents(heldOut[k], set.y[i], fit, variances, reached, options.keepAt, {
         visit(a, yHat, qHere, t2Here) {
           predicted[a][i].set(yHat);
           q[a][i] = qHere;
           t2[a][i] = t2Here;
+        },
+        component(a, t, u) {
+          scores[i][a] = t;
+          yScores[i][a] = u;
         },
         keep(residual) {
           residuals[i] = residual;
@@ -80,6 +90,8 @@ export function crossValidate(set: CalibrationSet, options: CrossValidationOptio
     predicted: predicted.slice(0, reached + 1),
     q: q.slice(0, reached + 1),
     t2: t2.slice(0, reached + 1),
+    scores: scores.map((row) => row.slice(0, reached)),
+    yScores: yScores.map((row) => row.slice(0, reached)),
     ...(options.keepAt !== undefined && options.keepAt <= reached && { kept: { residuals, coefficients } }),
   };
 }
@@ -114,17 +126,19 @@ function fitWithout(
 
 interface Visitor {
   visit(a: number, yHat: Float64Array, q: number, t2: number): void;
+  component(a: number, t: number, u: number): void;
   keep(residual: Float64Array): void;
 }
 
 /** Takes one held-out spectrum through the components, deflating it as the calibration spectra were. */
 function walkComponents(
   spectrum: Float64Array,
+  y: Float64Array,
   { weights, loadings, yLoadings, yMean, yDeviation }: PlsFit,
   variances: Float64Array,
   most: number,
   keepAt: number | undefined,
-  { visit, keep }: Visitor,
+  { visit, component, keep }: Visitor,
 ): void {
   const e = Float64Array.from(spectrum);
   const yHat = Float64Array.from(yMean);
@@ -134,6 +148,9 @@ function walkComponents(
     if (a === keepAt) keep(Float64Array.from(e));
     if (a >= most) return;
     const t = dot(e, weights[a]);
+    let u = 0;
+    for (let k = 0; k < yHat.length; k++) u += ((y[k] - yHat[k]) / yDeviation[k]) * yLoadings[a][k];
+    component(a, t, u / dot(yLoadings[a], yLoadings[a]));
     for (let j = 0; j < e.length; j++) e[j] -= t * loadings[a][j];
     for (let k = 0; k < yHat.length; k++) yHat[k] += t * yLoadings[a][k] * yDeviation[k];
     t2 += (t * t) / variances[a];

@@ -3,6 +3,12 @@ export { type CalibrationPlaces, calibrationPlaces } from "./calibration-places.
 export { type CompiledModel, type CompiledProperty, compileModel } from "./compile-model.ts";
 export { predictionContributions, qContributions, t2Contributions } from "./contributions.ts";
 export { type CalibrationSet, type CrossValidation, crossValidate } from "./cross-validate.ts";
+export { type Diagnostics, diagnose } from "./diagnostics/diagnose.ts";
+export type { ExplainedVariance } from "./diagnostics/explained-variance.ts";
+export type { SampleInfluence } from "./diagnostics/influence.ts";
+export { type InnerRelation, innerRelation } from "./diagnostics/inner-relation.ts";
+export { jackKnifeError } from "./diagnostics/jack-knife.ts";
+export { vip } from "./diagnostics/vip.ts";
 export { type ErrorStatistics, errorStatistics } from "./error-statistics.ts";
 export { type Explanation, explain } from "./explain.ts";
 export { FitError } from "./fit-error.ts";

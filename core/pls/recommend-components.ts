@@ -13,7 +13,7 @@ export interface Recommendation {
   leastAt: number;
   /** the mean squared error that the recommended model had to stay within: least + its standard error */
   threshold: number;
-  /** in words */
+  /** why, in words that follow the number */
   says: string;
 }
 
@@ -56,7 +56,7 @@ export function recommendComponents(
   );
   const says =
     components === leastAt
-      ? `${components}: the least cross-validated error, and no smaller model comes within one standard error of it`
-      : `${components}: the smallest model within one standard error of the least cross-validated error, which ${leastAt} components have`;
+      ? "the least cross-validated error, and no smaller model comes within one standard error of it"
+      : `the smallest model within one standard error of the least cross-validated error, which ${leastAt} components have`;
   return { components, leastAt, threshold, says };
 }

@@ -1,12 +1,17 @@
 import { basename } from "node:path";
 import { Command, Option } from "commander";
+import { statisticLimits } from "../../core/limits/index.ts";
 import { type Model, modelId } from "../../core/model/index.ts";
-import { type Calibration, calibrate, errorStatistics } from "../../core/pls/index.ts";
+import { type Calibration, calibrate, diagnose, errorStatistics } from "../../core/pls/index.ts";
 import { type Axis, describeAxis, type Step, writeSteps } from "../../core/spectrum/index.ts";
+import { calibrationReport } from "../report/calibration-report.ts";
+import type { TestSet } from "../report/prediction-picture.ts";
 import { calibrationSetOf, withoutExcluded } from "./calibration-set.ts";
 import { columns, figure } from "./figures.ts";
 import { readTable, writeWhole } from "./files.ts";
+import { warningsOf } from "./inspect.ts";
 import {
+  choiceOf,
   componentsOption,
   confidenceOption,
   countOption,
@@ -108,8 +113,10 @@ async function runCalibrate(options: Options): Promise<void> {
     })),
     onProgress: progressOnTerminal(),
   });
-  const model = options.test ? await withTest(calibration.model, options.test, options.axisUnit) : calibration.model;
+  const test = options.test ? await testSetOf(calibration.model, options.test, options.axisUnit) : undefined;
+  const model = test ? withTest(calibration.model, test) : calibration.model;
   await writeWhole(options.out, `${JSON.stringify(model)}\n`);
+  if (options.report) await writeWhole(options.report, reportOf(model, calibration, test, options.confidence));
   process.stdout.write(
     options.json ? `${JSON.stringify(inJson(model, calibration, options))}\n` : inWords(model, calibration, options),
   );
@@ -129,10 +136,13 @@ function progressOnTerminal(): (done: number, of: number) => void {
   };
 }
 
-async function withTest(model: Model, file: string, unit: Axis["unit"]): Promise<Model> {
+async function testSetOf(model: Model, file: string, unit: Axis["unit"]): Promise<TestSet> {
   const names = model.properties.map(({ name }) => name);
   const { spectra, y } = calibrationSetOf(await readTable(file, unit), names);
-  const predicted = predictTable(model, spectra);
+  return { file, names: spectra.names, y, predicted: predictTable(model, spectra) };
+}
+
+function withTest(model: Model, { y, predicted }: TestSet): Model {
   const properties = model.properties.map((property, k) => {
     const known = y.map((_, i) => i).filter((i) => Number.isFinite(y[i][k]));
     if (known.length === 0) return property;
@@ -143,6 +153,21 @@ async function withTest(model: Model, file: string, unit: Axis["unit"]): Promise
     return { ...property, rmsep: rms };
   });
   return { ...model, properties };
+}
+
+function reportOf(model: Model, calibration: Calibration, test: TestSet | undefined, confidence: number): string {
+  const choice = choiceOf({ confidence });
+  const limits = statisticLimits(model, choice);
+  return calibrationReport({
+    calibration,
+    model,
+    diagnostics: diagnose(calibration, limits.q),
+    choice,
+    limits,
+    confidence,
+    warnings: warningsOf(model),
+    test,
+  });
 }
 
 function inJson(model: Model, { recommendation }: Calibration, options: Options) {
@@ -179,7 +204,7 @@ function inWords(model: Model, { set, recommendation }: Calibration, options: Op
     "",
     columns([header, ...body]),
     "",
-    `Recommended by the one-standard-error rule: ${recommendation.says}; ${chosen}.`,
+    `Recommended by the one-standard-error rule: ${recommendation.components}, ${recommendation.says}; ${chosen}.`,
     ...properties.map(({ name, unit, range, rmsec, rmsep, rmsecv }) =>
       `${name}: ${figure(range[0])} to ${figure(range[1])} ${unit}; RMSEC ${figure(rmsec)}, RMSECV ${figure(rmsecv![components])}${rmsep === undefined ? "" : `, RMSEP ${figure(rmsep)}`}`.replace(
         / ;/,
