@@ -2,11 +2,11 @@ import { existsSync } from "node:fs";
 import { fileURLToPath } from "node:url";
 import fastifyStatic from "@fastify/static";
 import fastifySwagger from "@fastify/swagger";
-import Fastify, { type FastifyError, type FastifyInstance } from "fastify";
+import Fastify, { type FastifyError, type FastifyInstance, type FastifyReply, type FastifyRequest } from "fastify";
 import { MillraceError, mismatchSentence } from "../../core/errors.ts";
-import type { Plant } from "../../core/messages/index.ts";
 import type { PlantConfig } from "../config/plant-config.ts";
 import type { EngineThread } from "../engine/engine-thread.ts";
+import { mayAct, type Person, type Role } from "../people/person.ts";
 import type { StoreReader } from "../store/store.ts";
 import { isOurs } from "./guard.ts";
 import { LiveHub } from "./live-hub.ts";
@@ -23,7 +23,10 @@ export interface GatewayParts {
   explainer: ReadingExplainer;
   engine: EngineThread;
   live: LiveHub;
-  person: Plant["person"];
+  /** who asks */
+  personOf: (request: FastifyRequest) => Person;
+  /** who asks, when their role lets them; every route that changes something calls it. @throws RequestError 403 */
+  allowed: (request: FastifyRequest, needed: Role) => Person;
   version: string;
   propertiesOf: (stream: string) => string[];
 }
@@ -57,10 +60,17 @@ export async function startGateway(options: {
     eventsAfter: (cursor, limit) => store.events({ after: cursor, limit }),
     streams: () => config.streams.map(({ id }) => id),
   });
+  // Nobody signs in yet and the service is reached from this machine only: an invented person in the demo, "this machine" elsewhere.
+  const here: Person = { name: config.demo ? "R. Quill" : "this machine", role: "operator" };
+  const personOf = () => here;
   const parts: GatewayParts = {
     ...{ config, store, explainer, engine, live, version },
-    // Nobody signs in yet and the service is reached from this machine only: an invented person in the demo, "this machine" elsewhere.
-    person: config.demo ? { name: "R. Quill", role: "operator" } : { name: "this machine", role: "operator" },
+    personOf,
+    allowed(request, needed) {
+      const person = personOf(request);
+      if (mayAct(person, needed)) return person;
+      throw new RequestError(403, "not-allowed", `${person.name} is ${person.role}; this needs ${needed}.`);
+    },
     propertiesOf(stream) {
       const limitSet = store.limitSet(stream);
       return limitSet ? explainer.model(limitSet.model).properties.map(({ name }) => name) : [];
@@ -119,7 +129,7 @@ export async function startGateway(options: {
   };
 }
 
-function answerError(error: FastifyError, reply: import("fastify").FastifyReply): void {
+function answerError(error: FastifyError, reply: FastifyReply): void {
   if (error instanceof RequestError) {
     reply.code(error.status).send({ code: error.code, says: error.message });
   } else if (error.validation) {

@@ -22,7 +22,7 @@ const problems = { 404: ProblemSchema, 409: ProblemSchema, 400: ProblemSchema };
 
 /** Readings, trends and alarms of one stream. */
 export function streamRoutes(app: FastifyInstance, parts: GatewayParts): void {
-  const { config, store, explainer, engine, person } = parts;
+  const { config, store, explainer, engine, allowed } = parts;
 
   function known(id: string): void {
     if (config.streams.some((stream) => stream.id === id)) return;
@@ -62,8 +62,13 @@ export function streamRoutes(app: FastifyInstance, parts: GatewayParts): void {
         response: { 200: Type.Object({ done: Type.Literal(true) }), ...problems },
       },
     },
-    async ({ params: { id, key }, body }) => {
+    async (request) => {
+      const {
+        params: { id, key },
+        body,
+      } = request;
       known(id);
+      const person = allowed(request, "operator");
       const note = body?.note;
       const outcome = await engine.command({ kind: "acknowledge", stream: id, key, by: person.name, note });
       if (!outcome.done) throw new RequestError(409, "not-acknowledged", `${outcome.says}.`);
