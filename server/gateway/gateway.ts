@@ -62,7 +62,7 @@ export async function startGateway(options: {
   });
   // Nobody signs in yet and the service is reached from this machine only: an invented person in the demo, "this machine" elsewhere.
   const here: Person = { name: config.demo ? "R. Quill" : "this machine", role: "operator" };
-  const personOf = () => here;
+  const personOf = (_request: FastifyRequest) => here;
   const parts: GatewayParts = {
     ...{ config, store, explainer, engine, live, version },
     personOf,
