@@ -5,6 +5,7 @@ export { jacksonMudholkarLimit, thetasOf } from "./jackson-mudholkar.ts";
 export { type LearntRule, learntLimit, type ReferencePeriod } from "./learnt.ts";
 export { LimitError } from "./limit-error.ts";
 export { betaQuantile, chiSquaredQuantile, fQuantile, normalQuantile, tQuantile } from "./quantiles.ts";
+export { residualEigenvalues } from "./residual-eigenvalues.ts";
 export { calibrationNearest, calibrationT2, type ScoreSpace, scoreSpaceOf } from "./score-space.ts";
 export { defaultStatisticChoice, type StatisticChoice, StatisticChoiceSchema } from "./statistic-choice.ts";
 export { nearestLimit, qLimit, type StatisticLimits, statisticLimits, t2Limit } from "./statistic-limits.ts";

@@ -1,4 +1,4 @@
-import { EigenvalueDecomposition, Matrix } from "ml-matrix";
+import { residualEigenvalues } from "../limits/index.ts";
 import { canonicalJson, type Model, type ModelProperty } from "../model/index.ts";
 import { checkStepOrder, fitSteps, type Step, StepError, specOfAxis } from "../spectrum/index.ts";
 import { type CalibrationSet, type CrossValidation, crossValidate } from "./cross-validate.ts";
@@ -182,22 +182,6 @@ function propertiesOf(
       rmsecv: rmsecvOf(columns, reference),
     };
   });
-}
-
-/** Eigenvalues of EᵀE/(n − 1), largest first, without those that are zero but for rounding: from the n × n side, EEᵀ. */
-function residualEigenvalues(residuals: readonly Float64Array[]): number[] {
-  const n = residuals.length;
-  const gram = new Matrix(n, n);
-  for (let i = 0; i < n; i++) {
-    for (let k = 0; k <= i; k++) {
-      let sum = 0;
-      for (let j = 0; j < residuals[0].length; j++) sum += residuals[i][j] * residuals[k][j];
-      gram.set(i, k, sum / (n - 1));
-      gram.set(k, i, sum / (n - 1));
-    }
-  }
-  const values = new EigenvalueDecomposition(gram, { assumeSymmetric: true }).realEigenvalues.sort((a, b) => b - a);
-  return values.filter((value) => value > 1e-14 * values[0]);
 }
 
 function bandOf(rows: readonly Float64Array[]): NonNullable<Model["band"]> {

@@ -1,4 +1,5 @@
 import { inverse, Matrix } from "ml-matrix";
+import { FitError } from "./fit-error.ts";
 
 /**
  * R = W (PᵀW)⁻¹, so that t = Rᵀx for a spectrum that was not deflated.
@@ -6,6 +7,7 @@ import { inverse, Matrix } from "ml-matrix";
  * @param weights A × channels
  * @param loadings A × channels
  * @returns A × channels
+ * @throws FitError when PᵀW cannot be inverted
  */
 export function rotationsOf(weights: readonly Float64Array[], loadings: readonly Float64Array[]): Float64Array[] {
   const A = weights.length;
@@ -14,7 +16,7 @@ export function rotationsOf(weights: readonly Float64Array[], loadings: readonly
   for (let a = 0; a < A; a++) {
     for (let b = 0; b < A; b++) inner.set(a, b, dot(loadings[a], weights[b]));
   }
-  const turned = inverse(inner);
+  const turned = inverseOf(inner);
   return weights.map((_, a) => {
     const rotation = new Float64Array(weights[0].length);
     for (let b = 0; b < A; b++) {
@@ -22,6 +24,21 @@ export function rotationsOf(weights: readonly Float64Array[], loadings: readonly
       for (let j = 0; j < rotation.length; j++) rotation[j] += share * weights[b][j];
     }
     return rotation;
+  });
+}
+
+function inverseOf(inner: Matrix): Matrix {
+  let found: Matrix | undefined;
+  try {
+    found = inverse(inner);
+  } catch {
+    // singular to the last digit; nearly singular comes out as numbers without end
+  }
+  if (found?.to1DArray().every(Number.isFinite)) return found;
+  throw new FitError("PᵀW of the weights and loadings", {
+    got: "singular",
+    expected: "weights and loadings of one and the same model, no component twice",
+    todo: "Check the model's matrices.",
   });
 }
 
