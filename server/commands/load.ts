@@ -2,10 +2,14 @@ import type { ReadStream } from "node:fs";
 import { createReadStream } from "node:fs";
 import { extname } from "node:path";
 import { Readable } from "node:stream";
-import { Command } from "commander";
+import { Command, Option } from "commander";
 import { LoadError } from "../load/readings.ts";
 
-const types: Record<string, string> = { ".ndjson": "application/x-ndjson", ".cbor": "application/cbor-seq" };
+const types: Record<string, string> = {
+  ".csv": "text/csv",
+  ".ndjson": "application/x-ndjson",
+  ".cbor": "application/cbor-seq",
+};
 
 /** `load`: brings recorded readings to the running service, through the same scoring and judging as live ones. */
 export function loadCommand(): Command {
@@ -14,18 +18,30 @@ export function loadCommand(): Command {
     .requiredOption("--stream <id>", "the stream they belong to")
     .requiredOption(
       "--data <file>",
-      "readings in order of time: *.ndjson (one a line) or *.cbor (a CBOR sequence, RFC 8742)",
+      "readings in order of time: *.csv (a table with a time column), *.ndjson (one a line) or *.cbor (a CBOR sequence, RFC 8742)",
     )
+    .addOption(new Option("--axis-unit <unit>", "unit of a table's channels").choices(["nm", "cm-1"]).default("nm"))
     .option("--url <url>", "the running service", "http://127.0.0.1:8480")
     .option("--json", "print the outcome as JSON")
     .action(run);
 }
 
-async function run(options: { stream: string; data: string; url: string; json?: boolean }): Promise<void> {
+async function run(options: {
+  stream: string;
+  data: string;
+  axisUnit: string;
+  url: string;
+  json?: boolean;
+}): Promise<void> {
   const type = types[extname(options.data)];
-  if (!type) throw new LoadError(`--data ${options.data}: expected a name that ends in .ndjson or .cbor.`);
+  if (!type)
+    throw new LoadError(`--data ${options.data}: expected a name that ends in ${Object.keys(types).join(", ")}.`);
   const body = await opened(options.data);
-  const answer = await send(`${options.url}/api/v1/streams/${encodeURIComponent(options.stream)}/load`, type, body);
+  const answer = await send(
+    `${options.url}/api/v1/streams/${encodeURIComponent(options.stream)}/load?axisUnit=${options.axisUnit}`,
+    type,
+    body,
+  );
   const outcome = (await answer.json()) as { says?: string; recorded: number; repeated: number; refused: number };
   if (!answer.ok) throw new LoadError(`${options.data}: ${outcome.says ?? `the service answered ${answer.status}`}`);
   const { recorded, repeated, refused } = outcome;

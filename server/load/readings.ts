@@ -1,6 +1,7 @@
 import { DecoderStream } from "cbor-x";
 import { MillraceError } from "../../core/errors.ts";
-import type { Reading } from "../../core/messages/index.ts";
+import type { AxisSpec, Reading } from "../../core/messages/index.ts";
+import { type Axis, parseHeader, parseRow, type TableHeader } from "../../core/spectrum/index.ts";
 import { readingOf } from "../engine/decode.ts";
 
 /** One reading of recorded history; `stream` where the source says it. */
@@ -29,6 +30,42 @@ export async function* readingsOfLines(lines: AsyncIterable<string>): AsyncGener
     }
     yield itemOf(value, `line ${number}`);
   }
+}
+
+/**
+ * Readings from a table (CSV): a `time` column, an optional `sequence` (else the line counts), then channels headed by numbers; any other column
+ * goes along as context. @throws TableError or LoadError naming the line
+ */
+export async function* readingsOfTable(lines: AsyncIterable<string>, unit: Axis["unit"]): AsyncGenerator<HistoryItem> {
+  let number = 0;
+  let header: TableHeader | undefined;
+  let axis: AxisSpec | undefined;
+  for await (const line of lines) {
+    number++;
+    if (!header) {
+      header = parseHeader(line.replace(/^\uFEFF/, ""), "the table", unit);
+      axis = specOf(header.axis);
+      if (!header.columns.includes("time")) {
+        throw new LoadError(
+          "line 1: the header has no column time, expected one with RFC 3339 times or epoch milliseconds.",
+        );
+      }
+      continue;
+    }
+    const row = parseRow(line, number, header);
+    const { sequence = number, ...others } = row.references;
+    const time = /^\d+$/.test(row.time!) ? Number(row.time) : row.time;
+    const known = Object.entries(others).filter(([, value]) => Number.isFinite(value));
+    const context = known.length > 0 ? { context: Object.fromEntries(known) } : {};
+    yield itemOf({ time, sequence, values: row.values, axis, ...context }, `line ${number}`);
+  }
+}
+
+/** In the short form where the points are even: it goes with every reading. */
+function specOf({ unit, points }: Axis): AxisSpec {
+  const step = points[1] - points[0];
+  const even = points.every((point, j) => Math.abs(point - (points[0] + j * step)) <= 1e-9 * Math.abs(point));
+  return even ? { unit, start: points[0], step, count: points.length } : { unit, points: Array.from(points) };
 }
 
 /** Readings from a CBOR sequence (RFC 8742). @throws LoadError naming the item. */
