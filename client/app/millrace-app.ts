@@ -191,7 +191,7 @@ export class MillraceApp extends LitElement {
     });
     document.title = `${nameOf(this.route)} · ${plant.name}`;
     return html`
-      <a class="skip" href="#main" @click=${this.#skip}>Skip to the view</a>
+      <nav aria-label="Skip"><a class="skip" href="#main" @click=${this.#skip}>Skip to the view</a></nav>
       <mill-top-bar .plant=${plant} .route=${this.route} .alarms=${feed.alarms()} .now=${now} .time=${time} .linkUp=${feed.linkUp}></mill-top-bar>
       <div class="notices" role="alert">
         ${told.filter(({ weight }) => weight === "trouble").map(({ says }) => html`<p class="trouble">${says}</p>`)}

@@ -191,15 +191,13 @@ export class TopBar extends LitElement {
 
   #counts() {
     const counts = calling.map((priority) => ({ priority, ...countOf(this.alarms, priority) }));
-    const spoken = counts
-      .map(({ priority, open, waiting }) => `${open} ${priority}, ${waiting} not acknowledged`)
-      .join("; ");
-    return html`<a class="counts" href="/alarms" aria-label="Open alarms: ${spoken}" title="Open alarms: ${spoken}">
+    return html`<a class="counts" href="/alarms" title="Open alarms: filled marks are not acknowledged">
+      <span class="unseen">Open alarms:</span>
       ${counts.map(
         ({ priority, open, waiting }) =>
           html`<span class=${open ? "" : "none"}
             ><mill-priority-mark .priority=${priority} ?filled=${waiting > 0} ?calm=${open === 0}></mill-priority-mark
-            >${open}</span
+            >${open}<span class="unseen"> ${priority}, ${waiting} not acknowledged.</span></span
           >`,
       )}
     </a>`;

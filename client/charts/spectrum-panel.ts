@@ -4,7 +4,8 @@ import uplotStyle from "uplot/dist/uPlot.min.css?inline";
 import { figure, grouped } from "../words/quantity.ts";
 import { chartFont } from "./canvas-text.ts";
 import { coloursAt, onTheme } from "./colours.ts";
-import { drawPanel, drawPanelGround, type PanelPen, type PanelPicture, panelRange } from "./panel-drawing.ts";
+import { drawPanel, drawPanelGround, type PanelPen } from "./panel-drawing.ts";
+import { type PanelPicture, panelRange } from "./panel-picture.ts";
 import { valueTicks } from "./value-ticks.ts";
 
 /** One panel over the wavelengths. Panels of a view share the cursor; "point-wavelength" tells where it is. */

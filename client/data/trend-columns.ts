@@ -91,16 +91,20 @@ export function firstAtOrAfter(time: readonly number[], at: number): number {
   return low;
 }
 
-/** Index of the interval nearest to `at`, or undefined where none is within `reachMs`. */
-export function nearestIndex(time: readonly number[], at: number, reachMs: number): number | undefined {
+/**
+ * Index of the entry that speaks for a moment: the nearest one, unless a gap lies about the moment; before the first and after the last entry
+ * only within reach. undefined where there is none.
+ */
+export function entryAt(trend: HeldTrend, at: number, gapMs: number): number | undefined {
+  const { time, gaps } = trend;
+  if (gaps.some(([from, to]) => from < at && at < to)) return undefined;
   const after = firstAtOrAfter(time, at);
-  let best: number | undefined;
-  for (const index of [after - 1, after]) {
-    if (index < 0 || index >= time.length) continue;
-    const distance = Math.abs(time[index] - at);
-    if (distance <= reachMs && (best === undefined || distance < Math.abs(time[best] - at))) best = index;
+  const before = after - 1;
+  if (before < 0 || after >= time.length) {
+    const only = before < 0 ? after : before;
+    return only >= 0 && only < time.length && Math.abs(time[only] - at) <= reachMs(trend, gapMs) ? only : undefined;
   }
-  return best;
+  return at - time[before] <= time[after] - at ? before : after;
 }
 
 /** How far from an entry a moment may lie and still be spoken for by it. */

@@ -85,16 +85,16 @@ export class RangeBar extends LitElement {
         ${preset ? nothing : html`<button aria-pressed="true" disabled>${duration(spanMs)}</button>`}
       </div>
       <div class="group" role="group" aria-label="Move through time">
-        <button @click=${wish({ kind: "pan", share: -0.5 })} aria-label="Half a screen earlier">◂ earlier</button>
+        <button @click=${wish({ kind: "pan", share: -0.5 })} title="Half a screen earlier">◂ earlier</button>
         <button
           @click=${wish({ kind: "pan", share: 0.5 })}
           ?disabled=${this.window.kind === "live"}
-          aria-label="Half a screen later"
+          title="Half a screen later"
         >
           later ▸
         </button>
-        <button @click=${wish({ kind: "zoom", factor: 0.5 })} aria-label="Show half the time">closer</button>
-        <button @click=${wish({ kind: "zoom", factor: 2 })} aria-label="Show twice the time">wider</button>
+        <button @click=${wish({ kind: "zoom", factor: 0.5 })} title="Show half the time">closer</button>
+        <button @click=${wish({ kind: "zoom", factor: 2 })} title="Show twice the time">wider</button>
       </div>
       ${this.window.kind === "live" ? this.#live(wish) : this.#stopped(this.window.to, wish)}
     </div>`;

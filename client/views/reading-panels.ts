@@ -1,5 +1,5 @@
 import type { ReadingView } from "../../core/messages/index.ts";
-import type { PanelPicture } from "../charts/panel-drawing.ts";
+import type { PanelPicture } from "../charts/panel-picture.ts";
 
 /** A column in ascending order of the axis, whichever way the axis runs. */
 function inOrder<T>(axis: readonly number[], column: readonly T[]): T[] {

@@ -1,7 +1,8 @@
 import { css, html, LitElement, nothing } from "lit";
 import type { Plant, PlantStream, ReadingView as ReadingAnswer, Region } from "../../core/messages/index.ts";
 import { href, type Route } from "../app/route.ts";
-import { type PanelPicture, regionName } from "../charts/panel-drawing.ts";
+import { regionName } from "../charts/panel-drawing.ts";
+import type { PanelPicture } from "../charts/panel-picture.ts";
 import "../charts/spectrum-panel.ts";
 import "../charts/place-map.ts";
 import { api } from "../data/api.ts";

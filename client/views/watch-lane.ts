@@ -6,7 +6,7 @@ import type { Feed } from "../data/feed.ts";
 import { freshness } from "../data/freshness.ts";
 import { Listening } from "../data/listening.ts";
 import { edges, type TimeWindow } from "../data/time-window.ts";
-import { type HeldTrend, nearestIndex, reachMs } from "../data/trend-columns.ts";
+import { entryAt, type HeldTrend } from "../data/trend-columns.ts";
 import { TrendLoader } from "../data/trend-loader.ts";
 import { type TrendSight, trendRow, trendRows, trendSentence } from "../data/trend-words.ts";
 import { baseStyle } from "../parts/base-style.ts";
@@ -249,7 +249,7 @@ export class WatchLane extends LitElement {
     const { trend } = this.#trend;
     const title = `${named(property.name)}, ${property.unit}`;
     if (this.cursor === undefined || !trend) return title;
-    const index = nearestIndex(trend.time, this.cursor, reachMs(trend, this.stream.gapMs));
+    const index = entryAt(trend, this.cursor, this.stream.gapMs);
     const at = this.time.exact(this.cursor, this.now);
     if (index === undefined) return html`<b>${at}</b> no reading`;
     const row = trendRow(trend, property, index);

@@ -1,0 +1,123 @@
+import type { Browser } from "playwright-core";
+import { afterAll, beforeAll, expect, test } from "vitest";
+import { analyzerAxis, makePlant, spectrumAt, unforeseenBand } from "../../simulator/plant/index.ts";
+import { type Chain, eventually, startChain } from "../chain.ts";
+import { lane, openBrowser, openPage, type Seen, wordsOf } from "./browser.ts";
+
+/*
+ * The main job, end to end, with nothing replaced: a spectrum goes in over MQTT, a judged prediction comes out on the screen. The analyzer is
+ * played here, so that the moment at which something unforeseen appears in its spectra is known.
+ */
+const plant = makePlant(1);
+const stream = "bq-305";
+let chain: Chain;
+let browser: Browser;
+let seen: Seen;
+let sequence = 0;
+let sending: ReturnType<typeof setInterval> | undefined;
+let band: Float64Array | undefined;
+
+/** One reading of the recycled blend as it is now, with the unforeseen band on top while there is one. */
+async function publish(): Promise<void> {
+  const time = Date.now();
+  const values = Array.from(spectrumAt(plant, stream, time), (value, index) => value + (band?.[index] ?? 0));
+  sequence += 1;
+  await chain.publish(stream, { time, sequence, values, axis: analyzerAxis });
+}
+
+beforeAll(async () => {
+  [chain, browser] = await Promise.all([startChain(), openBrowser()]);
+  seen = await openPage(browser, `${chain.url}/watch?last=900`);
+}, 120_000);
+
+afterAll(async () => {
+  clearInterval(sending);
+  await browser?.close();
+  await chain?.stop();
+  chain?.remove();
+});
+
+test("a stream that has sent nothing says so and shows no number", async () => {
+  const blend = lane(seen.page, stream);
+  await blend.getByText("No reading yet").waitFor();
+  expect(await wordsOf(blend.locator("mill-lane-number .value"))).toBe("—");
+});
+
+test("a reading that goes in over MQTT comes out as a number with its uncertainty, and changes as readings come", async () => {
+  sending = setInterval(() => void publish().catch(() => {}), 1000);
+  const value = lane(seen.page, stream).locator("mill-lane-number .value");
+  await eventually("a number with ±", async () => /^\d+\.\d ± \d/.test(await wordsOf(value)));
+  expect(await wordsOf(value)).toMatch(/^\d\d\.\d ± 0\.\d\u2009wt%$/);
+  await lane(seen.page, stream).getByText("inside", { exact: true }).waitFor();
+  const stamp = () => value.getAttribute("title");
+  const before = await stamp();
+  await eventually("a newer reading", async () => (await stamp()) !== before, 5000);
+});
+
+test("an unforeseen band makes the lane unfamiliar: no ± any more, the last trusted number under it, and an alarm that says what to do", async () => {
+  band = unforeseenBand();
+  const blend = lane(seen.page, stream);
+  await blend.locator(".verdict", { hasText: "unfamiliar since" }).waitFor();
+  expect(await wordsOf(blend.locator("mill-lane-number .value"))).not.toContain("±");
+  expect(await wordsOf(blend.locator(".trusted"))).toMatch(/Last inside: \d\d\.\d ± 0\.\d\u2009wt% at/);
+  const alarm = blend.locator("mill-alarm-card");
+  await alarm.getByText("Unfamiliar spectrum").waitFor();
+  const words = await wordsOf(alarm.locator("article"));
+  expect(words).toMatch(/Q [\d.]+ × limit/);
+  expect(words).toContain("Take a grab sample");
+  expect(words).toContain("not acknowledged");
+  expect(await seen.page.locator("mill-top-bar .counts").textContent()).toMatch(/1 high, 1 not acknowledged/);
+});
+
+test("the Reading view names the wavelengths of the band", async () => {
+  const other = await openPage(browser, `${chain.url}/reading/${stream}`);
+  await other.page.locator(".verdict", { hasText: "unfamiliar" }).waitFor();
+  const says = await wordsOf(other.page.locator(".says"));
+  // The band stands at 1880 nm and is 22 nm wide: the region that is named first must hold it.
+  const [from, to] = [...says.replace(/(\d)\s(?=\d)/g, "$1").matchAll(/(\d+)–(\d+) nm/g)][0].slice(1).map(Number);
+  expect(from).toBeLessThan(1880 + 44);
+  expect(to).toBeGreaterThan(1880 - 44);
+  expect(other.complaints).toEqual([]);
+  await other.close();
+});
+
+test("acknowledging it puts the person's name to it", async () => {
+  const alarm = lane(seen.page, stream).locator("mill-alarm-card");
+  await alarm.getByRole("button", { name: "Acknowledge" }).click();
+  await alarm.getByText("R. Quill").waitFor();
+  expect(await wordsOf(alarm.locator("article"))).toMatch(/acknowledged\s+\d\d:\d\d, R\. Quill/);
+  expect(await alarm.getByRole("button", { name: "Acknowledge" }).count()).toBe(0);
+});
+
+test("when the band is gone the lane returns to normal and the alarm leaves", async () => {
+  band = undefined;
+  const blend = lane(seen.page, stream);
+  await blend.getByText("inside", { exact: true }).waitFor();
+  await blend.getByText("No open alarms.").waitFor({ timeout: 30_000 });
+  expect(await wordsOf(blend.locator("mill-lane-number .value"))).toContain("±");
+});
+
+test("when the analyzer falls silent, the lane says so with the age within 5 s of the reading that was due, and its number looks old", async () => {
+  clearInterval(sending);
+  await publish();
+  const last = Date.now();
+  const blend = lane(seen.page, stream);
+  await blend.locator(".age").waitFor({ timeout: 10_000 });
+  // A reading is due every 2 s: due 2 s after the last, said 5 s later at the most.
+  expect(Date.now() - last).toBeLessThan(2000 + 5000);
+  expect(await wordsOf(blend.locator(".age"))).toMatch(/As of \d\d:\d\d:\d\d, \d+ s old: silent for \d+ s/);
+  expect(await wordsOf(blend.locator("mill-lane-number .value"))).not.toContain("±");
+  expect(await blend.locator("mill-lane-number .old").count()).toBe(1);
+});
+
+test("a message that cannot be used stands on the Plant view with its reason", async () => {
+  await chain.publish(stream, { time: Date.now(), sequence: 1_000_000, values: [1, 2, 3], axis: analyzerAxis });
+  await seen.page.getByRole("link", { name: "Plant" }).click();
+  const refused = seen.page.getByRole("region", { name: "Refused lately" });
+  await refused.getByText(`millrace/brindle-quay/${stream}/reading`).first().waitFor();
+  expect(await wordsOf(refused)).toContain("301");
+});
+
+test("the page has complained of nothing in all that time", () => {
+  expect(seen.complaints).toEqual([]);
+});
