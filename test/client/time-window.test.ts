@@ -1,0 +1,68 @@
+import { describe, expect, test } from "vitest";
+import {
+  centredOn,
+  edges,
+  longestMs,
+  pan,
+  shortestMs,
+  stopAt,
+  type TimeWindow,
+  zoom,
+} from "../../client/data/time-window.ts";
+
+const hour = 3_600_000;
+const now = Date.UTC(2026, 11, 1, 12);
+const live: TimeWindow = { kind: "live", spanMs: hour };
+const stopped: TimeWindow = { kind: "stopped", from: now - 4 * hour, to: now - 3 * hour };
+
+test("a live window ends at the present", () => {
+  expect(edges(live, now)).toEqual({ from: now - hour, to: now });
+});
+
+describe("panning", () => {
+  test("into the past stops the window, keeping its span", () => {
+    expect(pan(live, -0.5, now)).toEqual({ kind: "stopped", from: now - 1.5 * hour, to: now - 0.5 * hour });
+  });
+
+  test("to the present or beyond is live again: no window ever shows the future", () => {
+    expect(pan(stopped, 3, now)).toEqual(live);
+    expect(pan(stopped, 30, now)).toEqual(live);
+    expect(pan(stopped, 2.9, now).kind).toBe("stopped");
+  });
+});
+
+describe("zooming", () => {
+  test("a live window stays live, wherever the pointer is", () => {
+    expect(zoom(live, 0.5, now - hour, now)).toEqual({ kind: "live", spanMs: hour / 2 });
+  });
+
+  test("a stopped window keeps the moment under the pointer where it is", () => {
+    const about = stopped.from + hour / 4;
+    const closer = zoom(stopped, 0.5, about, now);
+    const { from, to } = edges(closer, now);
+    expect(to - from).toBe(hour / 2);
+    expect((about - from) / (to - from)).toBeCloseTo(0.25, 10);
+  });
+
+  test("a stopped window that would pass the present becomes live", () => {
+    expect(zoom(stopped, 8, stopped.from, now)).toEqual({ kind: "live", spanMs: 8 * hour });
+  });
+
+  test("stays between one minute and sixty days", () => {
+    expect(zoom(live, 1e-9, now, now)).toEqual({ kind: "live", spanMs: shortestMs });
+    expect(zoom(live, 1e9, now, now)).toEqual({ kind: "live", spanMs: longestMs });
+  });
+});
+
+test("stopping keeps what is on the screen", () => {
+  expect(edges(stopAt(live, now), now + 5000)).toEqual(edges(live, now));
+});
+
+test("a window about a moment has it in its middle, unless the present is too near", () => {
+  expect(centredOn(live, now - 5 * hour, now)).toEqual({
+    kind: "stopped",
+    from: now - 5.5 * hour,
+    to: now - 4.5 * hour,
+  });
+  expect(centredOn(live, now, now)).toEqual({ kind: "stopped", from: now - hour, to: now });
+});
