@@ -20,9 +20,10 @@ export interface StreamRules {
   futureToleranceMs: number;
   validity: ValidityRules;
   limitSet: LimitSet;
-  /** undefined while the stream has no usable model; `noModel` says why */
+  /** undefined while the stream has no usable model */
   scorer: Scorer | undefined;
-  noModel?: string;
+  /** why the stream's model file cannot be used, and what to do */
+  modelTrouble?: string;
 }
 
 export interface Arrival {
@@ -146,7 +147,7 @@ function invalidityOf(
   if (!scorer) {
     return {
       reason: "no model",
-      says: rules.noModel ?? "the stream has no model",
+      says: rules.modelTrouble ?? "the stream has no model",
     };
   }
   try {

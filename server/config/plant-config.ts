@@ -2,7 +2,7 @@ import { readFileSync } from "node:fs";
 import { dirname, resolve } from "node:path";
 import { type Static, Type } from "typebox";
 import { MillraceError, type Mismatch, mismatchSentence } from "../../core/errors.ts";
-import { checker, StreamIdSchema } from "../../core/messages/index.ts";
+import { AxisSpecSchema, checker, StreamIdSchema } from "../../core/messages/index.ts";
 
 const pair = Type.Tuple([Type.Number(), Type.Number()]);
 
@@ -13,6 +13,8 @@ const StreamConfigSchema = Type.Object({
   model: Type.String(),
   /** alarms of its own, seen from the configuration's folder; taken when the stream has no limit set yet */
   alarms: Type.Optional(Type.String()),
+  /** the analyzer's own axis: a model that it does not cover is refused at the start, not reading by reading */
+  axis: Type.Optional(AxisSpecSchema),
   /** expected time between two readings, ms */
   periodMs: Type.Number({ minimum: 10, maximum: 86_400_000 }),
   /** values at or above it are saturated, unit of the spectrum */

@@ -75,7 +75,7 @@ export class Engine {
       this.#streams.set(id, { rules, state: adopted });
       states.set(id, adopted);
       for (const note of notes) events.push({ cursor: ++this.#cursor, ...note });
-      if (rules.noModel) events.push({ ...this.#event("stream without a model", rules.noModel), stream: id });
+      if (rules.modelTrouble) events.push({ ...this.#event("model file refused", rules.modelTrouble), stream: id });
     }
     this.#store.commit({ readings: [], refusals: [], events, excursions: [], states });
     this.#tell({ judged: [], now: this.picture(), events, cursor: this.#cursor });

@@ -3,8 +3,9 @@ import { MillraceError } from "../../core/errors.ts";
 import { freshState, Scorer, type StreamRules, type StreamState } from "../../core/judging/index.ts";
 import { defaultAlarms, type LimitSet, parseAlarmRules, type StatisticLimit } from "../../core/limit-set/index.ts";
 import { defaultStatisticChoice, statisticLimits } from "../../core/limits/index.ts";
-import { type Model, parseModel } from "../../core/model/index.ts";
+import { type Model, ModelFileError, parseModel } from "../../core/model/index.ts";
 import { type CompiledModel, compileModel } from "../../core/pls/index.ts";
+import { AxisError, axisFromSpec, describeAxis, resampler, sameAxis } from "../../core/spectrum/index.ts";
 import type { StreamConfig } from "../config/plant-config.ts";
 import type { StoreWriter } from "../store/store.ts";
 
@@ -27,27 +28,37 @@ export function gapMsOf(periodMs: number): number {
 
 /**
  * Makes a stream ready: loads its model, takes the newest limit set on record or makes the first one, and takes up its state where the
- * record ends. A model that cannot be used does not stop the others: the stream's readings are then kept as unusable, with that reason.
+ * record ends. A model file that cannot be used stops nobody else: the model that was in charge goes on, or, where there is none, the
+ * stream's readings are kept as unusable with that reason.
  */
 export function readyStream(config: StreamConfig, store: StoreWriter, now: number): EngineStream {
   let scorer: Scorer | undefined;
-  let noModel: string | undefined;
+  let modelTrouble: string | undefined;
   try {
     const { model, text } = readModel(config.model);
     const compiled = compileModel(model);
     checkJudges(compiled, config.model);
+    checkAxis(compiled, config);
     scorer = new Scorer(compiled);
     const properties = model.properties.map(({ name }) => name);
     store.addModel({ id: scorer.compiled.id, name: model.name, properties, text });
   } catch (error) {
     if (!(error instanceof MillraceError)) throw error;
-    noModel = error.message;
+    scorer = modelInCharge(config.id, store);
+    modelTrouble = scorer ? `${error.message} Until then the model that was in charge goes on.` : error.message;
   }
   const limitSet = limitSetFor(config, scorer?.compiled, store, now);
   return {
-    rules: rulesOf(config, limitSet, scorer, noModel),
+    rules: rulesOf(config, limitSet, scorer, modelTrouble),
     state: store.state(config.id) ?? freshState,
   };
+}
+
+/** The model that judged the stream until now, from the record. */
+function modelInCharge(stream: string, store: StoreWriter): Scorer | undefined {
+  const id = store.limitSet(stream)?.model;
+  const text = id === undefined ? undefined : store.modelText(id);
+  return text === undefined ? undefined : new Scorer(compileModel(parseModel(text, `model ${id} of the record`)));
 }
 
 function readModel(file: string): { model: Model; text: string } {
@@ -64,6 +75,23 @@ function readModel(file: string): { model: Model; text: string } {
 function checkJudges({ judges }: CompiledModel, file: string): void {
   const missing = [...(judges.t2 ? [] : ["scores"]), ...(judges.q ? [] : ["loadings"])];
   if (missing.length > 0) throw new ModelCannotJudge(file, missing);
+}
+
+/** @throws ModelFileError when the stream's analyzer does not cover the axis that the model was made on. */
+function checkAxis({ axis }: CompiledModel, config: StreamConfig): void {
+  if (!config.axis) return;
+  try {
+    const own = axisFromSpec(config.axis);
+    if (!sameAxis(own, axis)) resampler(own, axis);
+  } catch (cause) {
+    if (!(cause instanceof AxisError)) throw cause;
+    throw new ModelFileError(config.model, "axis", {
+      got: describeAxis(axis),
+      expected: `one that the analyzer of ${config.id} covers (${describeAxis(axisFromSpec(config.axis))})`,
+      todo: "Put the stream's own model in its place, or correct the stream's axis in the configuration.",
+      cause,
+    });
+  }
 }
 
 class ModelCannotJudge extends MillraceError {
@@ -90,7 +118,12 @@ export function rulesForHistory(rules: StreamRules, periodMs: number): StreamRul
   return { ...rules, periodMs, gapMs: gapMsOf(periodMs), lateGraceMs: lateGracePeriods * periodMs, scorer: own };
 }
 
-function rulesOf(config: StreamConfig, limitSet: LimitSet, scorer: Scorer | undefined, noModel?: string): StreamRules {
+function rulesOf(
+  config: StreamConfig,
+  limitSet: LimitSet,
+  scorer: Scorer | undefined,
+  modelTrouble?: string,
+): StreamRules {
   return {
     stream: config.id,
     periodMs: config.periodMs,
@@ -100,7 +133,7 @@ function rulesOf(config: StreamConfig, limitSet: LimitSet, scorer: Scorer | unde
     validity: { frozenAfter, ...(config.ceiling === undefined ? {} : { ceiling: config.ceiling }) },
     limitSet,
     scorer,
-    ...(noModel === undefined ? {} : { noModel }),
+    ...(modelTrouble === undefined ? {} : { modelTrouble }),
   };
 }
 

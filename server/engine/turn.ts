@@ -318,6 +318,6 @@ export function streamNow({ rules, state }: EngineStream, refused: number): Stre
     excursions: openExcursions(state, rules),
     refused,
     held: held && rules.limitSet.alarms.some((rule) => rule.watches.kind === "property" && rule.untrusted === "hold"),
-    ...(rules.noModel === undefined ? {} : { trouble: rules.noModel }),
+    ...(rules.modelTrouble === undefined ? {} : { trouble: rules.modelTrouble }),
   };
 }

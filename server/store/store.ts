@@ -60,6 +60,8 @@ export interface StoreWriter {
   addLimitSet(set: LimitSet): void;
   /** Keeps the text of a model under its identity; one that is known is left alone. */
   addModel(model: { id: string; name: string; properties: string[]; text: string }): void;
+  /** The text of a model that is on record. */
+  modelText(id: string): string | undefined;
   /** Time of the stream's first reading that came in live. */
   firstLive(stream: string): number | undefined;
   close(): void;

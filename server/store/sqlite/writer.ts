@@ -4,6 +4,7 @@ import type { LimitSet } from "../../../core/limit-set/index.ts";
 import { type AxisSpec, type Judged, verdictMask } from "../../../core/messages/index.ts";
 import type { Changes, NewReading, NewRefusal, StoreWriter } from "../store.ts";
 import { openForWriting } from "./open.ts";
+import { RollupWriter } from "./rollup.ts";
 import { spectrumBytes } from "./spectrum-bytes.ts";
 
 /** Refusals kept with their payload's beginning; older ones live on in the totals. */
@@ -37,6 +38,7 @@ export function sqliteWriter(file: string): StoreWriter {
     axis: db.prepare("INSERT INTO axis (json) VALUES (?) ON CONFLICT DO UPDATE SET json = json RETURNING k").pluck(),
     model: db.prepare<[string], { k: number; properties: string }>("SELECT k, properties FROM model WHERE id = ?"),
     addModel: db.prepare("INSERT INTO model (id, name, properties, text) VALUES (?, ?, ?, ?) ON CONFLICT DO NOTHING"),
+    modelText: db.prepare<[string], string>("SELECT text FROM model WHERE id = ?").pluck(),
     limitSet: db.prepare("SELECT json FROM limit_set WHERE stream = ? ORDER BY version DESC LIMIT 1").pluck(),
     addLimitSet: db.prepare("INSERT INTO limit_set VALUES (?, ?, ?)"),
     lastCursor: db.prepare("SELECT coalesce(max(cursor), 0) FROM event").pluck(),
@@ -45,6 +47,7 @@ export function sqliteWriter(file: string): StoreWriter {
       .prepare<[number], number>("SELECT time FROM reading WHERE stream = ? AND history = 0 ORDER BY time LIMIT 1")
       .pluck(),
   };
+  const rollups = new RollupWriter(db);
   let number = sql.lastNumber.get() as number;
 
   function streamKey(id: string): number {
@@ -77,8 +80,11 @@ export function sqliteWriter(file: string): StoreWriter {
   function addReading(reading: NewReading): void {
     const { judged, receivedAt, late, history, gapFrom, quality, context } = reading;
     const model = modelOf(judged.model);
+    const stream = streamKey(judged.stream);
+    const verdict = verdictMask(judged.verdict);
+    const numbers = propertyBytes(judged, model?.properties ?? []);
     const { changes } = sql.reading.run(
-      streamKey(judged.stream),
+      stream,
       judged.time,
       judged.sequence,
       ++number,
@@ -86,7 +92,7 @@ export function sqliteWriter(file: string): StoreWriter {
       late ? 1 : 0,
       history ? 1 : 0,
       gapFrom,
-      verdictMask(judged.verdict),
+      verdict,
       judged.t2,
       judged.q,
       judged.leverage,
@@ -94,7 +100,7 @@ export function sqliteWriter(file: string): StoreWriter {
       judged.ratios.t2,
       judged.ratios.q,
       judged.ratios.nearest,
-      propertyBytes(judged, model?.properties ?? []),
+      numbers,
       judged.unusable ?? null,
       model?.k ?? null,
       judged.limitSet,
@@ -104,6 +110,8 @@ export function sqliteWriter(file: string): StoreWriter {
     if (changes === 0) return; // a repeat within one batch: identity is (stream, time, sequence)
     const { width, data } = spectrumBytes(reading.values);
     sql.spectrum.run(number, axisKey(reading.axis), width, data);
+    const { t2, q } = judged.ratios;
+    rollups.add(stream, model?.k ?? null, { time: judged.time, verdict, t2, q, numbers });
   }
   function addRefusal(refusal: NewRefusal): void {
     const { topic, receivedAt, reason, says, payload } = refusal;
@@ -116,6 +124,7 @@ export function sqliteWriter(file: string): StoreWriter {
 
   const commit = db.transaction((changes: Changes) => {
     for (const reading of changes.readings) addReading(reading);
+    rollups.write();
     for (const refusal of changes.refusals) addRefusal(refusal);
     if (changes.refusals.length > 0) sql.trimRefusals.run(mostRefusals);
     for (const event of changes.events) {
@@ -129,7 +138,16 @@ export function sqliteWriter(file: string): StoreWriter {
   });
 
   return {
-    commit: (changes) => void commit.immediate(changes),
+    commit(changes) {
+      try {
+        commit.immediate(changes);
+      } catch (error) {
+        // Rolled back, and with it rows that these remember.
+        for (const remembered of [streams, axes]) remembered.clear();
+        rollups.forget();
+        throw error;
+      }
+    },
     state(stream) {
       const json = sql.state.get(stream) as string | null | undefined;
       return json ? (JSON.parse(json) as StreamState) : undefined;
@@ -142,6 +160,7 @@ export function sqliteWriter(file: string): StoreWriter {
     },
     addLimitSet: (set) => void sql.addLimitSet.run(streamKey(set.stream), set.version, JSON.stringify(set)),
     addModel: ({ id, name, properties, text }) => void sql.addModel.run(id, name, JSON.stringify(properties), text),
+    modelText: (id) => sql.modelText.get(id),
     firstLive: (stream) => sql.firstLive.get(streamKey(stream)),
     close: () => void db.close(),
   };
