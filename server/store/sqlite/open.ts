@@ -2,6 +2,7 @@ import { existsSync, mkdirSync } from "node:fs";
 import { dirname } from "node:path";
 import Database from "better-sqlite3";
 import { MillraceError, type Mismatch, mismatchSentence } from "../../../core/errors.ts";
+import { rollUpAll, rollupSchema } from "./rollup.ts";
 
 export class StoreError extends MillraceError {
   readonly code = "store";
@@ -10,13 +11,20 @@ export class StoreError extends MillraceError {
   }
 }
 
-const schemaVersion = 1;
+/** What brings a record from one form to the next; a new record goes through all of them. The last form is the present one. */
+const steps: readonly ((db: Database.Database) => void)[] = [
+  (db) => db.exec(readingsAndEvents),
+  (db) => {
+    db.exec(rollupSchema);
+    rollUpAll(db);
+  },
+];
 
 /*
  * A reading's row is small and clustered by stream and time, since every trend walks it so; its spectrum, a thousand times larger, stands
  * apart under the reading's number and can be retired without touching the row.
  */
-const schema = `
+const readingsAndEvents = `
 CREATE TABLE stream (k INTEGER PRIMARY KEY, id TEXT NOT NULL UNIQUE, state TEXT) STRICT;
 CREATE TABLE model (k INTEGER PRIMARY KEY, id TEXT NOT NULL UNIQUE, name TEXT NOT NULL, properties TEXT NOT NULL, text TEXT NOT NULL) STRICT;
 CREATE TABLE limit_set (stream INTEGER NOT NULL REFERENCES stream, version INTEGER NOT NULL, json TEXT NOT NULL,
@@ -38,7 +46,7 @@ CREATE TABLE refusal (id INTEGER PRIMARY KEY, digest BLOB NOT NULL UNIQUE, strea
 CREATE TABLE refusal_total (stream TEXT NOT NULL, reason TEXT NOT NULL, count INTEGER NOT NULL, PRIMARY KEY (stream, reason)) STRICT, WITHOUT ROWID;
 `;
 
-/** Opens the record for its single writer; makes it when there is none. @throws StoreError for a damaged or newer file. */
+/** Opens the record for its single writer; makes it when there is none, brings an older form up to date. @throws StoreError for a damaged or newer file. */
 export function openForWriting(file: string): Database.Database {
   mkdirSync(dirname(file), { recursive: true });
   const database = open(file, { timeout: 5000 });
@@ -48,15 +56,7 @@ export function openForWriting(file: string): Database.Database {
   database.pragma("foreign_keys = ON");
   // The log is folded back every 4 MB or so, so that readers never wade through a long one.
   database.pragma("wal_autocheckpoint = 1000");
-  const version = database.pragma("user_version", { simple: true });
-  if (version === 0) {
-    database.transaction(() => {
-      database.exec(schema);
-      database.pragma(`user_version = ${schemaVersion}`);
-    })();
-  } else {
-    checkVersion(file, version);
-  }
+  bringUp(database, file);
   return database;
 }
 
@@ -70,7 +70,15 @@ export function openForReading(file: string): Database.Database {
     });
   }
   const database = open(file, { readonly: true, timeout: 5000 });
-  checkVersion(file, database.pragma("user_version", { simple: true }));
+  const form = formOf(database, file);
+  if (form < steps.length) {
+    database.close();
+    throw new StoreError(file, {
+      got: `a record of form ${form}`,
+      expected: `form ${steps.length}`,
+      todo: "Start the service once with this data folder: it brings the record up to date.",
+    });
+  }
   return database;
 }
 
@@ -89,11 +97,23 @@ function open(file: string, options: Database.Options): Database.Database {
   }
 }
 
-function checkVersion(file: string, version: unknown): void {
-  if (version === schemaVersion) return;
+/** Brings an older record to the present form, all of it or (when the power fails meanwhile) nothing. */
+function bringUp(database: Database.Database, file: string): void {
+  const version = formOf(database, file);
+  if (version === steps.length) return;
+  database.transaction(() => {
+    for (const step of steps.slice(version)) step(database);
+    database.pragma(`user_version = ${steps.length}`);
+  })();
+}
+
+/** @throws StoreError for a record of a newer form than this version knows */
+function formOf(database: Database.Database, file: string): number {
+  const form = database.pragma("user_version", { simple: true }) as number;
+  if (form <= steps.length) return form;
   throw new StoreError(file, {
-    got: `a record of form ${version}`,
-    expected: `form ${schemaVersion}`,
+    got: `a record of form ${form}`,
+    expected: `form ${steps.length} or older`,
     todo: "Run the version of Millrace that wrote it, or name another data folder.",
   });
 }
