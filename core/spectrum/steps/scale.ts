@@ -14,15 +14,14 @@ export function scale({ deviation }: Fitted<"scale">): Apply {
  */
 export function fitScale({ axis, rows }: Spectra): Fitted<"scale"> {
   const mean = meanSpectrum(rows);
+  // against all channels, not its own: where steps leave nothing but rounding, that rounding is all a channel has
+  let largest = 0;
+  for (const row of rows) for (const value of row) largest = Math.max(largest, Math.abs(value));
   const deviation = Array.from(mean, (centre, j) => {
     let squares = 0;
-    let largest = 0;
-    for (const row of rows) {
-      squares += (row[j] - centre) ** 2;
-      largest = Math.max(largest, Math.abs(row[j]));
-    }
+    for (const row of rows) squares += (row[j] - centre) ** 2;
     const found = Math.sqrt(squares / (rows.length - 1));
-    if (found > 1e-12 * largest) return found;
+    if (found > 1e-11 * largest) return found;
     throw new StepError(`scale: the channel at ${axis.points[j]} ${axis.unit}`, {
       got: `${rows[0][j]} in every sample`,
       expected: "a channel that varies",
