@@ -84,7 +84,7 @@ export class PlaceMap extends LitElement {
     const x = decades([...samples.map(({ t2 }) => t2), reading.t2]);
     const y = decades([...samples.map(({ q }) => q), reading.q]);
     const whole = ([low, high]: [number, number]) => Array.from({ length: high - low + 1 }, (_, index) => low + index);
-    const axis = { font: chartFont, labelFont: chartFont, stroke: colours.quiet, labelSize: 18, labelGap: 0, gap: 4 };
+    const axis = { font: chartFont, labelFont: chartFont, stroke: colours.quiet, labelSize: 18, labelGap: 0, gap: 8 };
     const lines = { show: true, stroke: colours.rule, width: 1 };
     const numbers = (_: uPlot, splits: number[]) =>
       splits.map((exponent) => String(Number((10 ** exponent).toPrecision(1))));
@@ -155,7 +155,8 @@ function drawPlaces(u: uPlot, { samples, reading }: PlacePicture, colours: Colou
   ctx.fillText("extrapolated", bbox.left + bbox.width - 4 * px, bbox.top + bbox.height - 4 * px);
   ctx.fillStyle = colours.quiet;
   ctx.textAlign = "left";
-  ctx.fillText("inside", bbox.left + 6 * px, bbox.top + bbox.height - 4 * px);
+  ctx.textBaseline = "top";
+  ctx.fillText("inside", bbox.left + 6 * px, oneY + 4 * px);
   ctx.strokeStyle = colours.quiet;
   ctx.lineWidth = px;
   for (const sample of samples) {

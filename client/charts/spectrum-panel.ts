@@ -34,11 +34,11 @@ export class SpectrumPanel extends LitElement {
       :host {
         display: block;
         position: relative;
-        height: 116px;
+        height: clamp(116px, 14vh, 220px);
         overflow: hidden;
       }
       :host([tall]) {
-        height: 176px;
+        height: clamp(176px, 20vh, 300px);
       }
       .plot {
         position: absolute;
@@ -136,7 +136,7 @@ export class SpectrumPanel extends LitElement {
             ...axis,
             ticks,
             size: 64,
-            splits: () => valueTicks(low, high, Math.max(2, Math.floor(height / 36))),
+            splits: () => valueTicks(low, high, Math.max(4, Math.floor(height / 30))),
             values: (_, splits) => splits.map((value) => figure(value, 4)),
           },
         ],

@@ -80,7 +80,8 @@ export const baseStyle = css`
   .quiet {
     color: var(--quiet);
   }
-  .whole {
+  .whole,
+  td.number {
     white-space: nowrap;
   }
   .unseen {
@@ -117,6 +118,8 @@ export const baseStyle = css`
     text-align: right;
   }
   .scrolls {
+    /* what stands at a fixed place in it (for screen readers) scrolls with it */
+    position: relative;
     overflow-x: auto;
   }
   summary {

@@ -61,6 +61,9 @@ export class AlarmsView extends LitElement {
       .record h2 {
         margin-bottom: 8px;
       }
+      td.words {
+        min-width: 28ch;
+      }
       .old td {
         color: var(--quiet);
       }
@@ -152,7 +155,7 @@ export class AlarmsView extends LitElement {
       <td class="whole" title=${this.time.full(at)}>${this.time.exact(at, now)}</td>
       <td class="whole">${stream ?? "service"}</td>
       <td class="whole">${kind}${history ? " (history)" : ""}</td>
-      <td>${says}</td>
+      <td class="words">${says}</td>
       <td class="whole">${by ?? ""}</td>
     </tr>`;
   }

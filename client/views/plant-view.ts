@@ -20,7 +20,7 @@ export class PlantView extends LitElement {
   declare feed: Feed;
   declare time: PlantTime;
   #timer: ReturnType<typeof setInterval> | undefined;
-  readonly #refusals = new Loaded<Refusals>(this, (_, signal) => api.refusals(50, signal));
+  readonly #refusals = new Loaded<Refusals>(this, (_, signal) => api.refusals(20, signal));
   readonly #events = new Loaded(this, (_, signal) => api.events({ limit: 200 }, signal));
 
   constructor() {
@@ -57,6 +57,9 @@ export class PlantView extends LitElement {
       }
       .bad {
         font-weight: 700;
+      }
+      td.words {
+        min-width: 28ch;
       }
       code {
         font-family: ui-monospace, monospace;
@@ -272,7 +275,7 @@ export class PlantView extends LitElement {
                   <td class="whole" title=${this.time.full(lastAt)}>${this.time.exact(lastAt, now)}</td>
                   <td><code>${topic}</code></td>
                   <td class="whole">${reason}</td>
-                  <td>${says}</td>
+                  <td class="words">${says}</td>
                   <td class="number">${grouped(count)}</td>
                 </tr>`,
             )}

@@ -132,6 +132,20 @@ export class ReadingView extends LitElement {
         max-height: 320px;
         overflow: auto;
       }
+      @media (min-width: 1600px) {
+        .body {
+          grid-template-columns: minmax(0, 1fr) 760px;
+        }
+        .facts {
+          display: block;
+          columns: 2;
+          column-gap: 8px;
+        }
+        .facts section {
+          break-inside: avoid;
+          margin-bottom: 8px;
+        }
+      }
       @media (max-width: 1000px) {
         .body {
           grid-template-columns: minmax(0, 1fr);
@@ -321,7 +335,7 @@ export class ReadingView extends LitElement {
               <td>${name} <span class="quiet">(${says})</span></td>
               <td class="number">${value === null ? "—" : figure(value)}</td>
               <td class="number">${figure(limit)}</td>
-              <td class="number">${of !== null && of > 1 ? html`<b>${ratio(of)} × limit</b>` : ratio(of)}</td>
+              <td class="number">${of !== null && of > 1 ? html`<b>${ratio(of)}</b>` : ratio(of)}</td>
             </tr>`,
           )}
         </tbody>
