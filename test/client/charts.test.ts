@@ -97,6 +97,7 @@ describe("value ticks", () => {
     const spots = spreadLabels([50, 52, 120], 14, 6, 150);
     expect(spots[1] - spots[0]).toBeGreaterThanOrEqual(14);
     expect(spots[2]).toBe(120);
+    expect(spreadLabels([7, 8], 14, 6, 150)).toEqual([7, 21]);
     const crowded = spreadLabels([148, 149, 150], 14, 6, 150);
     expect(crowded).toEqual([122, 136, 150]);
   });

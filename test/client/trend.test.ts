@@ -160,6 +160,11 @@ describe("gaps on the screen", () => {
     expect(gapsOf(trend, window, gapMs)).toEqual([{ from: start - 60_000, to: start }]);
   });
 
+  test("an answer without readings is hatched where it was asked for, and only there", () => {
+    const window = { from: start - 600_000, to: start + 600_000, live: false };
+    expect(gapsOf(trendOf([]), window, gapMs)).toEqual([{ from: start - 60_000, to: start }]);
+  });
+
   test("are cut to the window, in order", () => {
     const trend = trendOf([reading(0, 90), reading(60, 90), reading(62, 90), reading(120, 90)]);
     const window = { from: start + 30_000, to: start + 90_000, live: false };
@@ -215,6 +220,16 @@ describe("the chart in words", () => {
       "93.0\u2009wt%",
       "no number",
     ]);
+  });
+
+  test("gives the spread, not ±, to an interval of several", () => {
+    const trend = trendOf([reading(0, 90), reading(2, 93, "unfamiliar", 3)], { widthMs: 10_000 });
+    expect(trendRow(trend, property, 0).value).toBe("91.5\u2009wt% (90.0 to 93.0)");
+  });
+
+  test("gives no ± to an interval in which not all was inside, though it has an uncertainty", () => {
+    const trend = trendOf([reading(0, 90), reading(2, 90, "unfamiliar", 3)], { widthMs: 10_000 });
+    expect(trendRow(trend, property, 0).value).toBe("90.0\u2009wt%");
   });
 
   test("takes rows evenly, the newest first", () => {
