@@ -49,7 +49,7 @@ async function assemble(
   let engine: EngineThread | undefined;
   let brokerUrl: string;
   if ("embedded" in brokerConfig) {
-    const isReading = (topic: string) => topic.startsWith(`${prefix}/`) && topic.endsWith("/reading");
+    const isReading = (topic: string) => topic.startsWith(`${prefix}/`) && /\/(reading|state)$/.test(topic);
     broker = await startEmbeddedBroker({
       ...brokerConfig.embedded,
       inboxFile,

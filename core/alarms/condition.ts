@@ -1,6 +1,7 @@
 import type { AlarmRule, PropertyWatch } from "../limit-set/index.ts";
 import type { Judged } from "../messages/index.ts";
 import type { Condition } from "./detector.ts";
+import { type Drift, driftCondition } from "./drift.ts";
 
 /** What the conditions look at besides the reading itself. */
 export interface Surroundings {
@@ -8,6 +9,8 @@ export interface Surroundings {
   unusable: readonly number[];
   /** the reading repeats the spectrum before it, and did so often enough to be called frozen */
   frozen: boolean;
+  /** for an alarm on drift: its memory, this reading included */
+  drift?: Drift;
 }
 
 /** What one reading says about the condition of one alarm. */
@@ -31,6 +34,8 @@ export function conditionOf(rule: AlarmRule, judged: Judged, surroundings: Surro
       return "clear"; // a reading is here; that there is none, the clock says
     case "frozen":
       return surroundings.frozen ? "beyond" : "clear";
+    case "drifting":
+      return driftCondition(surroundings.drift, judged.ratios.q, watches);
     default:
       return watches satisfies never;
   }

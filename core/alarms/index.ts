@@ -1,3 +1,16 @@
+export {
+  type Activation,
+  type AlarmCommand,
+  type AlarmEvent,
+  type AlarmRecord,
+  type AlarmState,
+  isSetAside,
+  type LifecycleRules,
+  type Remark,
+  type Standing,
+  stateWord,
+  waits,
+} from "./alarm-state.ts";
 export { conditionOf, isUpper, type Surroundings } from "./condition.ts";
 export {
   afterGap,
@@ -7,6 +20,7 @@ export {
   restingDetector,
   type Signal,
 } from "./detector.ts";
+export { type Drift, driftCondition, followDrift, type Outlook, outlookOf } from "./drift.ts";
 export {
   type Beyond,
   excursionFrom,
@@ -14,10 +28,4 @@ export {
   extend,
   type OpenExcursion,
 } from "./excursion.ts";
-export {
-  type AlarmEvent,
-  type AlarmRecord,
-  type AlarmState,
-  advance,
-  stateWord,
-} from "./lifecycle.ts";
+export { advance } from "./lifecycle.ts";

@@ -1,4 +1,6 @@
-export { acknowledge, adopt, openAlarms } from "./alarms.ts";
+export { adopt } from "./adopt.ts";
+export { commandAlarm } from "./alarm-command.ts";
+export { openAlarms, setAsideAlarms } from "./alarms.ts";
 export { endExcursions, openExcursions } from "./excursions.ts";
 export {
   type Arrival,
@@ -10,6 +12,7 @@ export {
   verdictOf,
 } from "./judge.ts";
 export type { Note } from "./notes.ts";
+export { hearProcessState, type ProcessJudgement } from "./process-state.ts";
 export { explainedOf, Scorer } from "./scorer.ts";
 export { freshState, type StreamState } from "./state.ts";
 export type { ValidityRules } from "./validity.ts";

@@ -1,9 +1,11 @@
 import type { LimitSet } from "../limit-set/index.ts";
 import type { Excursion, Judged, Prediction, Reading, Verdict } from "../messages/index.ts";
 import { AxisError } from "../spectrum/index.ts";
+import { advanceAll } from "./advance-alarm.ts";
 import { runAlarms, silenceUntil } from "./alarms.ts";
 import { endExcursions, runExcursions } from "./excursions.ts";
 import { closeGap, type Note } from "./notes.ts";
+import { processTimeAt } from "./process-state.ts";
 import type { Scorer } from "./scorer.ts";
 import type { StreamState } from "./state.ts";
 import { fingerprint, type Invalid, invalidity, type ValidityRules } from "./validity.ts";
@@ -120,7 +122,10 @@ export function judge(state: StreamState, arrival: Arrival, rules: StreamRules):
   return [next, judgement];
 }
 
-/** The wall clock moves on without a reading: raises "silent" and ends excursions that nobody watches any more. Pure. */
+/**
+ * The wall clock moves on without a reading: raises "silent", ends shelves whose time has run out, suppressions and excursions that nobody
+ * watches any more. The same `state` when nothing has changed. Pure.
+ */
 export function tick(
   state: StreamState,
   now: number,
@@ -128,7 +133,11 @@ export function tick(
   rules: StreamRules,
 ): [StreamState, Note[], Excursion[]] {
   const lastHeard = Math.max(state.receivedAt ?? Number.NEGATIVE_INFINITY, listeningSince);
-  const [silent, notes] = silenceUntil(state, now, lastHeard, rules);
+  const [clocked, clockNotes] = advanceAll(state, { kind: "wall clock", at: now }, rules);
+  const processTime = processTimeAt(clocked, now);
+  const [timed, timeNotes] = advanceAll(clocked, { kind: "process time", at: processTime }, rules);
+  const [silent, silentNotes] = silenceUntil(timed, now, lastHeard, rules);
+  const notes = [...clockNotes, ...timeNotes, ...silentNotes];
   if (now - lastHeard <= rules.gapMs || Object.keys(silent.excursions).length === 0) return [silent, notes, []];
   const [next, moreNotes, excursions] = endExcursions(silent, "gap", rules);
   return [next, [...notes, ...moreNotes], excursions];

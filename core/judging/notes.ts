@@ -13,5 +13,5 @@ export function closeGap(state: StreamState, rules: StreamRules): [StreamState, 
   const detectors = Object.fromEntries(
     Object.entries(next.detectors).map(([key, detector]) => [key, afterGap(detector)]),
   );
-  return [{ ...next, detectors, unusable: [], same: 0 }, notes, excursions];
+  return [{ ...next, detectors, drifts: {}, unusable: [], same: 0 }, notes, excursions];
 }

@@ -1,5 +1,5 @@
-import type { AlarmState, DetectorState, OpenExcursion } from "../alarms/index.ts";
-import type { Judged, Verdict } from "../messages/index.ts";
+import type { AlarmState, DetectorState, Drift, OpenExcursion } from "../alarms/index.ts";
+import type { Judged, ProcessState, Verdict } from "../messages/index.ts";
 
 /**
  * All that judging remembers of one stream: plain data, kept in the store with every commit, so that a restart goes on where the record
@@ -18,6 +18,10 @@ export interface StreamState {
   same: number;
   /** of the last readings, which were unusable (1 or 0), oldest first */
   unusable: number[];
+  /** what the plant said last of the line; null while it has said nothing */
+  process: ProcessState | null;
+  /** of the alarms on drift */
+  drifts: Record<string, Drift>;
   detectors: Record<string, DetectorState>;
   alarms: Record<string, AlarmState>;
   excursions: Record<string, OpenExcursion>;
@@ -32,6 +36,8 @@ export const freshState: StreamState = {
   fingerprint: "",
   same: 0,
   unusable: [],
+  process: null,
+  drifts: {},
   detectors: {},
   alarms: {},
   excursions: {},

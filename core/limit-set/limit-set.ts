@@ -1,5 +1,5 @@
 import { type Static, Type } from "typebox";
-import { PrioritySchema } from "../messages/index.ts";
+import { PrioritySchema, ProcessStateWordSchema } from "../messages/index.ts";
 
 /** One statistic's limit: the number in force, and where it came from. The number rules; method and confidence say how to make it again. */
 export const StatisticLimitSchema = Type.Object({
@@ -50,15 +50,29 @@ const SilentWatchSchema = Type.Object({
   periods: Type.Number({ minimum: 2 }),
 });
 const FrozenWatchSchema = Type.Object({ kind: Type.Literal("frozen") });
+const DriftingWatchSchema = Type.Object({
+  kind: Type.Literal("drifting"),
+  /** of the smoothing, process time: what comes and goes faster is no drift */
+  timeConstantMinutes: Type.Number({ exclusiveMinimum: 0, maximum: 100_000 }),
+  /** beyond when the smoothed Q, going on as it does, would reach its limit within this time */
+  withinMinutes: Type.Number({ exclusiveMinimum: 0, maximum: 1_000_000 }),
+  /** share of `withinMinutes`: the limit must be further away than `withinMinutes` · (1 + deadband) before the alarm clears */
+  deadband: Type.Number({ minimum: 0 }),
+});
 export const WatchSchema = Type.Union([
   PropertyWatchSchema,
   StatisticWatchSchema,
   UnusableShareWatchSchema,
   SilentWatchSchema,
   FrozenWatchSchema,
+  DriftingWatchSchema,
 ]);
 export type Watch = Static<typeof WatchSchema>;
 export type PropertyWatch = Static<typeof PropertyWatchSchema>;
+export type DriftingWatch = Static<typeof DriftingWatchSchema>;
+
+/** Engineering judgement, not a standard: no alarm stays shelved into the shift after the next. */
+export const mostShelvedMinutes = 480;
 
 export const AlarmRuleSchema = Type.Object({
   key: Type.String({ pattern: "^[a-z0-9-]{1,64}$" }),
@@ -72,6 +86,16 @@ export const AlarmRuleSchema = Type.Object({
    * other · suppress: it counts as a return to normal. Other alarms take no notice of it.
    */
   untrusted: Type.Union([Type.Literal("hold"), Type.Literal("evaluate"), Type.Literal("suppress")]),
+  /** stays after its condition has gone until a person resets it (default: no) */
+  latching: Type.Optional(Type.Boolean()),
+  /** states of the process in which it is suppressed by design, as the plant names them on `…/state`: "cleaning", "stopped" */
+  suppressedIn: Type.Optional(Type.Array(ProcessStateWordSchema, { maxItems: 20 })),
+  /** process time that the suppression outlasts those states: the line has a volume that must be swept out (default 0) */
+  suppressedForMinutesAfter: Type.Optional(Type.Number({ minimum: 0, maximum: 10_000 })),
+  /** nobody may shelve it for longer at a time (default {@link mostShelvedMinutes}) */
+  mostShelvedMinutes: Type.Optional(Type.Number({ exclusiveMinimum: 0, maximum: 10_080 })),
+  /** annunciated anew when it has stood acknowledged for so long, wall clock (default: never) */
+  remindAfterMinutes: Type.Optional(Type.Number({ exclusiveMinimum: 0, maximum: 10_080 })),
   /** ISA-18.2 rationalization: an alarm without a response is none */
   purpose: Type.Object({
     cause: Type.String(),

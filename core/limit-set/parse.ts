@@ -97,13 +97,24 @@ function checkAlarms(alarms: readonly AlarmRule[], file: string, properties: rea
         });
       }
     }
-    // ISA-18.2: no response, no alarm. It may still be kept on record.
-    if (rule.priority !== "record only" && rule.purpose.response.trim() === "") {
-      fail("purpose.response", {
-        got: "empty",
-        expected: "what the operator is to do",
-        todo: 'Say it, or give the alarm the priority "record only".',
-      });
-    }
+    checkPurpose(rule, fail);
   });
+}
+
+const purposeWords = {
+  response: "what the operator is to do",
+  cause: "what may have brought it about",
+  consequence: "what comes of it when nobody acts",
+} as const;
+
+/** ISA-18.2 rationalization: no response, no alarm. What has none, or no time to respond, may still be kept on record. */
+function checkPurpose({ priority, purpose }: AlarmRule, fail: (field: string, mismatch: Mismatch) => never): void {
+  if (priority === "record only") return;
+  const todo = 'Say it, or give the alarm the priority "record only".';
+  for (const [name, expected] of Object.entries(purposeWords) as [keyof typeof purposeWords, string][]) {
+    if (purpose[name].trim() === "") fail(`purpose.${name}`, { got: "empty", expected, todo });
+  }
+  if (purpose.timeToRespondMinutes <= 0) {
+    fail("purpose.timeToRespondMinutes", { got: "0", expected: "the minutes that are left to respond", todo });
+  }
 }

@@ -1,5 +1,13 @@
 import { type Static, Type } from "typebox";
-import { ExcursionSchema, OpenAlarmSchema, PrioritySchema, RecordedEventSchema } from "./alarm.ts";
+import {
+  ExcursionLabelSchema,
+  ExcursionSchema,
+  OpenAlarmSchema,
+  PrioritySchema,
+  RecordedEventSchema,
+  RegionSchema,
+  SetAsideAlarmSchema,
+} from "./alarm.ts";
 import { AxisUnitSchema } from "./reading.ts";
 import { JudgedSchema } from "./result.ts";
 
@@ -86,17 +94,6 @@ export const TrendSchema = Type.Object({
   q: Type.Object({ max: sparseNumbers, mean: sparseNumbers }),
 });
 export type Trend = Static<typeof TrendSchema>;
-
-export const RegionSchema = Type.Object({
-  from: Type.Number(),
-  to: Type.Number(),
-  unit: AxisUnitSchema,
-  /** share of the statistic, 0–1 (of the sum of absolute contributions where they have signs) */
-  share: Type.Number(),
-  /** +1: more absorption than the model can explain; −1: less */
-  sign: Type.Number(),
-});
-export type Region = Static<typeof RegionSchema>;
 
 /** GET /api/v1/streams/:id/reading?at — the last reading at or before `at`, explained. */
 export const ReadingViewSchema = Type.Object({
@@ -189,14 +186,29 @@ export const EventsSchema = Type.Object({
 export const ExcursionsSchema = Type.Object({
   excursions: Type.Array(ExcursionSchema),
 });
-/** GET /api/v1/alarms — what is open now. */
+/** GET /api/v1/alarms — what is open now, and what annunciates nothing at present. */
 export const AlarmsSchema = Type.Object({
   alarms: Type.Array(OpenAlarmSchema),
+  setAside: Type.Array(SetAsideAlarmSchema),
 });
-/** POST /api/v1/streams/:id/alarms/:key/acknowledge */
-export const AcknowledgeSchema = Type.Object({
-  note: Type.Optional(Type.String({ maxLength: 2000 })),
+
+const note = Type.Optional(Type.String({ maxLength: 2000 }));
+const reason = Type.String({ minLength: 1, maxLength: 2000 });
+/** POST /api/v1/streams/:id/alarms/:key/acknowledge; the same body for …/reset, …/unshelve and …/return-to-service */
+export const AcknowledgeSchema = Type.Object({ note });
+/** POST /api/v1/streams/:id/alarms/:key/shelve — `minutes`: for so long; without them: for the present activation only. */
+export const ShelveSchema = Type.Object({
+  reason,
+  minutes: Type.Optional(Type.Number({ exclusiveMinimum: 0, maximum: 10_080 })),
 });
+/** POST /api/v1/streams/:id/alarms/:key/out-of-service — `until`: comes back by itself then (wall clock, epoch ms). */
+export const TakeOutOfServiceSchema = Type.Object({ reason, until: Type.Optional(Type.Integer()) });
+/** POST /api/v1/streams/:id/excursions/:kind/:start/label */
+export const LabelExcursionSchema = Type.Object({ label: ExcursionLabelSchema, note });
+/** POST /api/v1/streams/:id/excursions/:kind/:start/notes */
+export const NoteExcursionSchema = Type.Object({ note: Type.String({ minLength: 1, maxLength: 2000 }) });
+/** What every command answers when it was done; when not, 409 and a {@link ProblemSchema} with the reason. */
+export const DoneSchema = Type.Object({ done: Type.Literal(true) });
 
 /** Every refusal over HTTP. */
 export const ProblemSchema = Type.Object({

@@ -1,5 +1,6 @@
 import { type Static, Type } from "typebox";
-import { ExcursionSchema, OpenAlarmSchema, RecordedEventSchema } from "./alarm.ts";
+import { ExcursionSchema, OpenAlarmSchema, RecordedEventSchema, SetAsideAlarmSchema } from "./alarm.ts";
+import { ProcessStateSchema } from "./process-state.ts";
 import { JudgedSchema } from "./result.ts";
 
 /** A screen that has heard nothing on its link for this long says that the link is lost. Beats come every second. */
@@ -45,6 +46,10 @@ export const StreamNowSchema = Type.Object({
   /** since when the present worst verdict has held, process time, epoch ms */
   verdictSince: Type.Union([Type.Number(), Type.Null()]),
   alarms: Type.Array(OpenAlarmSchema),
+  /** alarms that annunciate nothing at present: shelved, suppressed by design, out of service */
+  setAside: Type.Array(SetAsideAlarmSchema),
+  /** what the plant says of the line; absent while it has said nothing */
+  process: Type.Optional(ProcessStateSchema),
   excursions: Type.Array(ExcursionSchema),
   refused: Type.Integer(),
   /** the property alarms are held while the reading is not inside */

@@ -23,7 +23,7 @@ export function decodeReading(payload: Uint8Array): Decoded {
   if (payload.length > mostBytes) {
     return { kind: "refused", reason: "too large", says: `${payload.length} bytes, at most ${mostBytes} are taken` };
   }
-  const parsed = parse(payload);
+  const parsed = parsePayload(payload);
   return "says" in parsed ? malformed(parsed.says) : readingOf(parsed.value);
 }
 
@@ -58,7 +58,8 @@ function keepEnvelope(fields: {
   return { ...(axis && { axis }), ...(quality && { quality }), ...(context && { context }) };
 }
 
-function parse(payload: Uint8Array): { value: unknown } | { says: string } {
+/** The value that a payload holds, in JSON or CBOR; told apart by the first byte. */
+export function parsePayload(payload: Uint8Array): { value: unknown } | { says: string } {
   const first = payload[0];
   try {
     if (first === 0x7b) return { value: JSON.parse(utf8.decode(payload)) };
@@ -71,7 +72,8 @@ function parse(payload: Uint8Array): { value: unknown } | { says: string } {
   return { says: `the payload ${begins}, expected { (JSON) or 0xa0–0xbf (a CBOR map)` };
 }
 
-function timeOf(stamp: number | string): number | string {
+/** Epoch ms of a time in either form, or the sentence that says why it is none. */
+export function timeOf(stamp: number | string): number | string {
   if (typeof stamp === "string" && !rfc3339.test(stamp)) {
     return `time is ${shown(stamp)}, expected RFC 3339 with an offset (2026-05-14T18:42:07Z) or epoch milliseconds`;
   }

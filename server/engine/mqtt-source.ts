@@ -16,11 +16,11 @@ export class MqttSource implements Source {
   constructor(options: {
     url: string;
     connection: IClientOptions;
-    topic: string;
+    topics: string[];
     wake: () => void;
     log: (says: string) => void;
   }) {
-    const { url, connection, topic, wake, log } = options;
+    const { url, connection, topics, wake, log } = options;
     // clean: false keeps the session, so that what comes while the engine is down waits at the broker.
     this.#client = connect(url, { ...connection, clean: false, reconnectPeriod: 1000, resubscribe: true });
     this.#client.handleMessage = (packet, done) => {
@@ -30,9 +30,10 @@ export class MqttSource implements Source {
     };
     this.#client.on("connect", ({ sessionPresent }) => {
       log(sessionPresent ? "broker reached, session resumed" : "broker reached, new session");
-      this.#client.subscribe(topic, { qos: 1 }, (error, granted) => {
+      this.#client.subscribe(topics, { qos: 1 }, (error, granted) => {
         const refused = granted?.some(({ qos }) => qos !== 1) ?? false;
-        if (error || refused) log(`the broker does not grant ${topic} at QoS 1${error ? `: ${error.message}` : ""}`);
+        if (error || refused)
+          log(`the broker does not grant ${topics.join(" and ")} at QoS 1${error ? `: ${error.message}` : ""}`);
       });
     });
     this.#client.on("close", () => {

@@ -1,9 +1,10 @@
-/** The topics of one site: `<prefix>/<site>/<stream>/<what>` (design of the contract: reading in; result, alarm, status out). */
+/** The topics of one site: `<prefix>/<site>/<stream>/<what>` (reading and state in; result, alarm, status out). */
 export interface Topics {
-  /** what the engine subscribes to */
+  /** what the engine subscribes to: readings, and what the plant says of the process */
   readings: string;
-  /** the stream that a reading's topic names; undefined when the topic is not one of this site's readings */
-  streamOf(topic: string): string | undefined;
+  states: string;
+  /** the stream that a topic names, and what comes on it; undefined when it is not one of those that the engine reads */
+  read(topic: string): { stream: string; what: "reading" | "state" } | undefined;
   result(stream: string): string;
   alarm(stream: string): string;
   /** retained: a stream's verdict and open alarms, whenever one of them changes */
@@ -16,14 +17,21 @@ export function topicsOf(prefix: string, site: string): Topics {
   const root = `${prefix}/${site}/`;
   return {
     readings: `${root}+/reading`,
-    streamOf(topic) {
-      if (!topic.startsWith(root) || !topic.endsWith("/reading")) return undefined;
-      const stream = topic.slice(root.length, -"/reading".length);
-      return stream.includes("/") ? undefined : stream;
+    states: `${root}+/state`,
+    read(topic) {
+      const what = whatOf(topic);
+      if (what === undefined || !topic.startsWith(root)) return undefined;
+      const stream = topic.slice(root.length, -(what.length + 1));
+      return stream.includes("/") ? undefined : { stream, what };
     },
     result: (stream) => `${root}${stream}/result`,
     alarm: (stream) => `${root}${stream}/alarm`,
     status: (stream) => `${root}${stream}/status`,
     engineStatus: `${root}status`,
   };
+}
+
+function whatOf(topic: string): "reading" | "state" | undefined {
+  if (topic.endsWith("/reading")) return "reading";
+  return topic.endsWith("/state") ? "state" : undefined;
 }

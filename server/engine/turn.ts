@@ -1,5 +1,5 @@
 import {
-  acknowledge,
+  hearProcessState,
   type Judgement,
   judge,
   type Note,
@@ -7,17 +7,23 @@ import {
   openExcursions,
   type StreamRules,
   type StreamState,
+  setAsideAlarms,
   tick,
 } from "../../core/judging/index.ts";
 import type { Excursion, Judged, Reading, RecordedEvent, StreamNow } from "../../core/messages/index.ts";
 import type { Changes, NewReading, NewRefusal } from "../store/store.ts";
 import { decodeReading } from "./decode.ts";
+import { decodeProcessState } from "./decode-process-state.ts";
 import type { Message } from "./source.ts";
+import { carryOut, type StreamCommand } from "./stream-command.ts";
 import type { EngineStream } from "./streams.ts";
 import type { Topics } from "./topics.ts";
 
 /** What a person or a program asks of the engine. */
-export type Command = { kind: "acknowledge"; stream: string; key: string; by: string; note?: string };
+export type Command =
+  | StreamCommand
+  /** something for the record that touches no stream: a sign-in, say */
+  | { kind: "record"; event: string; says: string; by?: string };
 export type CommandOutcome = { done: true } | { done: false; says: string };
 
 export type Input =
@@ -132,7 +138,7 @@ class TurnBuilder {
   }
 
   #message({ topic, payload, receivedAt }: Message): void {
-    const named = this.#context.topics.streamOf(topic);
+    const { stream: named, what } = this.#context.topics.read(topic) ?? {};
     const stream = named === undefined ? undefined : this.#streams.get(named);
     const refuse = (reason: string, says: string) => {
       this.#refusals.push({ stream: stream ? named! : null, topic, receivedAt, reason, says, payload });
@@ -141,6 +147,10 @@ class TurnBuilder {
     if (!stream) {
       const known = [...this.#streams.keys()].join(", ");
       refuse("unknown stream", `topic ${topic.slice(0, 200)} names no stream of this plant; it has ${known}`);
+      return;
+    }
+    if (what === "state") {
+      this.#processState(named!, stream, { payload, receivedAt }, refuse);
       return;
     }
     const decoded = decodeReading(payload);
@@ -167,6 +177,35 @@ class TurnBuilder {
     this.#record(reading, receivedAt, judgement, false);
     if (judgement.refusal) refuse(judgement.refusal.reason, judgement.refusal.says);
     this.#judged.push(judgement.judged);
+  }
+
+  #processState(
+    id: string,
+    stream: EngineStream,
+    { payload, receivedAt }: Pick<Message, "payload" | "receivedAt">,
+    refuse: (reason: string, says: string) => void,
+  ): void {
+    const decoded = decodeProcessState(payload);
+    if (decoded.kind === "refused") {
+      refuse("malformed", decoded.says);
+      return;
+    }
+    const [state, heard] = hearProcessState(stream.state, decoded.state, receivedAt, stream.rules);
+    switch (heard.kind) {
+      case "repeat":
+        this.#repeats++;
+        return;
+      case "refused":
+        refuse(heard.reason, `process state: ${heard.says}`);
+        return;
+      case "heard":
+        this.#streams.set(id, { ...stream, state });
+        this.#changed.add(id);
+        this.#note(heard.notes, false);
+        return;
+      default:
+        heard satisfies never;
+    }
   }
 
   #history(load: Load, readings: readonly Reading[]): void {
@@ -251,21 +290,27 @@ class TurnBuilder {
   }
 
   #command(id: number, now: number, command: Command): void {
+    if (command.kind === "record") {
+      const { event, says, by } = command;
+      this.#note([{ at: now, stream: null, kind: event, says, ...(by === undefined ? {} : { by }) }], false);
+      this.#replies.push({ id, outcome: { done: true } });
+      return;
+    }
     const stream = this.#streams.get(command.stream);
     if (!stream) {
       const says = `${command.stream} is no stream of this plant; it has ${[...this.#streams.keys()].join(", ")}`;
       this.#replies.push({ id, outcome: { done: false, says } });
       return;
     }
-    const { key, by, note } = command;
-    const { state, notes, rejected } = acknowledge(stream.state, key, { at: now, by, note }, stream.rules);
+    const { state, notes, rejected } = carryOut(stream, command, now);
+    // What was rejected is on record all the same, with the reason.
+    this.#note(notes, false);
     if (rejected !== undefined) {
       this.#replies.push({ id, outcome: { done: false, says: rejected } });
       return;
     }
     this.#streams.set(command.stream, { ...stream, state });
     this.#changed.add(command.stream);
-    this.#note(notes, false);
     this.#replies.push({ id, outcome: { done: true } });
   }
 
@@ -298,7 +343,7 @@ class TurnBuilder {
   }
 }
 
-/** Nobody was there to acknowledge what history raised: an alarm that returned to normal is done, and does not wait to be raised "again". */
+/** Nobody was there to acknowledge or reset what history raised: an alarm whose condition has gone is done, and does not wait to be raised "again". */
 function unattended(state: StreamState): StreamState {
   const returned = Object.values(state.alarms).some(({ active }) => !active);
   if (!returned) return state;
@@ -315,6 +360,8 @@ export function streamNow({ rules, state }: EngineStream, refused: number): Stre
     lastInside: state.lastInside,
     verdictSince: state.verdictSince,
     alarms: openAlarms(state, rules),
+    setAside: setAsideAlarms(state, rules),
+    ...(state.process ? { process: state.process } : {}),
     excursions: openExcursions(state, rules),
     refused,
     held: held && rules.limitSet.alarms.some((rule) => rule.watches.kind === "property" && rule.untrusted === "hold"),

@@ -39,7 +39,7 @@ function run(): void {
     : new MqttSource({
         url: brokerUrl,
         connection: connectionOf(config, "readings"),
-        topic: topics.readings,
+        topics: [topics.readings, topics.states],
         wake: () => engine.wake(),
         log,
       });

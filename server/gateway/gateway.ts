@@ -12,6 +12,7 @@ import { isOurs } from "./guard.ts";
 import { LiveHub } from "./live-hub.ts";
 import { RequestError } from "./problem.ts";
 import { ReadingExplainer } from "./reading-view.ts";
+import { alarmRoutes } from "./routes/alarms.ts";
 import { loadRoutes } from "./routes/load.ts";
 import { recordRoutes } from "./routes/record.ts";
 import { streamRoutes } from "./routes/streams.ts";
@@ -104,6 +105,7 @@ export async function startGateway(options: {
       api.addHook("onSend", async (_request, reply) => void reply.header("Cache-Control", "no-store"));
       recordRoutes(api, parts);
       streamRoutes(api, parts);
+      alarmRoutes(api, parts);
       loadRoutes(api, parts);
       api.get("/openapi.json", { schema: { hide: true } }, () => app.swagger());
       api.setNotFoundHandler((request) => {

@@ -30,6 +30,7 @@ export function recordRoutes(app: FastifyInstance, parts: GatewayParts): void {
 
   app.get("/alarms", { schema: { response: { 200: AlarmsSchema } } }, () => ({
     alarms: live.picture.now.flatMap(({ alarms }) => alarms),
+    setAside: live.picture.now.flatMap(({ setAside }) => setAside),
   }));
 
   app.get<{ Querystring: { stream?: string; after?: number; before?: number; limit: number } }>(
