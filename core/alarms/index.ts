@@ -22,8 +22,11 @@ export {
 } from "./detector.ts";
 export { type Drift, driftCondition, followDrift, type Outlook, outlookOf } from "./drift.ts";
 export {
+  type Account,
+  apartFrom,
   type Beyond,
   excursionFrom,
+  excursionId,
   excursionOf,
   extend,
   type OpenExcursion,

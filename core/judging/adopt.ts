@@ -1,4 +1,4 @@
-import { type AlarmState, waits } from "../alarms/index.ts";
+import { type Activation, type AlarmState, waits } from "../alarms/index.ts";
 import { advanceAll } from "./advance-alarm.ts";
 import { removedNote } from "./alarms.ts";
 import type { StreamRules } from "./judge.ts";
@@ -12,7 +12,7 @@ import { freshState, type StreamState } from "./state.ts";
  * @param at wall clock, epoch ms
  */
 export function adopt(kept: StreamState, at: number, rules: StreamRules): [StreamState, Note[]] {
-  const state = { ...freshState, ...kept }; // an older version did not keep all of it
+  const state = broughtUp(kept);
   const byKey = new Map(rules.limitSet.alarms.map((rule) => [rule.key, rule]));
   const keep = <T>(record: Record<string, T>) =>
     Object.fromEntries(Object.entries(record).filter(([key]) => byKey.has(key)));
@@ -28,6 +28,26 @@ export function adopt(kept: StreamState, at: number, rules: StreamRules): [Strea
   const adopted = { ...state, alarms, detectors: keep(state.detectors), drifts: keep(state.drifts) };
   const [next, more] = advanceAll(adopted, { kind: "wall clock", at }, rules);
   return [next, [...notes, ...more]];
+}
+
+/** What an older version of this program kept has less in it. */
+function broughtUp(kept: StreamState): StreamState {
+  const blank = { within: 0, made: [], regions: [], alarms: [] };
+  const excursions = Object.entries(kept.excursions).map(([kind, open]) => [kind, { ...blank, ...open }]);
+  const alarms = Object.entries(kept.alarms).map(([key, alarm]) => [key, "standing" in alarm ? alarm : ofOld(alarm)]);
+  return {
+    ...freshState,
+    ...kept,
+    excursions: Object.fromEntries(excursions),
+    alarms: Object.fromEntries(alarms),
+  };
+}
+
+/** The first form of an alarm's state: without standing, and never set aside. */
+function ofOld(alarm: Activation & { active: boolean; unacknowledged: boolean }): AlarmState {
+  const { active, unacknowledged, since, raisedAt, says, limitSet, ...rest } = alarm;
+  const standing = active ? (unacknowledged ? "unacknowledged" : "acknowledged") : "returned unacknowledged";
+  return { ...rest, active, standing, times: unacknowledged ? 1 : 0, activation: { since, raisedAt, says, limitSet } };
 }
 
 /** An alarm that has become one for the record only waits for nobody any more. */

@@ -11,6 +11,7 @@ export {
   tick,
   verdictOf,
 } from "./judge.ts";
+export { type ExcursionCommand, labelExcursion } from "./label-excursion.ts";
 export type { Note } from "./notes.ts";
 export { hearProcessState, type ProcessJudgement } from "./process-state.ts";
 export { explainedOf, Scorer } from "./scorer.ts";

@@ -1,12 +1,16 @@
 import type { AxisSpec } from "../messages/index.ts";
 import { type CompiledModel, type Explanation, explain, newScore, type Score, scoreInto } from "../pls/index.ts";
 import { axisFromSpec, resampler, sameAxis } from "../spectrum/index.ts";
+import { Contributions } from "./contributions.ts";
 import type { Explained } from "./words.ts";
 
 /** What the words about a reading are made of. */
-export function explainedOf({ qRegions, t2Regions }: Explanation, { model }: CompiledModel): Explained {
-  const slopes = model.steps.some((step) => step.step === "savitzky-golay" && step.derivative > 0);
-  return { qRegions, t2Regions, slopes };
+export function explainedOf({ qRegions, t2Regions }: Explanation, compiled: CompiledModel): Explained {
+  return { qRegions, t2Regions, slopes: takesSlopes(compiled) };
+}
+
+function takesSlopes({ model }: CompiledModel): boolean {
+  return model.steps.some((step) => step.step === "savitzky-golay" && step.derivative > 0);
 }
 
 type Bring = (values: Float64Array, out: Float64Array) => void;
@@ -23,6 +27,7 @@ export class Scorer {
   readonly score: Score;
   /** the last spectrum on the model's axis */
   readonly onAxis: Float64Array;
+  #contributions: Contributions | undefined;
   readonly #ways = new Map<string, { bring: Bring | undefined; points: number }>();
 
   constructor(compiled: CompiledModel) {
@@ -53,6 +58,17 @@ export class Scorer {
   /** Which regions make T² and Q of the spectrum that was scored last. */
   explained(): Explained {
     return explainedOf(explain(this.onAxis, this.compiled), this.compiled);
+  }
+
+  /** Contributions of the spectrum that was scored last; made ready when they are first asked for. */
+  get contributions(): Contributions {
+    this.#contributions ??= new Contributions(this.compiled);
+    return this.#contributions;
+  }
+
+  /** Do the model's steps take a derivative? A residual then tells of slopes. */
+  get slopes(): boolean {
+    return takesSlopes(this.compiled);
   }
 
   #bringInto(values: Float64Array, axis: AxisSpec | undefined, out: Float64Array): void {

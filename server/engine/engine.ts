@@ -187,7 +187,11 @@ export class Engine {
     const turn = takeTurn(
       inputs,
       { streams: this.#streams, cursor: this.#cursor },
-      { topics: this.#topics, isRecorded: (...identity) => this.#store.isRecorded(...identity) },
+      {
+        topics: this.#topics,
+        isRecorded: (...identity) => this.#store.isRecorded(...identity),
+        excursion: (id) => this.#store.excursion(id),
+      },
     );
     if (!this.#commit(turn.changes)) {
       // Nothing was taken over, so the same inputs go through again; ticks are made anew by the clock.

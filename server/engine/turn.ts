@@ -60,6 +60,8 @@ export interface Context {
   topics: Topics;
   /** is this identity on record already? (not counting this turn) */
   isRecorded: (stream: string, time: number, sequence: number) => boolean;
+  /** an excursion on record (not counting this turn) */
+  excursion: (id: string) => Excursion | undefined;
 }
 
 /** All inputs of one turn through judging, in their order. Changes nothing outside: the caller commits, then takes over what is returned. */
@@ -302,7 +304,9 @@ class TurnBuilder {
       this.#replies.push({ id, outcome: { done: false, says } });
       return;
     }
-    const { state, notes, rejected } = carryOut(stream, command, now);
+    const { state, notes, excursions, rejected } = carryOut(stream, command, now, (excursion) =>
+      this.#excursion(excursion),
+    );
     // What was rejected is on record all the same, with the reason.
     this.#note(notes, false);
     if (rejected !== undefined) {
@@ -311,7 +315,13 @@ class TurnBuilder {
     }
     this.#streams.set(command.stream, { ...stream, state });
     this.#changed.add(command.stream);
+    this.#excursions.push(...excursions);
     this.#replies.push({ id, outcome: { done: true } });
+  }
+
+  /** As it is on record, or will be with this turn. */
+  #excursion(id: string): Excursion | undefined {
+    return this.#excursions.findLast((excursion) => excursion.id === id) ?? this.#context.excursion(id);
   }
 
   #isKnown(stream: string, { time, sequence }: Reading, state: StreamState | undefined): boolean {

@@ -13,6 +13,7 @@ import { LiveHub } from "./live-hub.ts";
 import { RequestError } from "./problem.ts";
 import { ReadingExplainer } from "./reading-view.ts";
 import { alarmRoutes } from "./routes/alarms.ts";
+import { excursionRoutes } from "./routes/excursions.ts";
 import { loadRoutes } from "./routes/load.ts";
 import { recordRoutes } from "./routes/record.ts";
 import { streamRoutes } from "./routes/streams.ts";
@@ -106,6 +107,7 @@ export async function startGateway(options: {
       recordRoutes(api, parts);
       streamRoutes(api, parts);
       alarmRoutes(api, parts);
+      excursionRoutes(api, parts);
       loadRoutes(api, parts);
       api.get("/openapi.json", { schema: { hide: true } }, () => app.swagger());
       api.setNotFoundHandler((request) => {

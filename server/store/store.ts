@@ -41,6 +41,7 @@ export interface Changes {
   readings: NewReading[];
   refusals: NewRefusal[];
   events: RecordedEvent[];
+  /** Label and notes of one that is on record stay when they are not given: people put them there, and a later reading must not take them away. */
   excursions: Excursion[];
   /** by stream: what judging remembers after these readings */
   states: Map<string, StreamState>;
@@ -53,6 +54,7 @@ export interface StoreWriter {
   /** What judging remembered at the last commit; undefined for a stream that has never been judged. */
   state(stream: string): StreamState | undefined;
   isRecorded(stream: string, time: number, sequence: number): boolean;
+  excursion(id: string): Excursion | undefined;
   /** The largest cursor on record; 0 for an empty one. */
   lastCursor(): number;
   /** The newest version of a stream's limit set. */
@@ -88,6 +90,8 @@ export interface StoreReader {
   refusals(stream: string | undefined, limit: number): Refusals;
   /** Newest first; `after`: only those with a larger cursor. */
   events(query: { stream?: string; after?: number; before?: number; limit: number }): RecordedEvent[];
+  /** What happened to alarms at `from` ≤ time < `to`, in the order of the record; without what recorded history brought in, unless asked for. */
+  alarmEvents(query: { from: number; to: number; history: boolean }): RecordedEvent[];
   /** Newest first, those that touch `from`–`to`. */
   excursions(query: { stream?: string; from?: number; to?: number; limit: number }): Excursion[];
   limitSet(stream: string, version?: number): LimitSet | undefined;

@@ -67,6 +67,11 @@ export function sqliteReader(file: string): StoreReader {
         "SELECT json FROM event WHERE (@stream IS NULL OR stream = @stream) AND cursor > @after AND cursor < @before ORDER BY cursor DESC LIMIT @limit",
       )
       .pluck(),
+    alarmEvents: db
+      .prepare<Named, string>(
+        "SELECT json FROM event WHERE at >= @from AND at < @to AND kind >= 'alarm ' AND kind < 'alarm!' ORDER BY cursor",
+      )
+      .pluck(),
     excursions: db
       .prepare<Named, string>(
         "SELECT json FROM excursion WHERE (@stream IS NULL OR stream = @stream) AND last >= @from AND start < @to ORDER BY start DESC LIMIT @limit",
@@ -130,6 +135,10 @@ export function sqliteReader(file: string): StoreReader {
       return sql.events
         .all({ stream: stream ?? null, after, before, limit })
         .map((json) => JSON.parse(json) as RecordedEvent);
+    },
+    alarmEvents({ from, to, history }) {
+      const events = sql.alarmEvents.all({ from, to }).map((json) => JSON.parse(json) as RecordedEvent);
+      return history ? events : events.filter((event) => !event.history);
     },
     excursions({ stream, from = 0, to = Number.MAX_SAFE_INTEGER, limit }) {
       return sql.excursions

@@ -1,7 +1,7 @@
 import { createHash } from "node:crypto";
 import type { StreamState } from "../../../core/judging/index.ts";
 import type { LimitSet } from "../../../core/limit-set/index.ts";
-import { type AxisSpec, type Judged, verdictMask } from "../../../core/messages/index.ts";
+import { type AxisSpec, type Excursion, type Judged, verdictMask } from "../../../core/messages/index.ts";
 import type { Changes, NewReading, NewRefusal, StoreWriter } from "../store.ts";
 import { openForWriting } from "./open.ts";
 import { RollupWriter } from "./rollup.ts";
@@ -10,6 +10,10 @@ import { spectrumBytes } from "./spectrum-bytes.ts";
 /** Refusals kept with their payload's beginning; older ones live on in the totals. */
 const mostRefusals = 10_000;
 const payloadKept = 200;
+
+/** What people put to an excursion (label, notes) stays, unless the new form has its own. RFC 7396: the first patch takes out what is null. */
+const upsertExcursion = `INSERT INTO excursion VALUES (?, ?, ?, ?, ?) ON CONFLICT (id) DO UPDATE SET last = excluded.last, json = json_patch(
+  json_patch('{}', json_object('label', json_extract(json, '$.label'), 'notes', json_extract(json, '$.notes'))), excluded.json)`;
 
 /** The SQLite record's writer. One process, one thread: WAL mode lets readers go on beside it. @throws StoreError */
 export function sqliteWriter(file: string): StoreWriter {
@@ -25,9 +29,8 @@ export function sqliteWriter(file: string): StoreWriter {
     reading: db.prepare(`INSERT INTO reading VALUES (${Array(22).fill("?").join(", ")}) ON CONFLICT DO NOTHING`),
     spectrum: db.prepare("INSERT INTO spectrum VALUES (?, ?, ?, ?)"),
     event: db.prepare("INSERT INTO event VALUES (?, ?, ?, ?, ?)"),
-    excursion: db.prepare(
-      "INSERT INTO excursion VALUES (?, ?, ?, ?, ?) ON CONFLICT (id) DO UPDATE SET last = excluded.last, json = excluded.json",
-    ),
+    excursion: db.prepare(upsertExcursion),
+    excursionById: db.prepare<[string], string>("SELECT json FROM excursion WHERE id = ?").pluck(),
     refusal: db.prepare(
       `INSERT INTO refusal (digest, stream, topic, received, last, count, reason, says, payload) VALUES (?, ?, ?, ?, ?, 1, ?, ?, ?)
        ON CONFLICT (digest) DO UPDATE SET count = count + 1, last = excluded.last`,
@@ -151,6 +154,10 @@ export function sqliteWriter(file: string): StoreWriter {
     state(stream) {
       const json = sql.state.get(stream) as string | null | undefined;
       return json ? (JSON.parse(json) as StreamState) : undefined;
+    },
+    excursion(id) {
+      const json = sql.excursionById.get(id);
+      return json === undefined ? undefined : (JSON.parse(json) as Excursion);
     },
     isRecorded: (stream, time, sequence) => sql.recorded.get(streamKey(stream), time, sequence) !== undefined,
     lastCursor: () => sql.lastCursor.get() as number,
