@@ -1,10 +1,11 @@
 import { css, html, LitElement } from "lit";
+import { repeat } from "lit/directives/repeat.js";
 import type { Plant } from "../../core/messages/index.ts";
 import { api } from "../data/api.ts";
 import { Feed } from "../data/feed.ts";
 import { baseStyle } from "../parts/base-style.ts";
 import { type PlantTime, plantTime } from "../words/plant-time.ts";
-import { notices } from "./notices.ts";
+import { type Notice, notices } from "./notices.ts";
 import { href, parseRoute, type Route } from "./route.ts";
 import "./top-bar.ts";
 import "../parts/verdict-mark.ts";
@@ -38,6 +39,8 @@ export class MillraceApp extends LitElement {
   #time: PlantTime | undefined;
   #timer: ReturnType<typeof setInterval> | undefined;
   #settle: ReturnType<typeof setTimeout> | undefined;
+  #said = new Map<string, string>();
+  #wasUp = false;
   readonly #stop = new AbortController();
 
   constructor() {
@@ -164,13 +167,32 @@ export class MillraceApp extends LitElement {
         plant.streams.map(({ id }) => id),
       );
       this.#feed.clockOffsetMs = plant.serverTime - Date.now();
-      this.#feed.watch(() => this.requestUpdate());
+      this.#feed.watch(() => this.#heard());
       this.#feed.open();
       this.plant = plant;
       this.trouble = undefined;
     } catch (error) {
       this.trouble = error as Error;
       setTimeout(() => void this.#begin(), retryMs);
+    }
+  }
+
+  /** When the link is back the service may be another one: other limits, another model, other streams. */
+  #heard(): void {
+    const up = this.#feed?.linkUp ?? false;
+    if (up && !this.#wasUp && this.plant) void this.#readPlantAgain(this.plant);
+    this.#wasUp = up;
+    this.requestUpdate();
+  }
+
+  async #readPlantAgain(before: Plant): Promise<void> {
+    try {
+      const plant = await api.plant();
+      const ids = ({ streams }: Plant) => streams.map(({ id }) => id).join(" ");
+      if (ids(plant) !== ids(before) || plant.version !== before.version) location.reload();
+      else this.plant = plant;
+    } catch {
+      // The link has just come back and may go again: the plant is read at the next return.
     }
   }
 
@@ -189,14 +211,16 @@ export class MillraceApp extends LitElement {
       engine: feed.engine,
       refused: feed.refused,
     });
-    document.title = `${nameOf(this.route)} · ${plant.name}`;
+    const waiting = feed.alarms().filter((alarm) => alarm.state !== "acknowledged" && alarm.priority !== "record only");
+    document.title = `${waiting.length ? `(${waiting.length}) ` : ""}${nameOf(this.route)} · ${plant.name}`;
     return html`
       <nav aria-label="Skip"><a class="skip" href="#main" @click=${this.#skip}>Skip to the view</a></nav>
       <mill-top-bar .plant=${plant} .route=${this.route} .alarms=${feed.alarms()} .now=${now} .time=${time} .linkUp=${feed.linkUp}></mill-top-bar>
-      <div class="notices" role="alert">
+      <div class="unseen" role="alert">${this.#spoken(told, feed)}</div>
+      <div class="notices">
         ${told.filter(({ weight }) => weight === "trouble").map(({ says }) => html`<p class="trouble">${says}</p>`)}
       </div>
-      <div role="status">
+      <div>
         ${told.filter(({ weight }) => weight === "news").map(({ says }) => html`<p class="news">${says}</p>`)}
       </div>
       <main id="main" tabindex="-1">${this.#view(plant, feed, time)}</main>
@@ -204,6 +228,26 @@ export class MillraceApp extends LitElement {
         <span><b>Caution:</b> ${plant.caution}</span>
       </footer>
     `;
+  }
+
+  /**
+   * What a screen reader is told without being asked: new troubles of the service, and alarms that wait for a person. In the words with which
+   * each began, so that a count that runs on is not read out every second.
+   */
+  #spoken(told: readonly Notice[], feed: Feed) {
+    const now = new Map<string, string>();
+    for (const { key, says } of told) now.set(key, this.#said.get(key) ?? says);
+    for (const { stream, key, priority, title, state, response, raisedAt } of feed.alarms()) {
+      if (state !== "unacknowledged" || priority === "record only") continue;
+      const name = this.plant?.streams.find(({ id }) => id === stream)?.name ?? stream;
+      now.set(`${stream} ${key} ${raisedAt}`, `${priority} alarm: ${name}: ${title}. ${response}`);
+    }
+    this.#said = now;
+    return repeat(
+      now,
+      ([key]) => key,
+      ([, says]) => html`<p>${says}</p>`,
+    );
   }
 
   #start() {

@@ -14,6 +14,8 @@ export interface ServiceFacts {
 }
 
 export interface Notice {
+  /** the same for as long as the same thing is wrong, while the words count on */
+  key: string;
   /** "trouble" stands above everything; "news" is quiet */
   weight: "trouble" | "news";
   says: string;
@@ -26,24 +28,30 @@ export const clockOffAfterMs = 5000;
 export function notices(facts: ServiceFacts): Notice[] {
   const { engine, now } = facts;
   const said: Notice[] = [];
-  const trouble = (says: string) => said.push({ weight: "trouble", says });
-  if (facts.refused) trouble(`The server refuses the live link: ${facts.refused}`);
+  const trouble = (key: string, says: string) => said.push({ key, weight: "trouble", says });
+  if (facts.refused) trouble("refused", `The server refuses the live link: ${facts.refused}`);
   if (!facts.linkUp) {
     trouble(
+      facts.everUp ? "link lost" : "connecting",
       facts.everUp && facts.heardAt !== null
         ? `Link to the server lost ${duration(now - facts.heardAt)} ago. Everything shown is old. It is tried again by itself; if it stays lost, use the local panel and call plant IT.`
         : "Connecting to the server …",
     );
   } else if (engine) {
-    if (engine.trouble) trouble(engine.trouble);
+    if (engine.trouble) trouble("engine", engine.trouble);
     if (!engine.running) {
       trouble(
+        "engine stopped",
         "The engine does not run: no reading is judged and no alarm can come. Call plant IT; watch the process by other means.",
       );
     } else if (!engine.source) {
-      trouble("The broker is not reached: no readings can arrive. Call plant IT; watch the process by other means.");
+      trouble(
+        "source lost",
+        "The broker is not reached: no readings can arrive. Call plant IT; watch the process by other means.",
+      );
     } else if (engine.behindMs > behindAfterMs) {
       trouble(
+        "engine behind",
         `The engine is ${duration(engine.behindMs)} behind: ${counted(engine.waiting, "reading")} wait to be judged. Numbers and alarms are late by as much.`,
       );
     }
@@ -51,12 +59,14 @@ export function notices(facts: ServiceFacts): Notice[] {
   if (facts.linkUp && Math.abs(facts.clockOffsetMs) > clockOffAfterMs) {
     const way = facts.clockOffsetMs > 0 ? "behind" : "ahead of";
     trouble(
+      "clock off",
       `This computer's clock is ${duration(Math.abs(facts.clockOffsetMs))} ${way} the server's. Times and ages here follow the server's clock.`,
     );
   }
   if (facts.linkUp && engine?.loading) {
     const { stream, share, done } = engine.loading;
     said.push({
+      key: "loading",
       weight: "news",
       says: `Recorded history of ${stream} is being judged: ${percent(share)}, ${counted(done, "reading")} so far. Older stretches of the trends fill up.`,
     });

@@ -281,6 +281,11 @@ function drawStrip(
     const top = place(mean);
     ctx.fillStyle = colours.fill;
     ctx.fillRect(x, Math.max(limit, top), wide, floor - Math.max(limit, top));
+    if (mean <= 1) {
+      // The edge carries the reading of the strip: it stands out from the ground where the fill alone would not.
+      ctx.fillStyle = colours.edge;
+      ctx.fillRect(x, top, wide, ratio);
+    }
     if (mean > 1) {
       ctx.fillStyle = beyond;
       ctx.fillRect(x, top, wide, limit - top);

@@ -35,6 +35,9 @@ export function drawPanelGround(pen: PanelPen, { axis, range, regions }: PanelPi
   ctx.closePath();
   ctx.fillStyle = colours.band;
   ctx.fill();
+  ctx.strokeStyle = colours.edge;
+  ctx.lineWidth = pen.ratio * 0.8;
+  ctx.stroke();
 }
 
 export function drawPanel(pen: PanelPen, picture: PanelPicture): void {

@@ -114,7 +114,8 @@ export class RangeBar extends LitElement {
 
   #stopped(to: number, wish: (detail: RangeWish) => () => void) {
     const { now, time } = this;
-    return html`<div class="state stopped" role="status">
+    return html`<div class="state stopped">
+      <span class="unseen" role="status">The trends are stopped, not live.</span>
       <span
         ><b>Trends are not live:</b> stopped at <span class="whole">${time.exact(to, now)}</span>,
         <span class="whole">${duration(now - to)}</span> before now. Numbers and alarms are still the present ones.</span

@@ -2,7 +2,7 @@ import type { Browser } from "playwright-core";
 import { afterAll, beforeAll, expect, test } from "vitest";
 import { analyzerAxis, makePlant, spectrumAt, unforeseenBand } from "../../simulator/plant/index.ts";
 import { type Chain, eventually, startChain } from "../chain.ts";
-import { lane, openBrowser, openPage, type Seen, wordsOf } from "./browser.ts";
+import { accessFaults, lane, openBrowser, openPage, type Seen, wordsOf } from "./browser.ts";
 
 /*
  * The main job, end to end, with nothing replaced: a spectrum goes in over MQTT, a judged prediction comes out on the screen. The analyzer is
@@ -81,6 +81,28 @@ test("the Reading view names the wavelengths of the band", async () => {
   await other.close();
 });
 
+test("a screen reader is told of the alarm without asking, once", async () => {
+  const spoken = seen.page.getByRole("alert").filter({ hasText: "alarm:" });
+  expect(await wordsOf(spoken)).toMatch(/^high alarm: Recycled blend: Unfamiliar spectrum\. Take a grab sample/);
+  expect(await seen.page.title()).toBe("(1) Watch · Brindle Quay");
+});
+
+test.each(["/watch?last=900", "/alarms", `/reading/${stream}`])(
+  "axe-core finds no fault on %s in either theme while something is doubted and an alarm is open",
+  async (path) => {
+    for (const theme of ["light", "dark"] as const) {
+      const other = await openPage(browser, chain.url + path, { theme });
+      await other.page
+        .getByText(/unfamiliar/i)
+        .first()
+        .waitFor();
+      await other.page.waitForTimeout(1000);
+      expect(await accessFaults(other.page)).toEqual([]);
+      await other.close();
+    }
+  },
+);
+
 test("acknowledging it puts the person's name to it", async () => {
   const alarm = lane(seen.page, stream).locator("mill-alarm-card");
   await alarm.getByRole("button", { name: "Acknowledge" }).click();
@@ -108,6 +130,7 @@ test("when the analyzer falls silent, the lane says so with the age within 5 s o
   expect(await wordsOf(blend.locator(".age"))).toMatch(/As of \d\d:\d\d:\d\d, \d+ s old: silent for \d+ s/);
   expect(await wordsOf(blend.locator("mill-lane-number .value"))).not.toContain("±");
   expect(await blend.locator("mill-lane-number .old").count()).toBe(1);
+  expect(await accessFaults(seen.page)).toEqual([]);
 });
 
 test("a message that cannot be used stands on the Plant view with its reason", async () => {

@@ -20,7 +20,7 @@ beforeAll(async () => {
       const trend = await chain.get<Trend>(
         `/streams/bq-410/trend?from=${to - 24 * hour}&to=${to - 2 * 60_000}&points=100`,
       );
-      return trend.time.length > 90;
+      return trend.time.length > 50 && trend.time[0] < to - 23 * hour && (trend.time.at(-1) ?? 0) > to - hour;
     },
     60_000,
   );
@@ -217,6 +217,58 @@ describe("every view", () => {
   });
 });
 
+describe("what goes wrong beside the link", () => {
+  test("a computer whose clock is off is told so, and its ages follow the server's clock", async () => {
+    const other = await openPage(browser, "about:blank");
+    await other.page.addInitScript("{ const real = Date.now; Date.now = () => real() - 61_000; }");
+    await other.page.goto(`${chain.url}/watch?last=900`);
+    await other.page
+      .locator(".trouble", { hasText: /This computer's clock is 1 min( 1 s)? behind the server's/ })
+      .waitFor({ timeout: 5000 });
+    const value = lane(other.page, "bq-201").locator("mill-lane-number .value");
+    await eventually("a number that is not old", async () => (await wordsOf(value)).includes("±"));
+    const clock = await wordsOf(other.page.locator("mill-top-bar .clock b"));
+    const [hours, minutes] = clock.split(":").map(Number);
+    const plantNow = new Date().toLocaleTimeString("en-GB", { timeZone: "Europe/London", hourCycle: "h23" });
+    const [realHours, realMinutes] = plantNow.split(":").map(Number);
+    expect(Math.abs((hours - realHours) * 60 + minutes - realMinutes) % 1439).toBeLessThanOrEqual(1);
+    await other.close();
+  });
+
+  test("a trend that the server refuses is told in its words, and read when it can be", async () => {
+    const other = await openPage(browser, "about:blank");
+    let refuse = true;
+    await other.page.route(/bq-201\/trend/, (route) =>
+      refuse
+        ? route.fulfill({
+            status: 503,
+            json: { code: "store", says: "The record is being repaired. Try again in a minute." },
+          })
+        : route.continue(),
+    );
+    await other.page.goto(`${chain.url}/watch?last=900`);
+    const words = lane(other.page, "bq-201").getByText(
+      "The trend could not be read. The record is being repaired. Try again in a minute.",
+    );
+    await words.waitFor();
+    refuse = false;
+    await words.waitFor({ state: "detached", timeout: 10_000 });
+    await other.close();
+  });
+
+  test("before the plant has been read there is no number on the screen, but a sentence", async () => {
+    const other = await openPage(browser, "about:blank");
+    let refuse = true;
+    await other.page.route("**/api/v1/plant", (route) => (refuse ? route.abort() : route.continue()));
+    await other.page.goto(`${chain.url}/watch`);
+    await other.page.getByText("The plant could not be read.").waitFor();
+    await other.page.getByText("Watch the process by other means.").waitFor();
+    refuse = false;
+    await lane(other.page, "bq-201").waitFor({ timeout: 10_000 });
+    await other.close();
+  });
+});
+
 describe("when the link breaks", () => {
   const streams = ["bq-201", "bq-305", "bq-410"];
 
@@ -243,7 +295,9 @@ describe("when the link breaks", () => {
       await liveNumber(other.page);
       const broken = Date.now();
       link[how]();
-      await other.page.getByText(/Link to the server lost \d+ s ago/).waitFor({ timeout: 10_000 });
+      await other.page
+        .locator(".trouble", { hasText: /Link to the server lost \d+ s ago/ })
+        .waitFor({ timeout: 10_000 });
       expect(Date.now() - broken).toBeLessThan(5000);
       await everythingLooksOld(other.page);
       await new Promise((resolve) => setTimeout(resolve, 4000));
@@ -264,9 +318,10 @@ describe("when the link breaks", () => {
     await seen.page.goto(`${chain.url}/watch?last=900`);
     await liveNumber(seen.page);
     const stopped = Date.now();
-    await chain.stop();
-    await seen.page.getByText(/Link to the server lost \d+ s ago/).waitFor({ timeout: 10_000 });
+    const gone = chain.stop();
+    await seen.page.locator(".trouble", { hasText: /Link to the server lost \d+ s ago/ }).waitFor({ timeout: 10_000 });
     expect(Date.now() - stopped).toBeLessThan(5000);
+    await gone;
     await everythingLooksOld(seen.page);
   });
 });
