@@ -8,6 +8,7 @@ import { loadCommand } from "./commands/load.ts";
 import { scoreCommand } from "./commands/score.ts";
 import { serveCommand } from "./commands/serve.ts";
 import { simulateCommand } from "./commands/simulate.ts";
+import { userCommand } from "./commands/user.ts";
 import { version } from "./version.ts";
 
 const program = new Command("millrace")
@@ -23,11 +24,16 @@ for (const command of [
   scoreCommand(),
   loadCommand(),
   simulateCommand(),
+  userCommand(),
 ]) {
   program.addCommand(command);
 }
 // Set after the commands are added: a command made apart does not inherit it.
-for (const command of [program, ...program.commands]) command.exitOverride();
+function overrideExit(command: Command): void {
+  command.exitOverride();
+  for (const below of command.commands) overrideExit(below);
+}
+overrideExit(program);
 
 // A reader that closes our pipe has had enough: no error of ours.
 process.stdout.on("error", (error: NodeJS.ErrnoException) => {

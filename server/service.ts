@@ -1,9 +1,11 @@
 import { join } from "node:path";
 import { type EmbeddedBroker, startEmbeddedBroker } from "./broker/embedded-broker.ts";
-import type { PlantConfig } from "./config/plant-config.ts";
+import { ConfigError, isLoopback, type PlantConfig } from "./config/plant-config.ts";
 import type { Told } from "./engine/engine.ts";
 import { type EngineError, EngineThread } from "./engine/engine-thread.ts";
 import { type Gateway, startGateway } from "./gateway/gateway.ts";
+import { logOf } from "./log.ts";
+import { PeopleStore } from "./people/people-store.ts";
 import { lockDataFolder } from "./service-lock.ts";
 import { sqliteReader } from "./store/sqlite/reader.ts";
 import type { StoreReader } from "./store/store.ts";
@@ -25,7 +27,7 @@ export interface Service {
  */
 export async function startService(
   config: PlantConfig,
-  options: { log: (says: string) => void; died: (error: EngineError) => void },
+  options: { died: (error: EngineError) => void },
 ): Promise<Service> {
   const unlock = lockDataFolder(config.data);
   const closing: (() => Promise<void> | void)[] = [unlock];
@@ -39,10 +41,12 @@ export async function startService(
 
 async function assemble(
   config: PlantConfig,
-  { log, died }: { log: (says: string) => void; died: (error: EngineError) => void },
+  { died }: { died: (error: EngineError) => void },
   closing: (() => Promise<void> | void)[],
 ): Promise<Service> {
   const recordFile = join(config.data, "record.db");
+  const people = new PeopleStore(join(config.data, "people.db"));
+  checkPeople(config, people);
   const inboxFile = join(config.data, "inbox.db");
   const { broker: brokerConfig, prefix } = config.mqtt;
   let broker: EmbeddedBroker | undefined;
@@ -75,7 +79,8 @@ async function assemble(
         told: (told) => (gateway ? gateway.live.told(told) : early.push(told)),
         health: (health) => gateway?.live.health(health),
         drained: (n) => broker?.drainedUpTo(n),
-        log,
+        account: (account) => gateway?.figures.take(account),
+        log: logOf("engine"),
         died(error) {
           reject(error);
           if (engine) died(error);
@@ -88,7 +93,14 @@ async function assemble(
   engine.inboxFilled(); // what came while it was getting ready
 
   const store = sqliteReader(recordFile);
-  gateway = await startGateway({ config, store, engine, version });
+  gateway = await startGateway({
+    config,
+    store,
+    engine,
+    people,
+    version,
+    files: { record: recordFile, inbox: inboxFile },
+  });
   for (const told of early) gateway.live.told(told);
   const opened = gateway;
   closing.push(() => opened.close());
@@ -101,4 +113,14 @@ async function assemble(
       for (const close of closing.reverse()) await close();
     },
   };
+}
+
+/** Reached from other machines it must know who asks. @throws ConfigError */
+function checkPeople({ http, demo }: PlantConfig, people: PeopleStore): void {
+  if (isLoopback(http.host) || (!people.isEmpty() && !demo)) return;
+  throw new ConfigError("http.host", {
+    got: `"${http.host}", which other machines reach, ${demo ? "for an invented plant" : "with nobody who could sign in"}`,
+    expected: demo ? "an address of this machine only" : "at least one person",
+    todo: demo ? "Listen on 127.0.0.1." : "Add one: millrace user add NAME --role administrator --config plant.json",
+  });
 }

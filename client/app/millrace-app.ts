@@ -1,7 +1,7 @@
 import { css, html, LitElement } from "lit";
 import { repeat } from "lit/directives/repeat.js";
 import type { Plant } from "../../core/messages/index.ts";
-import { api } from "../data/api.ts";
+import { ApiError, api } from "../data/api.ts";
 import { Feed } from "../data/feed.ts";
 import { baseStyle } from "../parts/base-style.ts";
 import { type PlantTime, plantTime } from "../words/plant-time.ts";
@@ -20,6 +20,7 @@ import "../views/reading-view.ts";
 import "../views/excursions-view.ts";
 import "../views/alarms-view.ts";
 import "../views/plant-view.ts";
+import "../views/sign-in-view.ts";
 
 const retryMs = 2000;
 /** A window that is dragged changes many times a second; browsers refuse more than about a hundred URL changes in half a minute. */
@@ -173,14 +174,21 @@ export class MillraceApp extends LitElement {
       this.trouble = undefined;
     } catch (error) {
       this.trouble = error as Error;
-      setTimeout(() => void this.#begin(), retryMs);
+      // Where somebody must sign in first, asking again by itself would not help.
+      if (!needsSignIn(error)) setTimeout(() => void this.#begin(), retryMs);
     }
+  }
+
+  /** The link went: was it the session? Then nothing of the plant stays on the screen. */
+  async #stayOnlyIfWelcome(): Promise<void> {
+    if (!(await api.isWelcome())) location.reload();
   }
 
   /** When the link is back the service may be another one: other limits, another model, other streams. */
   #heard(): void {
     const up = this.#feed?.linkUp ?? false;
     if (up && !this.#wasUp && this.plant) void this.#readPlantAgain(this.plant);
+    if (!up && this.#wasUp) void this.#stayOnlyIfWelcome();
     this.#wasUp = up;
     this.requestUpdate();
   }
@@ -254,10 +262,12 @@ export class MillraceApp extends LitElement {
     return html`<main class="start">
       <h1>Millrace</h1>
       ${
-        this.trouble
-          ? html`<p role="alert">The plant could not be read. ${this.trouble.message}</p>
+        needsSignIn(this.trouble)
+          ? html`<mill-sign-in @signed-in=${() => void this.#begin()}></mill-sign-in>`
+          : this.trouble
+            ? html`<p role="alert">The plant could not be read. ${this.trouble.message}</p>
             <p class="quiet">Until it answers no number is shown here. Watch the process by other means.</p>`
-          : html`<p role="status">Reading the plant …</p>`
+            : html`<p role="status">Reading the plant …</p>`
       }
     </main>`;
   }
@@ -300,6 +310,10 @@ export class MillraceApp extends LitElement {
     event.preventDefault();
     (this.renderRoot.querySelector("#main") as HTMLElement).focus();
   }
+}
+
+function needsSignIn(error: unknown): boolean {
+  return error instanceof ApiError && error.status === 401;
 }
 
 function nameOf(route: Route): string {

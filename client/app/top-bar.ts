@@ -1,6 +1,7 @@
 import { css, html, LitElement, nothing } from "lit";
 import type { OpenAlarm, Plant } from "../../core/messages/index.ts";
 import { calling, countOf } from "../data/alarm-order.ts";
+import { api } from "../data/api.ts";
 import { baseStyle } from "../parts/base-style.ts";
 import type { PlantTime } from "../words/plant-time.ts";
 import { defaultWindow, href, type Route, type ViewName } from "./route.ts";
@@ -155,7 +156,7 @@ export class TopBar extends LitElement {
 
   override render() {
     const { plant, now, time, linkUp } = this;
-    const { name, role } = plant.person;
+    const { name, role, signedIn } = plant.person;
     return html`<header>
       <div class="site">${plant.name} ${plant.demo ? html`<small title="Nothing on these screens is measured.">demo: invented plant</small>` : nothing}</div>
       <nav aria-label="Views">
@@ -173,6 +174,7 @@ export class TopBar extends LitElement {
           ><b>${time.clock(now)}</b> <span class="quiet">${time.zoneName(now)}</span></span
         >
         <span>${name}${role ? html`<span class="quiet">, ${role}</span>` : nothing}</span>
+        ${signedIn ? html`<button @click=${this.#signOut}>Sign out</button>` : nothing}
         <label
           ><span class="unseen">Light or dark</span>
           <select @change=${this.#theme}>
@@ -201,6 +203,11 @@ export class TopBar extends LitElement {
           >`,
       )}
     </a>`;
+  }
+
+  async #signOut(): Promise<void> {
+    await api.signOut();
+    location.assign("/");
   }
 
   #theme(event: Event): void {

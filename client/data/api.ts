@@ -40,7 +40,7 @@ async function ask<T>(path: string, init?: RequestInit): Promise<T> {
     throw new ApiError("unreachable", 0, "The server could not be reached. It is asked again by itself.", cause);
   }
   if (!response.ok) throw await problemOf(response);
-  return (await response.json()) as T;
+  return (response.status === 204 ? undefined : await response.json()) as T;
 }
 
 function query(values: Record<string, string | number | undefined>): string {
@@ -49,6 +49,12 @@ function query(values: Record<string, string | number | undefined>): string {
 }
 
 const stream = (id: string) => `/streams/${encodeURIComponent(id)}`;
+
+const asJson = (body: unknown): RequestInit => ({
+  method: "POST",
+  headers: { "content-type": "application/json" },
+  body: JSON.stringify(body),
+});
 
 /** The reads and commands of the HTTP API, as the screens need them. */
 export const api = {
@@ -63,9 +69,13 @@ export const api = {
     ask<{ events: RecordedEvent[] }>(`/events${query(values)}`, { signal }),
   refusals: (limit: number, signal?: AbortSignal) => ask<Refusals>(`/refusals${query({ limit })}`, { signal }),
   acknowledge: (alarm: Pick<OpenAlarm, "stream" | "key">) =>
-    ask<unknown>(`${stream(alarm.stream)}/alarms/${encodeURIComponent(alarm.key)}/acknowledge`, {
-      method: "POST",
-      headers: { "content-type": "application/json" },
-      body: "{}",
-    }),
+    ask<unknown>(`${stream(alarm.stream)}/alarms/${encodeURIComponent(alarm.key)}/acknowledge`, asJson({})),
+  signIn: (name: string, password: string) => ask<Plant["person"]>("/sign-in", asJson({ name, password })),
+  /** is somebody signed in, or nobody needed? A link that was refused does not say why. */
+  isWelcome: () =>
+    ask<unknown>("/me").then(
+      () => true,
+      (error) => !(error instanceof ApiError && error.status === 401),
+    ),
+  signOut: () => ask<void>("/sign-out", { method: "POST" }),
 };

@@ -24,7 +24,8 @@ export const PlantSchema = Type.Object({
   serverTime: Type.Number(),
   /** an invented plant: the screens say so */
   demo: Type.Boolean(),
-  person: Type.Object({ name: Type.String(), role: Type.String() }),
+  /** who looks; `signedIn` is false where nobody needs to sign in */
+  person: Type.Object({ name: Type.String(), role: Type.String(), signedIn: Type.Boolean() }),
   caution: Type.String(),
   streams: Type.Array(
     Type.Object({

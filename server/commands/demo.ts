@@ -7,9 +7,9 @@ import { type PlantConfig, readPlantConfig } from "../config/plant-config.ts";
 import { caution } from "../gateway/plant-view.ts";
 import { loadHistory } from "../load/load-history.ts";
 import { readingsOfCborSequence } from "../load/readings.ts";
+import { logOf } from "../log.ts";
 import { type Service, startService } from "../service.ts";
 import { makeDemoModels } from "./demo-models.ts";
-import { logLine } from "./serve.ts";
 import { endOf, spawnSimulator } from "./simulator-process.ts";
 import { untilStopped } from "./until-stopped.ts";
 
@@ -21,6 +21,7 @@ interface Options {
   historyDays: number;
 }
 
+const logLine = logOf("demo");
 const historyPeriodMs = 30_000;
 const day = 24 * 3600 * 1000;
 
@@ -41,7 +42,7 @@ async function run(options: Options): Promise<void> {
   const folder = resolve(options.data);
   await untilStopped(async (stopWith) => {
     const config = await prepare(folder, options);
-    const service = await startService(config, { log: logLine, died: stopWith });
+    const service = await startService(config, { died: stopWith });
     const simulator = options.scenario === "none" ? undefined : startSimulator(service, config, options.scenario);
     announce(service, began, options);
     const history = startHistory(service, config, folder, options.historyDays).catch((error: Error) => {

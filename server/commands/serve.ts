@@ -12,7 +12,7 @@ export function serveCommand(): Command {
     .action(async ({ config: file }: { config: string }) => {
       const config = readPlantConfig(file);
       await untilStopped(async (stopWith) => {
-        const service = await startService(config, { log: logLine, died: stopWith });
+        const service = await startService(config, { died: stopWith });
         console.log(`Millrace for ${config.name}: ${service.url}`);
         console.log(
           `readings by MQTT at ${service.brokerUrl}, topic ${config.mqtt.prefix}/${config.site}/<stream>/reading`,
@@ -21,8 +21,4 @@ export function serveCommand(): Command {
         return () => service.stop();
       });
     });
-}
-
-export function logLine(says: string): void {
-  console.error(`${new Date().toISOString()} ${says}`);
 }

@@ -38,13 +38,28 @@ const BrokerSchema = Type.Union([
 ]);
 export type BrokerConfig = Static<typeof BrokerSchema>;
 
+/**
+ * Where the screens are. Anything but the loopback needs people who sign in, and TLS: its own, or a proxy's that stands before it.
+ */
+const HttpSchema = Type.Object({
+  host: Type.String(),
+  port: Type.Integer({ minimum: 0, maximum: 65535 }),
+  /** PEM files, seen from the configuration's folder */
+  tls: Type.Optional(Type.Object({ certificate: Type.String(), key: Type.String() })),
+  /** a proxy on this network ends TLS: say it here, it cannot be seen from here */
+  tlsByProxy: Type.Optional(Type.Boolean()),
+  /** names by which browsers reach it, besides those of this machine */
+  names: Type.Optional(Type.Array(Type.String({ pattern: "^[A-Za-z0-9.-]+$" }))),
+});
+export type HttpConfig = Static<typeof HttpSchema>;
+
 export const PlantConfigSchema = Type.Object({
   site: StreamIdSchema,
   name: Type.String({ minLength: 1 }),
   timeZone: Type.String(),
   /** folder of the record, seen from the configuration's folder */
   data: Type.String(),
-  http: Type.Object({ host: Type.String(), port: Type.Integer({ minimum: 0, maximum: 65535 }) }),
+  http: HttpSchema,
   mqtt: Type.Object({ prefix: Type.String({ pattern: "^[^+#\\u0000]+$" }), broker: BrokerSchema }),
   /** an invented plant: the screens say so, and an invented person is signed in */
   demo: Type.Optional(Type.Boolean()),
@@ -96,14 +111,20 @@ export function parsePlantConfig(text: string, file: string): PlantConfig {
   const config = value as PlantConfig;
   checkTimeZone(config.timeZone, file);
   checkStreams(config.streams, file);
-  checkHost(config.http.host, `${file}: http.host`);
+  checkHttp(config.http, `${file}: http`);
   if ("embedded" in config.mqtt.broker) {
-    checkHost(config.mqtt.broker.embedded.host, `${file}: mqtt.broker.embedded.host`);
+    checkBrokerHost(config.mqtt.broker.embedded.host, `${file}: mqtt.broker.embedded.host`);
   }
   const from = (path: string) => resolve(dirname(file), path);
   return {
     ...config,
     data: from(config.data),
+    http: {
+      ...config.http,
+      ...(config.http.tls && {
+        tls: { certificate: from(config.http.tls.certificate), key: from(config.http.tls.key) },
+      }),
+    },
     streams: config.streams.map((stream) => ({
       ...stream,
       model: from(stream.model),
@@ -139,12 +160,34 @@ function checkStreams(streams: readonly StreamConfig[], file: string): void {
   });
 }
 
-/** There is no sign-in yet, so nothing may be reached from another machine. */
-function checkHost(host: string, where: string): void {
-  if (loopback.has(host)) return;
+export function isLoopback(host: string): boolean {
+  return loopback.has(host);
+}
+
+function checkHttp({ host, tls, tlsByProxy, names }: HttpConfig, where: string): void {
+  if (isLoopback(host)) return;
+  if (!tls && !tlsByProxy) {
+    throw new ConfigError(`${where}.host`, {
+      got: `"${host}", which other machines reach, without TLS`,
+      expected: `${where}.tls (certificate and key), or ${where}.tlsByProxy: true where a proxy ends TLS`,
+      todo: "Give one of them, or listen on 127.0.0.1.",
+    });
+  }
+  if (!names?.length) {
+    throw new ConfigError(`${where}.names`, {
+      got: "missing",
+      expected: "the names by which browsers reach the service",
+      todo: "List them: requests under any other name are not answered.",
+    });
+  }
+}
+
+/** The embedded broker asks nobody who they are, so nothing but this machine may reach it. */
+function checkBrokerHost(host: string, where: string): void {
+  if (isLoopback(host)) return;
   throw new ConfigError(where, {
     got: `"${host}"`,
     expected: "an address of this machine only (127.0.0.1, ::1 or localhost)",
-    todo: "The service has no sign-in yet: put a proxy that signs people in before it.",
+    todo: "The embedded broker asks for no credentials: use a broker of your own for analyzers on the network.",
   });
 }

@@ -1,7 +1,9 @@
 import { Worker } from "node:worker_threads";
 import { MillraceError } from "../../core/errors.ts";
 import type { EngineHealth, Reading } from "../../core/messages/index.ts";
+import type { Log } from "../log.ts";
 import type { LoadOutcome, Told } from "./engine.ts";
+import type { Account } from "./meter.ts";
 import type { EngineSettings, FromEngine, ToEngine } from "./protocol.ts";
 import type { Command, CommandOutcome } from "./turn.ts";
 
@@ -27,7 +29,8 @@ export class EngineThread {
       told: (told: Told) => void;
       health: (health: EngineHealth) => void;
       drained: (n: number) => void;
-      log: (says: string) => void;
+      account: (account: Account) => void;
+      log: Log;
       died: (error: EngineError) => void;
     },
   ) {
@@ -44,7 +47,9 @@ export class EngineThread {
         case "drained":
           return on.drained(message.n);
         case "log":
-          return on.log(message.says);
+          return on.log(message.says, message.level);
+        case "account":
+          return on.account(message.account);
         case "reply":
           return this.#settle(message.id, message.outcome);
         case "failed":

@@ -1,6 +1,8 @@
 import type { EngineHealth, Reading } from "../../core/messages/index.ts";
 import type { PlantConfig } from "../config/plant-config.ts";
+import type { LogLevel } from "../log.ts";
 import type { LoadOutcome, Told } from "./engine.ts";
+import type { Account } from "./meter.ts";
 import type { Command, CommandOutcome } from "./turn.ts";
 
 /** What crosses between the engine's thread and the rest. Plain data only, so that the engine can stand in a process of its own one day. */
@@ -18,7 +20,8 @@ export type FromEngine =
   | { kind: "health"; health: EngineHealth }
   | { kind: "drained"; n: number }
   | { kind: "reply"; id: number; outcome: CommandOutcome | LoadOutcome | { failed: string } }
-  | { kind: "log"; says: string }
+  | { kind: "account"; account: Account }
+  | { kind: "log"; says: string; level?: LogLevel }
   | { kind: "failed"; says: string }
   | { kind: "stopped" };
 

@@ -1,10 +1,12 @@
 import { parentPort, workerData } from "node:worker_threads";
 import { MillraceError } from "../../core/errors.ts";
 import { beatEveryMs } from "../../core/messages/index.ts";
+import type { Log } from "../log.ts";
 import { sqliteWriter } from "../store/sqlite/writer.ts";
 import { connectionOf } from "./connection.ts";
 import { Engine } from "./engine.ts";
 import { InboxSource } from "./inbox-source.ts";
+import { Meter } from "./meter.ts";
 import { MqttSource } from "./mqtt-source.ts";
 import { Outside } from "./outside.ts";
 import type { EngineSettings, FromEngine, ToEngine } from "./protocol.ts";
@@ -14,12 +16,13 @@ import { topicsOf } from "./topics.ts";
 const port = parentPort!;
 const settings = workerData as EngineSettings;
 const say = (message: FromEngine) => port.postMessage(message);
-const log = (says: string) => say({ kind: "log", says });
+const log: Log = (says, level) => say({ kind: "log", says, level });
 
 function run(): void {
   const { config, recordFile, inboxFile, brokerUrl } = settings;
   const topics = topicsOf(config.mqtt.prefix, config.site);
-  const store = sqliteWriter(recordFile);
+  const meter = new Meter(sqliteWriter(recordFile));
+  const { store } = meter;
   const streams = new Map(config.streams.map((stream) => [stream.id, readyStream(stream, store, Date.now())]));
   const outside = new Outside(brokerUrl, connectionOf(config, "results"), topics, log);
   let ready = false;
@@ -44,7 +47,10 @@ function run(): void {
         log,
       });
   engine.start(source);
-  const beat = setInterval(() => say({ kind: "health", health: engine.health() }), beatEveryMs);
+  const beat = setInterval(() => {
+    say({ kind: "health", health: engine.health() });
+    say({ kind: "account", account: meter.account() });
+  }, beatEveryMs);
   port.on("message", (message: ToEngine) => void answer(engine, message));
 
   async function answer(engine: Engine, message: ToEngine): Promise<void> {

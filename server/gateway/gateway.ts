@@ -1,22 +1,28 @@
-import { existsSync } from "node:fs";
+import { existsSync, readFileSync } from "node:fs";
 import { fileURLToPath } from "node:url";
+import fastifyCookie from "@fastify/cookie";
 import fastifyStatic from "@fastify/static";
 import fastifySwagger from "@fastify/swagger";
 import Fastify, { type FastifyError, type FastifyInstance, type FastifyReply, type FastifyRequest } from "fastify";
 import { MillraceError, mismatchSentence } from "../../core/errors.ts";
 import type { PlantConfig } from "../config/plant-config.ts";
 import type { EngineThread } from "../engine/engine-thread.ts";
+import type { PeopleStore } from "../people/people-store.ts";
 import { mayAct, type Person, type Role } from "../people/person.ts";
 import type { StoreReader } from "../store/store.ts";
+import { Figures } from "./figures.ts";
 import { isOurs } from "./guard.ts";
 import { LiveHub } from "./live-hub.ts";
 import { RequestError } from "./problem.ts";
 import { ReadingExplainer } from "./reading-view.ts";
+import { healthRoutes } from "./routes/health.ts";
 import { alarmRoutes } from "./routes/alarms.ts";
 import { excursionRoutes } from "./routes/excursions.ts";
 import { loadRoutes } from "./routes/load.ts";
+import { peopleRoutes } from "./routes/people.ts";
 import { recordRoutes } from "./routes/record.ts";
 import { streamRoutes } from "./routes/streams.ts";
+import { type Who, whoOf } from "./who.ts";
 
 /** What the routes work with. Reads go to the store; everything that changes something goes to the engine. */
 export interface GatewayParts {
@@ -25,7 +31,9 @@ export interface GatewayParts {
   explainer: ReadingExplainer;
   engine: EngineThread;
   live: LiveHub;
-  /** who asks */
+  people: PeopleStore;
+  who: Who;
+  /** who asks. @throws RequestError 401 when somebody must sign in first */
   personOf: (request: FastifyRequest) => Person;
   /** who asks, when their role lets them; every route that changes something calls it. @throws RequestError 403 */
   allowed: (request: FastifyRequest, needed: Role) => Person;
@@ -35,6 +43,7 @@ export interface GatewayParts {
 
 export interface Gateway {
   live: LiveHub;
+  figures: Figures;
   url: string;
   close(): Promise<void>;
 }
@@ -52,21 +61,29 @@ export async function startGateway(options: {
   config: PlantConfig;
   store: StoreReader;
   engine: EngineThread;
+  people: PeopleStore;
   version: string;
+  /** whose sizes are among the figures */
+  files: Record<string, string>;
 }): Promise<Gateway> {
-  const { config, store, engine, version } = options;
-  const app = Fastify({ bodyLimit: 64 * 1024, forceCloseConnections: true });
+  const { config, store, engine, people, version } = options;
+  const app = makeServer(config.http);
+  await app.register(fastifyCookie);
   const explainer = new ReadingExplainer(store);
+  const who = whoOf(config, people, (header) => app.parseCookie(header));
   const live = new LiveHub(app.server, {
     version,
+    isWelcome: (headers) => isOurs(headers, config.http.names) && who.of(headers) !== undefined,
     eventsAfter: (cursor, limit) => store.events({ after: cursor, limit }),
     streams: () => config.streams.map(({ id }) => id),
   });
-  // Nobody signs in yet and the service is reached from this machine only: an invented person in the demo, "this machine" elsewhere.
-  const here: Person = { name: config.demo ? "R. Quill" : "this machine", role: "operator" };
-  const personOf = (_request: FastifyRequest) => here;
+  const personOf = ({ headers }: FastifyRequest): Person => {
+    const person = who.of(headers);
+    if (person) return person;
+    throw new RequestError(401, "sign-in-needed", "Sign in first.");
+  };
   const parts: GatewayParts = {
-    ...{ config, store, explainer, engine, live, version },
+    ...{ config, store, explainer, engine, live, people, who, version },
     personOf,
     allowed(request, needed) {
       const person = personOf(request);
@@ -89,7 +106,7 @@ export async function startGateway(options: {
     },
   });
   app.addHook("onRequest", async (request, reply) => {
-    if (!isOurs(request.headers)) {
+    if (!isOurs(request.headers, config.http.names)) {
       throw new RequestError(
         403,
         "foreign-origin",
@@ -101,9 +118,16 @@ export async function startGateway(options: {
     reply.header("Referrer-Policy", "no-referrer");
   });
   app.setErrorHandler((error: FastifyError, _request, reply) => answerError(error, reply));
+  const figures = new Figures(live, options.files);
+  healthRoutes(app, { live, figures });
   await app.register(
     async (api) => {
       api.addHook("onSend", async (_request, reply) => void reply.header("Cache-Control", "no-store"));
+      // Whoever asks for anything but the door must be somebody.
+      api.addHook("onRequest", async (request) => {
+        if (!request.url.startsWith("/api/v1/sign-")) personOf(request);
+      });
+      peopleRoutes(api, parts);
       recordRoutes(api, parts);
       streamRoutes(api, parts);
       alarmRoutes(api, parts);
@@ -124,13 +148,35 @@ export async function startGateway(options: {
   const url = await listen(app, config.http);
   return {
     live,
+    figures,
     url,
     async close() {
       live.close();
       await app.close();
       store.close();
+      people.close();
     },
   };
+}
+
+function makeServer({ tls, tlsByProxy }: PlantConfig["http"]): FastifyInstance {
+  const options = { bodyLimit: 64 * 1024, forceCloseConnections: true, trustProxy: tlsByProxy === true };
+  if (!tls) return Fastify(options);
+  const https = { cert: readPem(tls.certificate), key: readPem(tls.key), minVersion: "TLSv1.2" as const };
+  return Fastify({ ...options, https }) as unknown as FastifyInstance;
+}
+
+function readPem(file: string): Buffer {
+  try {
+    return readFileSync(file);
+  } catch (cause) {
+    const mismatch = {
+      got: `not readable (${(cause as NodeJS.ErrnoException).code})`,
+      expected: "a PEM file",
+      todo: "Correct http.tls.",
+    };
+    throw new GatewayError(mismatchSentence(file, mismatch), { cause });
+  }
 }
 
 function answerError(error: FastifyError, reply: FastifyReply): void {

@@ -1,4 +1,4 @@
-import type { Server } from "node:http";
+import type { IncomingHttpHeaders, Server } from "node:http";
 import { WebSocket, WebSocketServer } from "ws";
 import {
   type Batch,
@@ -7,12 +7,12 @@ import {
   type EngineHealth,
   type FromServer,
   type Judged,
+  linkLostAfterMs,
   type RecordedEvent,
   type StreamNow,
   SubscribeSchema,
 } from "../../core/messages/index.ts";
 import type { Told } from "../engine/engine.ts";
-import { isOurs } from "./guard.ts";
 
 /** A client whose socket holds more than this unsent is slow: its live values are conflated until it has caught up. */
 const slowAboveBytes = 256 * 1024;
@@ -27,6 +27,8 @@ const subscribeChecker = checker(SubscribeSchema);
 
 interface Client {
   socket: WebSocket;
+  /** of its opening: they say who it is */
+  headers: IncomingHttpHeaders;
   streams: Set<string>;
   heldNow: Map<string, StreamNow>;
   heldReadings: Judged[];
@@ -37,6 +39,8 @@ interface Client {
 /** What the hub needs to know besides what the engine tells. */
 export interface LiveSources {
   version: string;
+  /** may who sends these headers see the streams? Asked again with every beat: a session ends, a person leaves. */
+  isWelcome: (headers: IncomingHttpHeaders) => boolean;
   /** newest first */
   eventsAfter: (cursor: number, limit: number) => RecordedEvent[];
   streams: () => string[];
@@ -51,6 +55,7 @@ export class LiveHub {
   readonly #clients = new Set<Client>();
   readonly #now = new Map<string, StreamNow>();
   #cursor = 0;
+  #heardAt = Number.NEGATIVE_INFINITY;
   #health: EngineHealth = { running: false, source: false, waiting: 0, behindMs: 0 };
   readonly #beating: NodeJS.Timeout;
 
@@ -59,11 +64,11 @@ export class LiveHub {
     this.#server = new WebSocketServer({ noServer: true, maxPayload: mostMessageBytes });
     http.on("upgrade", (request, socket, head) => {
       const { pathname } = new URL(request.url ?? "/", "http://localhost");
-      if (pathname !== "/live" || !isOurs(request.headers)) {
+      if (pathname !== "/live" || !sources.isWelcome(request.headers)) {
         socket.end("HTTP/1.1 403 Forbidden\r\nConnection: close\r\n\r\n");
         return;
       }
-      this.#server.handleUpgrade(request, socket, head, (client) => this.#welcome(client));
+      this.#server.handleUpgrade(request, socket, head, (client) => this.#welcome(client, request.headers));
     });
     this.#beating = setInterval(() => this.#beat(), beatEveryMs);
   }
@@ -83,10 +88,28 @@ export class LiveHub {
 
   health(health: EngineHealth): void {
     this.#health = health;
+    this.#heardAt = performance.now();
+  }
+
+  /** Has the engine reported lately, as it does every second? */
+  get engineHeard(): boolean {
+    return this.#health.running && performance.now() - this.#heardAt < linkLostAfterMs;
+  }
+
+  /** How many live links are open. */
+  get clients(): number {
+    return this.#clients.size;
   }
 
   get picture(): { health: EngineHealth; now: StreamNow[] } {
     return { health: this.#health, now: [...this.#now.values()] };
+  }
+
+  /** Closes the links of those who may see no more. */
+  dropUnwelcome(): void {
+    for (const { socket, headers } of this.#clients) {
+      if (!this.#sources.isWelcome(headers)) socket.close(4401, "sign in again");
+    }
   }
 
   close(): void {
@@ -95,9 +118,10 @@ export class LiveHub {
     this.#server.close();
   }
 
-  #welcome(socket: WebSocket): void {
+  #welcome(socket: WebSocket, headers: IncomingHttpHeaders): void {
     const client: Client = {
       socket,
+      headers,
       streams: new Set(),
       heldNow: new Map(),
       heldReadings: [],
@@ -179,6 +203,7 @@ export class LiveHub {
   }
 
   #beat(): void {
+    this.dropUnwelcome();
     const beat: FromServer = { type: "beat", serverTime: Date.now(), engine: this.#health };
     for (const client of this.#clients) {
       this.#flush(client);

@@ -19,13 +19,17 @@ const time = Type.Optional(Type.Integer());
 
 /** The plant as a whole, and what is on record about it. */
 export function recordRoutes(app: FastifyInstance, parts: GatewayParts): void {
-  const { config, store, explainer, live, personOf, version } = parts;
+  const { config, store, explainer, live, personOf, version, who } = parts;
 
   app.get("/plant", { schema: { response: { 200: PlantSchema } } }, (request) => {
     const troubled = live.picture.now.flatMap(({ stream, trouble }): [string, string][] =>
       trouble === undefined ? [] : [[stream, trouble]],
     );
-    return plantView(config, store, explainer, { version, person: personOf(request), troubles: new Map(troubled) });
+    return plantView(config, store, explainer, {
+      version,
+      person: { ...personOf(request), signedIn: who.open() === undefined },
+      troubles: new Map(troubled),
+    });
   });
 
   app.get("/alarms", { schema: { response: { 200: AlarmsSchema } } }, () => ({
