@@ -9,4 +9,5 @@ export { residualEigenvalues } from "./residual-eigenvalues.ts";
 export { calibrationNearest, calibrationT2, type ScoreSpace, scoreSpaceOf } from "./score-space.ts";
 export { defaultStatisticChoice, type StatisticChoice, StatisticChoiceSchema } from "./statistic-choice.ts";
 export { nearestLimit, qLimit, type StatisticLimits, statisticLimits, t2Limit } from "./statistic-limits.ts";
+export { symmetricEigen } from "./symmetric-eigen.ts";
 export { t2LimitBeta, t2LimitChiSquared, t2LimitF } from "./t2-limits.ts";

@@ -1,4 +1,4 @@
-import { EigenvalueDecomposition, Matrix } from "ml-matrix";
+import { symmetricEigen } from "../limits/index.ts";
 import { FitError } from "./fit-error.ts";
 import { rotationsOf } from "./rotations.ts";
 
@@ -26,6 +26,10 @@ export interface PlsFit {
 
 /** How small, against the table before any component, what is left may be and still count as something. */
 const exhausted = 1e-10;
+
+/** Numbers whose squares leave the range of a double are no measurements. */
+const tiny = 1e-100;
+const huge = 1e100;
 
 /**
  * Fits PLS by NIPALS deflation, for one or several y. Neither table is changed.
@@ -69,6 +73,7 @@ export function fitUpTo(
   const e = x.map((row) => Float64Array.from(row));
   const sizeX = Math.sqrt(squares(e));
   const sizeY = Math.sqrt(squares(f));
+  checkMeasure(sizeX);
   const weights: Float64Array[] = [];
   const loadings: Float64Array[] = [];
   const yLoadings: Float64Array[] = [];
@@ -109,6 +114,15 @@ export function fitUpTo(
   };
 }
 
+function checkMeasure(sizeX: number): void {
+  if (sizeX === 0 || (sizeX > tiny && sizeX < huge)) return;
+  throw new FitError("the spectra after the steps", {
+    got: `of size ${sizeX}`,
+    expected: "numbers whose squares a computer can hold",
+    todo: "Check the unit of the spectra.",
+  });
+}
+
 /** Mean and deviation of each y, and what is left. @throws FitError naming a y (by its place) that does not vary. */
 function centredY(y: readonly Float64Array[], scaleY: boolean) {
   const n = y.length;
@@ -120,9 +134,9 @@ function centredY(y: readonly Float64Array[], scaleY: boolean) {
     let sum = 0;
     for (let i = 0; i < n; i++) sum += (y[i][k] - mean[k]) ** 2;
     const found = Math.sqrt(sum / (n - 1));
-    if (!(found > 1e-12 * Math.abs(mean[k]))) {
+    if (!(found > Math.max(tiny, 1e-12 * Math.abs(mean[k])) && found < huge)) {
       throw new FitError(`property ${k + 1}`, {
-        got: `${y[0][k]} in every sample`,
+        got: found < huge ? `${y[0][k]} in every sample` : "beyond all measure",
         expected: "reference values that vary",
         todo: "Leave the property out, or take samples that differ in it.",
       });
@@ -145,9 +159,9 @@ function weightOf(e: readonly Float64Array[], f: readonly Float64Array[]): Float
   );
   const least = exhausted * Math.sqrt(squares(e)) * Math.sqrt(squares(f));
   if (m === 1) return unit(products[0], least);
-  const gram = new Matrix(products.map((a) => products.map((b) => dot(a, b))));
-  const { eigenvectorMatrix } = new EigenvalueDecomposition(gram, { assumeSymmetric: true });
-  const dominant = eigenvectorMatrix.getColumn(m - 1); // eigenvalues ascend
+  const { vectors } = symmetricEigen(products.map((a) => products.map((b) => dot(a, b))));
+  if (vectors.length === 0) return undefined;
+  const [dominant] = vectors;
   const largest = dominant.reduce((a, b) => (Math.abs(b) > Math.abs(a) ? b : a));
   return unit(combine(products, dominant, Math.sign(largest)), least);
 }
