@@ -161,7 +161,7 @@ function reportOf(model: Model, calibration: Calibration, test: TestSet | undefi
   return calibrationReport({
     calibration,
     model,
-    diagnostics: diagnose(calibration, limits.q),
+    diagnostics: diagnose(calibration),
     choice,
     limits,
     confidence,

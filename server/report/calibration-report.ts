@@ -256,7 +256,8 @@ function stacked(title: string, reads: string, plots: readonly Plot[]): string {
   return plots.map((plot, a) => card(`${title}, component ${a + 1}`, plot, a === 0 ? reads : "", true)).join("");
 }
 
-function limits({ model, limits: inForce, choice, confidence }: ReportInput): string {
+function limits({ model, limits: inForce, choice, confidence, diagnostics }: ReportInput): string {
+  const odd = diagnostics.samples.filter(({ suspicions }) => suspicions.some(({ kind }) => kind === "odd spectrum"));
   const t2Of = (method: "f" | "beta" | "chi-squared" | "largest") =>
     attempt(() => t2Limit(model, method === "largest" ? { method } : { method, confidence }));
   const { fit, crossValidated } = model.residuals!;
@@ -285,6 +286,7 @@ function limits({ model, limits: inForce, choice, confidence }: ReportInput): st
   const qChoice = "residuals" in choice.q ? `${choice.q.method}, ${choice.q.residuals} residuals` : "a fixed number";
   return `<h2>Limits</h2>
 <p>In force by default at ${confidence * 100} %: T² ${figure(inForce.t2)} (${choice.t2.method.toUpperCase()}), Q ${figure(inForce.q)} (${qChoice}), nearest sample ${figure(inForce.nearest)} (the largest gap within the calibration). Residuals of the fit are smaller than those of new readings, so limits made from them flag far too many. A calibration that is spread evenly over its range makes the F limit of T² too wide: compare it with the largest T² seen.</p>
+${odd.length === 0 ? "" : `<p class="mind"><b>Mind:</b> ${escapeText(odd.map(({ name }) => name).join(", "))} ${odd.length === 1 ? "has an odd spectrum" : "have odd spectra"} and widen${odd.length === 1 ? "s" : ""} the limits of Q. Decide about ${odd.length === 1 ? "it" : "them"} before these limits are relied on.</p>`}
 ${table(["limit", "value", "held-out samples beyond it"], [...t2Rows, ...qRows(held, "cross-validated residuals"), ...qRows(fit, "residuals of the fit")])}
 <p class="quiet">Tracy, Young & Mason 1992 (T²) · Jackson & Mudholkar 1979 · Box 1954 · Nomikos & MacGregor 1995 (moments). An empirical ${confidence * 100} % point wants about ${Math.round(10 / (1 - confidence))} samples.</p>`;
 }

@@ -20,11 +20,10 @@ export interface Diagnostics {
   errors: { name: string; fit: ErrorStatistics; crossValidated: ErrorStatistics }[];
 }
 
-/** @param qLimit against which held-out samples' Q is judged */
-export function diagnose(calibration: Calibration, qLimit: number): Diagnostics {
+export function diagnose(calibration: Calibration): Diagnostics {
   const { model, fit, set, crossValidation } = calibration;
   const { components } = model;
-  const samples = influences(calibration, qLimit);
+  const samples = influences(calibration);
   const b = coefficientsOf(fit.rotations, fit.yLoadings);
   return {
     explained: explainedVariance(calibration),

@@ -250,7 +250,7 @@ describe("for any table at all", () => {
             validation: "test",
           });
           model = made.model;
-          expectFinite(diagnose(made, 1), "diagnostics");
+          expectFinite(diagnose(made), "diagnostics");
         } catch (error) {
           if (error instanceof MillraceError) return;
           throw error;
