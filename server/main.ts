@@ -3,6 +3,7 @@ import { Command, CommanderError } from "commander";
 import { MillraceError } from "../core/errors.ts";
 import { calibrateCommand } from "./commands/calibrate.ts";
 import { demoCommand } from "./commands/demo.ts";
+import { importModelCommand } from "./commands/import-model.ts";
 import { inspectCommand } from "./commands/inspect.ts";
 import { loadCommand } from "./commands/load.ts";
 import { scoreCommand } from "./commands/score.ts";
@@ -21,6 +22,7 @@ for (const command of [
   serveCommand(),
   calibrateCommand(),
   inspectCommand(),
+  importModelCommand(),
   scoreCommand(),
   loadCommand(),
   simulateCommand(),

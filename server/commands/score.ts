@@ -78,7 +78,6 @@ export function scoreCommand(): Command {
 }
 
 async function runScore(options: Options): Promise<void> {
-  process.stdout.once("error", leaveWhenUnread);
   const model = await readModel(options.model);
   const compiled = compileModel(model);
   const limits = limitsOf(model, choiceOf(options));
@@ -103,12 +102,6 @@ async function runScore(options: Options): Promise<void> {
   }
   if (header === undefined) parseHeader("", options.data, compiled.axis.unit); // an empty file: says what a table looks like
   await write(print.end());
-}
-
-/** A reader that has seen enough (`| head`) closes the pipe: that is no error of ours. */
-function leaveWhenUnread(error: NodeJS.ErrnoException): void {
-  if (error.code === "EPIPE") process.exit(0);
-  throw error;
 }
 
 async function* linesOf(file: string): AsyncGenerator<string> {
