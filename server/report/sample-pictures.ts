@@ -67,14 +67,17 @@ export function leverageErrorPicture({ model }: Calibration, { samples }: Diagno
   const { name, unit, rmsecv } = model.properties[property];
   const errors = samples.flatMap(({ error }) => [error[property].fit, error[property].crossValidated]);
   const mostLeverage = (3 * (model.components + 1)) / samples.length;
+  const spreadOfError = 2 * rmsecv![model.components];
   const plot = new Plot({
     says: `Leverage of the samples against their error in ${name}`,
     height: 400,
     x: { range: [0, 1.08 * Math.max(mostLeverage, ...samples.map(({ leverage }) => leverage))], label: "leverage" },
-    y: { range: spread(errors, 0.1), label: `predicted − reference ${name}${unit && ` / ${unit}`}` },
+    y: {
+      range: spread([...errors, spreadOfError, -spreadOfError], 0.1),
+      label: `predicted − reference ${name}${unit && ` / ${unit}`}`,
+    },
   });
   plot.level(0, "").upright(mostLeverage, "3(A + 1)/n");
-  const spreadOfError = 2 * rmsecv![model.components];
   plot.level(spreadOfError, "+2 RMSECV", "faint").level(-spreadOfError, "−2 RMSECV", "faint");
   for (const sample of samples) {
     const { name: title, leverage, error } = sample;
