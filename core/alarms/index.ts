@@ -32,3 +32,16 @@ export {
   type OpenExcursion,
 } from "./excursion.ts";
 export { advance } from "./lifecycle.ts";
+export {
+  type Annunciation,
+  alarmHistory,
+  type Chattering,
+  chatteringOf,
+  type Flood,
+  fleetingOf,
+  floodsIn,
+  mostWithin,
+  performanceOf,
+  recommendations,
+  recommendedShares,
+} from "./performance/index.ts";

@@ -121,5 +121,5 @@ function eventOf(signal: Signal, at: number, limitSet: number, says: () => strin
 /** What `adopt` says of an alarm that is no more. */
 export function removedNote(key: string, alarm: AlarmState, at: number, rules: StreamRules): Note {
   const says = `${key}: limit set ${rules.limitSet.version} has this alarm no more; it was ${stateWord(alarm)}.`;
-  return { at, stream: rules.stream, kind: "alarm removed", says };
+  return { at, stream: rules.stream, kind: "alarm removed", key, says };
 }

@@ -107,8 +107,9 @@ export function judge(state: StreamState, arrival: Arrival, rules: StreamRules):
 
   const gapFrom = state.latest && reading.time - newest > rules.gapMs ? newest : null;
   const [before, gapNotes, gapExcursions] = gapFrom === null ? untouched(state) : closeGap(state, rules);
-  const seen = remember(before, { judged, receivedAt, print, same });
-  const [alarmed, alarmNotes] = runAlarms(seen, judged, { frozen: invalid?.reason === "frozen" }, rules);
+  const frozen = invalid?.reason === "frozen";
+  const seen = remember(before, { judged, receivedAt, print, same, frozen });
+  const [alarmed, alarmNotes] = runAlarms(seen, judged, { frozen }, rules);
   const [next, excursionNotes, excursions] = runExcursions(alarmed, judged, rules);
   const judgement: Judgement = {
     kind: "judged",
@@ -233,9 +234,9 @@ export function verdictOf(ratios: { t2: number; q: number; nearest: number }): V
 
 function remember(
   state: StreamState,
-  seen: { judged: Judged; receivedAt: number; print: string; same: number },
+  seen: { judged: Judged; receivedAt: number; print: string; same: number; frozen: boolean },
 ): StreamState {
-  const { judged, receivedAt, print, same } = seen;
+  const { judged, receivedAt, print, same, frozen } = seen;
   const verdict = judged.verdict[0];
   return {
     ...state,
@@ -246,7 +247,8 @@ function remember(
     verdictSince: verdict === state.verdict ? state.verdictSince : judged.time,
     fingerprint: print,
     same,
-    unusable: [...state.unusable, verdict === "unusable" ? 1 : 0].slice(-mostRemembered),
+    // A frozen analyzer has an alarm of its own: one cause, one alarm.
+    unusable: [...state.unusable, verdict === "unusable" && !frozen ? 1 : 0].slice(-mostRemembered),
   };
 }
 

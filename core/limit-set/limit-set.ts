@@ -56,6 +56,8 @@ const DriftingWatchSchema = Type.Object({
   timeConstantMinutes: Type.Number({ exclusiveMinimum: 0, maximum: 100_000 }),
   /** beyond when the smoothed Q, going on as it does, would reach its limit within this time */
   withinMinutes: Type.Number({ exclusiveMinimum: 0, maximum: 1_000_000 }),
+  /** … and has come to this share of its limit already: far below it, a process wanders up and down */
+  fromRatio: Type.Number({ minimum: 0, exclusiveMaximum: 1 }),
   /** share of `withinMinutes`: the limit must be further away than `withinMinutes` · (1 + deadband) before the alarm clears */
   deadband: Type.Number({ minimum: 0 }),
 });

@@ -163,6 +163,8 @@ export const RecordedEventSchema = Type.Object({
   says: Type.String(),
   by: Type.Optional(Type.String()),
   alarm: Type.Optional(OpenAlarmSchema),
+  /** the alarm's key, where the alarm itself is no more */
+  key: Type.Optional(Type.String()),
   /** for what happened to an alarm that annunciates nothing */
   setAside: Type.Optional(SetAsideAlarmSchema),
   excursion: Type.Optional(ExcursionSchema),

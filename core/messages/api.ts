@@ -211,6 +211,83 @@ export const NoteExcursionSchema = Type.Object({ note: Type.String({ minLength: 
 /** What every command answers when it was done; when not, 409 and a {@link ProblemSchema} with the reason. */
 export const DoneSchema = Type.Object({ done: Type.Literal(true) });
 
+const namedAlarm = { stream: Type.String(), key: Type.String(), title: Type.String(), priority: PrioritySchema };
+const stretch = Type.Object({
+  ...namedAlarm,
+  /** since when its condition holds, and until when it did; absent: it holds still */
+  since: Type.Number(),
+  until: Type.Optional(Type.Number()),
+});
+
+/** A figure of the alarm system beside what is recommended for it. */
+export const FigureSchema = Type.Object({
+  key: Type.String(),
+  title: Type.String(),
+  /** null where there is nothing to judge */
+  value: orNull(Type.Number()),
+  unit: Type.String(),
+  /** very likely acceptable up to here; the most that is manageable */
+  acceptable: Type.Number(),
+  manageable: Type.Optional(Type.Number()),
+  /** the same in words, and where it is published */
+  recommended: Type.String(),
+  source: Type.String(),
+  rating: orNull(Type.Enum(["acceptable", "manageable", "beyond"] as const)),
+});
+export type Figure = Static<typeof FigureSchema>;
+
+/** GET /api/v1/alarms/performance?from&to&history — how well the alarm system itself does. Times are epoch ms. */
+export const PerformanceSchema = Type.Object({
+  from: Type.Number(),
+  to: Type.Number(),
+  days: Type.Number(),
+  /** the standards judge from at least 30 days */
+  enough: Type.Boolean(),
+  /** entries into "unacknowledged"; what came while its alarm was set aside is counted apart */
+  annunciations: Type.Integer(),
+  withheld: Type.Integer(),
+  figures: Type.Array(FigureSchema),
+  byPriority: Type.Array(
+    Type.Object({
+      priority: PrioritySchema,
+      count: Type.Integer(),
+      percent: orNull(Type.Number()),
+      /** about so many % */
+      recommended: Type.Number(),
+    }),
+  ),
+  byPrioritySource: Type.String(),
+  /** more than 10 new alarms in 10 minutes until fewer than 5; `end` null: not over yet */
+  floods: Type.Array(
+    Type.Object({
+      start: Type.Number(),
+      end: orNull(Type.Number()),
+      annunciations: Type.Integer(),
+      /** most in any 10 minutes of it */
+      peak: Type.Integer(),
+    }),
+  ),
+  /** every alarm that was annunciated, the most frequent first */
+  mostFrequent: Type.Array(Type.Object({ ...namedAlarm, count: Type.Integer(), percent: Type.Number() })),
+  /** three times or more within a minute; `worst`: most within one minute */
+  chattering: Type.Array(Type.Object({ ...namedAlarm, annunciations: Type.Integer(), worst: Type.Integer() })),
+  /** gone unanswered within a minute */
+  fleeting: Type.Array(Type.Object({ ...namedAlarm, annunciations: Type.Integer() })),
+  /** in alarm for longer than 24 h */
+  stale: Type.Array(stretch),
+  /** in alarm at `to` */
+  standing: Type.Array(stretch),
+  acknowledging: Type.Object({
+    acknowledged: Type.Integer(),
+    never: Type.Integer(),
+    medianMs: orNull(Type.Number()),
+    ninthDecileMs: orNull(Type.Number()),
+  }),
+  /** annunciations in each whole hour: its beginning, and how many */
+  hours: Type.Object({ at: numbers, count: Type.Array(Type.Integer()) }),
+});
+export type Performance = Static<typeof PerformanceSchema>;
+
 /** Every refusal over HTTP. */
 export const ProblemSchema = Type.Object({
   code: Type.String(),

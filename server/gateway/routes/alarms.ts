@@ -1,9 +1,10 @@
 import type { FastifyInstance, FastifyRequest } from "fastify";
 import { type Static, type TSchema, Type } from "typebox";
-import type { Remark } from "../../../core/alarms/index.ts";
+import { performanceOf, type Remark } from "../../../core/alarms/index.ts";
 import {
   AcknowledgeSchema,
   DoneSchema,
+  PerformanceSchema,
   ProblemSchema,
   ShelveSchema,
   StreamIdSchema,
@@ -18,7 +19,17 @@ import { RequestError } from "../problem.ts";
 const AlarmParams = Type.Object({ id: StreamIdSchema, key: StreamIdSchema });
 type AlarmParams = Static<typeof AlarmParams>;
 
+const PerformanceQuery = Type.Object({
+  from: Type.Integer(),
+  to: Type.Integer(),
+  /** count what recorded history brought in, too, as if it had been annunciated */
+  history: Type.Boolean({ default: false }),
+});
+
 const minute = 60_000;
+/** How far back from the beginning an alarm may have been raised and still be known to stand there. */
+const lookBackMs = 30 * 24 * 3_600_000;
+const longestMs = 400 * 24 * 3_600_000;
 
 /** What each command without further ado is called on its way in, and who may give it. */
 const remarks: { path: string; kind: Remark["kind"]; needed: Role; code: string }[] = [
@@ -28,9 +39,27 @@ const remarks: { path: string; kind: Remark["kind"]; needed: Role; code: string 
   { path: "return-to-service", kind: "return to service", needed: "engineer", code: "not-returned" },
 ];
 
-/** What a person does to an alarm: POST /streams/:id/alarms/:key/… */
+/** How well the alarm system does, and what a person does to an alarm: POST /streams/:id/alarms/:key/… */
 export function alarmRoutes(app: FastifyInstance, parts: GatewayParts): void {
-  const { engine, allowed } = parts;
+  const { engine, store, allowed } = parts;
+
+  app.get<{ Querystring: Static<typeof PerformanceQuery> }>(
+    "/alarms/performance",
+    { schema: { querystring: PerformanceQuery, response: { 200: PerformanceSchema, 400: ProblemSchema } } },
+    ({ query: { from, to, history } }) => {
+      if (to <= from) {
+        throw new RequestError(400, "empty-range", `to is ${to}, expected a time after from, ${from} (epoch ms).`);
+      }
+      if (to - from > longestMs) {
+        throw new RequestError(
+          400,
+          "range-too-long",
+          "from and to are more than 400 days apart; ask for less at a time.",
+        );
+      }
+      return performanceOf(store.alarmEvents({ from: from - lookBackMs, to, history }), { from, to });
+    },
+  );
 
   /** A command's route: the body checked, then the role, then the engine asked; 409 with its reason when it rejects. */
   function post<Body extends TSchema>(
