@@ -37,7 +37,7 @@ export function explainedPicture({ explained }: Diagnostics): Plot {
   const plot = new Plot({
     says: "Explained variance of the spectra and of each property, cumulative",
     x: { range: [0.4, A + 0.6], label: "components", at: explained.x.map((_, a) => a + 1) },
-    y: { range: [0, 100], label: "explained / %" },
+    y: { range: [0, 106], label: "explained / %", at: [0, 20, 40, 60, 80, 100] },
   });
   explained.x.forEach((share, a) => {
     plot.bar(a + 1, 0.5, 100 * share, "faint");
@@ -51,7 +51,7 @@ export function explainedPicture({ explained }: Diagnostics): Plot {
     fit.forEach((share, a) => {
       plot.dot([a + 1, 100 * share], "ink", "filled", `${name}, ${a + 1}: ${(100 * share).toFixed(1)} %`);
     });
-    plot.name([Math.min(A, 1 + k), 100 * fit[Math.min(A, 1 + k) - 1]], name);
+    plot.name([1, 100 * fit[0]], name);
   });
   return plot;
 }
