@@ -1,6 +1,7 @@
 import { css, html, LitElement } from "lit";
 import { repeat } from "lit/directives/repeat.js";
 import type { Plant } from "../../core/messages/index.ts";
+import { isWaiting } from "../data/alarm-order.ts";
 import { ApiError, api } from "../data/api.ts";
 import { Feed } from "../data/feed.ts";
 import { baseStyle } from "../parts/base-style.ts";
@@ -12,6 +13,7 @@ import "../parts/verdict-mark.ts";
 import "../parts/priority-mark.ts";
 import "../parts/lane-number.ts";
 import "../parts/alarm-card.ts";
+import "../parts/set-aside-row.ts";
 import "../parts/range-bar.ts";
 import "../charts/lane-chart.ts";
 import "../views/watch-lane.ts";
@@ -219,7 +221,7 @@ export class MillraceApp extends LitElement {
       engine: feed.engine,
       refused: feed.refused,
     });
-    const waiting = feed.alarms().filter((alarm) => alarm.state !== "acknowledged" && alarm.priority !== "record only");
+    const waiting = feed.alarms().filter((alarm) => isWaiting(alarm) && alarm.priority !== "record only");
     document.title = `${waiting.length ? `(${waiting.length}) ` : ""}${nameOf(this.route)} · ${plant.name}`;
     return html`
       <nav aria-label="Skip"><a class="skip" href="#main" @click=${this.#skip}>Skip to the view</a></nav>

@@ -103,6 +103,10 @@ export class TopBar extends LitElement {
         align-items: center;
         padding: 0 4px;
       }
+      .counts.old {
+        border: 2px dashed var(--edge);
+        border-radius: 4px;
+      }
       .counts span {
         display: flex;
         align-items: center;
@@ -193,8 +197,12 @@ export class TopBar extends LitElement {
 
   #counts() {
     const counts = calling.map((priority) => ({ priority, ...countOf(this.alarms, priority) }));
-    return html`<a class="counts" href="/alarms" title="Open alarms: filled marks are not acknowledged">
-      <span class="unseen">Open alarms:</span>
+    return html`<a
+      class="counts ${this.linkUp ? "" : "old"}"
+      href="/alarms"
+      title="Open alarms${this.linkUp ? "" : " when the link was last heard"}: filled marks are not acknowledged"
+    >
+      <span class="unseen">Open alarms${this.linkUp ? "" : " when the link was last heard"}:</span>
       ${counts.map(
         ({ priority, open, waiting }) =>
           html`<span class=${open ? "" : "none"}

@@ -124,6 +124,7 @@ export class LaneChart extends LitElement {
       Math.round(picture.to - picture.from),
       this.version,
       picture.live,
+      picture.old,
       picture.property.name,
       picture.marks.length,
     ].join(" ");

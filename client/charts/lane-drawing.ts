@@ -19,6 +19,8 @@ export interface LanePicture {
   from: number;
   to: number;
   live: boolean;
+  /** what is shown is old: everything after the newest reading is unknown, however short */
+  old: boolean;
   /** stretches during which something stayed beyond its limit, for the marks on top */
   marks: readonly { kind: string; from: number; to: number }[];
 }
@@ -281,7 +283,7 @@ function drawStrip(
     const top = place(mean);
     ctx.fillStyle = colours.fill;
     ctx.fillRect(x, Math.max(limit, top), wide, floor - Math.max(limit, top));
-    if (mean <= 1) {
+    if (mean <= 1 && top < floor) {
       // The edge carries the reading of the strip: it stands out from the ground where the fill alone would not.
       ctx.fillStyle = colours.edge;
       ctx.fillRect(x, top, wide, ratio);

@@ -1,5 +1,6 @@
 import type {
   Excursion,
+  ExcursionLabel,
   OpenAlarm,
   Plant,
   Problem,
@@ -56,6 +57,9 @@ const asJson = (body: unknown): RequestInit => ({
   body: JSON.stringify(body),
 });
 
+type AlarmName = Pick<OpenAlarm, "stream" | "key">;
+const alarmPath = ({ stream: id, key }: AlarmName) => `${stream(id)}/alarms/${encodeURIComponent(key)}`;
+
 /** The reads and commands of the HTTP API, as the screens need them. */
 export const api = {
   plant: () => ask<Plant>("/plant"),
@@ -68,8 +72,14 @@ export const api = {
   events: (values: { stream?: string; before?: number; limit?: number }, signal?: AbortSignal) =>
     ask<{ events: RecordedEvent[] }>(`/events${query(values)}`, { signal }),
   refusals: (limit: number, signal?: AbortSignal) => ask<Refusals>(`/refusals${query({ limit })}`, { signal }),
-  acknowledge: (alarm: Pick<OpenAlarm, "stream" | "key">) =>
-    ask<unknown>(`${stream(alarm.stream)}/alarms/${encodeURIComponent(alarm.key)}/acknowledge`, asJson({})),
+  /** what needs nothing but the word: see server's alarm routes */
+  alarmCommand: (alarm: AlarmName, command: "acknowledge" | "reset" | "unshelve" | "return-to-service") =>
+    ask<unknown>(`${alarmPath(alarm)}/${command}`, asJson({})),
+  /** without `minutes` for the present activation only */
+  shelve: (alarm: AlarmName, wish: { reason: string; minutes?: number }) =>
+    ask<unknown>(`${alarmPath(alarm)}/shelve`, asJson(wish)),
+  labelExcursion: ({ stream: id, kind, start }: Pick<Excursion, "stream" | "kind" | "start">, label: ExcursionLabel) =>
+    ask<unknown>(`${stream(id)}/excursions/${encodeURIComponent(kind)}/${start}/label`, asJson({ label })),
   signIn: (name: string, password: string) => ask<Plant["person"]>("/sign-in", asJson({ name, password })),
   /** is somebody signed in, or nobody needed? A link that was refused does not say why. */
   isWelcome: () =>

@@ -69,9 +69,14 @@ function breaksOf({ time, gaps }: HeldTrend): (index: number) => boolean {
 
 /**
  * The stretches within [from, to] without any reading: before the first that is on record, between, and after the newest. Of what lies
- * outside the stretch that was read from the server nothing is said, but for a live window: there nothing newer has come.
+ * outside the stretch that was read from the server nothing is said, but for a live window: there nothing newer has come. Where what is shown
+ * is old (`old`), all that lies after the newest reading counts as a gap, however short.
  */
-export function gapsOf(trend: HeldTrend, window: { from: number; to: number; live: boolean }, gapMs: number): Gap[] {
+export function gapsOf(
+  trend: HeldTrend,
+  window: { from: number; to: number; live: boolean; old?: boolean },
+  gapMs: number,
+): Gap[] {
   const { time, gaps, widthMs } = trend;
   const reach = reachMs(trend, gapMs);
   const from = Math.max(window.from, trend.from);
@@ -81,7 +86,7 @@ export function gapsOf(trend: HeldTrend, window: { from: number; to: number; liv
   else {
     if (time[0] - trend.from > reach) all.push({ from: trend.from, to: time[0] - widthMs / 2 });
     const end = Math.max(trend.newest, time[time.length - 1] + widthMs / 2);
-    if (to - trend.newest > reach) all.push({ from: end, to });
+    if (to - trend.newest > (window.old ? 0 : reach)) all.push({ from: end, to });
   }
   return all
     .map((gap) => ({ from: Math.max(from, gap.from), to: Math.min(to, gap.to) }))

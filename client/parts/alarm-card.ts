@@ -1,5 +1,6 @@
 import { css, html, LitElement, nothing } from "lit";
 import type { OpenAlarm } from "../../core/messages/index.ts";
+import { isWaiting } from "../data/alarm-order.ts";
 import { api } from "../data/api.ts";
 import { duration } from "../words/duration.ts";
 import type { PlantTime } from "../words/plant-time.ts";
@@ -59,8 +60,29 @@ export class AlarmCard extends LitElement {
       dt::after {
         content: ":";
       }
-      button {
+      .commands {
+        display: flex;
+        gap: 8px;
         margin-top: 6px;
+      }
+      details {
+        color: var(--ink);
+        margin-top: 4px;
+      }
+      form {
+        display: grid;
+        gap: 6px;
+        justify-items: start;
+        padding: 4px 0;
+      }
+      input,
+      select {
+        font: inherit;
+        color: var(--ink);
+        background: var(--lane);
+        border: 1px solid var(--edge);
+        border-radius: 4px;
+        min-height: 28px;
       }
       .failed {
         font-weight: 700;
@@ -70,7 +92,7 @@ export class AlarmCard extends LitElement {
 
   override render() {
     const { alarm } = this;
-    const waits = alarm.state === "unacknowledged" || alarm.state === "returned unacknowledged";
+    const waits = isWaiting(alarm);
     return html`<article style="border-color:var(${priorityColour[alarm.priority]})" aria-label="${alarm.priority} alarm: ${alarm.title}">
       <h3 style="--c:var(${priorityColour[alarm.priority]})">
         <mill-priority-mark .priority=${alarm.priority} ?filled=${waits}></mill-priority-mark>
@@ -81,14 +103,12 @@ export class AlarmCard extends LitElement {
       <p>${alarm.says}</p>
       <p>${alarm.response}</p>
       ${this.full ? this.#purpose() : nothing}
-      ${
-        waits
-          ? html`<button ?disabled=${this.sending || this.linkUp === false} @click=${this.#acknowledge}>
-            ${this.sending ? "Acknowledging …" : "Acknowledge"}
-          </button>`
-          : nothing
-      }
-      ${this.failed ? html`<p class="failed" role="alert">Not acknowledged: ${this.failed}</p>` : nothing}
+      <div class="commands">
+        ${waits ? this.#button("acknowledge", "Acknowledge") : nothing}
+        ${alarm.state === "latched acknowledged" ? this.#button("reset", "Reset") : nothing}
+      </div>
+      ${this.full ? this.#shelving() : nothing}
+      ${this.failed ? html`<p class="failed" role="alert">Not done: ${this.failed}</p>` : nothing}
     </article>`;
   }
 
@@ -103,6 +123,10 @@ export class AlarmCard extends LitElement {
       case "returned unacknowledged":
         return html`raised ${whole(alarm.raisedAt)} · gone since
         ${alarm.clearedAt ? whole(alarm.clearedAt) : "then"} · not acknowledged`;
+      case "latched unacknowledged":
+      case "latched acknowledged":
+        return html`raised ${whole(alarm.raisedAt)} · gone since ${alarm.clearedAt ? whole(alarm.clearedAt) : "then"} · latched:
+        ${isWaiting(alarm) ? "not acknowledged" : "waits for a reset"}`;
       default:
         return html`since ${whole(alarm.since)}, ${age} · not acknowledged`;
     }
@@ -120,11 +144,49 @@ export class AlarmCard extends LitElement {
     </dl>`;
   }
 
-  async #acknowledge(): Promise<void> {
+  #button(command: "acknowledge" | "reset", word: string) {
+    return html`<button
+      ?disabled=${this.sending || this.linkUp === false}
+      @click=${() => this.#send(() => api.alarmCommand(this.alarm, command))}
+    >
+      ${this.sending ? "Sending …" : word}
+    </button>`;
+  }
+
+  #shelving() {
+    return html`<details>
+      <summary>Shelve for a while</summary>
+      <form @submit=${this.#shelve}>
+        <label>Reason <input name="reason" required maxlength="2000" /></label>
+        <label
+          >For
+          <select name="minutes">
+            <option value="">this time only</option>
+            <option value="30">30 min</option>
+            <option value="60">1 h</option>
+            <option value="240">4 h</option>
+            <option value="480">8 h</option>
+          </select></label
+        >
+        <button ?disabled=${this.sending || this.linkUp === false}>Shelve</button>
+        <p class="quiet">It says nothing until then, and comes back by itself. It stays on the list below.</p>
+      </form>
+    </details>`;
+  }
+
+  #shelve(event: SubmitEvent): void {
+    event.preventDefault();
+    const form = new FormData(event.target as HTMLFormElement);
+    const minutes = Number(form.get("minutes"));
+    const reason = String(form.get("reason"));
+    void this.#send(() => api.shelve(this.alarm, minutes ? { reason, minutes } : { reason }));
+  }
+
+  async #send(command: () => Promise<unknown>): Promise<void> {
     this.sending = true;
     this.failed = undefined;
     try {
-      await api.acknowledge(this.alarm);
+      await command();
     } catch (error) {
       this.failed = (error as Error).message;
     }

@@ -65,12 +65,9 @@ export class LaneNumber extends LitElement {
         border-radius: 4px;
       }
       .old .value {
-        background: repeating-linear-gradient(135deg, transparent 0 6px, var(--rule) 6px 7px);
-      }
-      .old .value b {
-        font-weight: 400;
-        background: var(--lane);
-        box-shadow: 0 0 0 4px var(--lane);
+        padding: 0 6px;
+        border: 6px solid;
+        border-image: repeating-linear-gradient(135deg, var(--edge) 0 2px, transparent 2px 6px) 6;
       }
       .verdict {
         display: flex;

@@ -1,7 +1,7 @@
 import { css, html, LitElement, nothing } from "lit";
 import type { OpenAlarm, Plant, RecordedEvent } from "../../core/messages/index.ts";
 import { href } from "../app/route.ts";
-import { byUrgency, calling } from "../data/alarm-order.ts";
+import { byUrgency, calling, isWaiting } from "../data/alarm-order.ts";
 import { api } from "../data/api.ts";
 import type { Feed } from "../data/feed.ts";
 import { Listening, ticking } from "../data/listening.ts";
@@ -74,7 +74,7 @@ export class AlarmsView extends LitElement {
     const { feed } = this;
     const now = feed.now();
     const open = byUrgency(feed.alarms());
-    const waiting = open.filter(({ state, priority }) => state !== "acknowledged" && priority !== "record only").length;
+    const waiting = open.filter((alarm) => isWaiting(alarm) && alarm.priority !== "record only").length;
     this.#recent.want("recent");
     return html`
       <h1>
@@ -103,7 +103,7 @@ export class AlarmsView extends LitElement {
           return held.map((alarm) => this.#card(alarm, now));
         })}
       </div>
-      ${this.#record(now)}
+      ${this.#setAside(now)} ${this.#record(now)}
     `;
   }
 
@@ -118,6 +118,21 @@ export class AlarmsView extends LitElement {
         <a href=${href({ view: "watch", window, stream: alarm.stream })}>On Watch</a> ·
         <a href=${href({ view: "reading", stream: alarm.stream, at: alarm.raisedAt })}>Reading when it was raised</a>
       </p>
+    </section>`;
+  }
+
+  #setAside(now: number) {
+    const { plant, feed, time } = this;
+    const aside = plant.streams.flatMap(({ id, name }) =>
+      (feed.of(id)?.setAside ?? []).map((alarm) => ({ alarm, name })),
+    );
+    if (aside.length === 0) return nothing;
+    return html`<section class="card record">
+      <h2>Set aside: these say nothing at present</h2>
+      ${aside.map(
+        ({ alarm, name }) =>
+          html`<mill-set-aside-row .alarm=${alarm} .name=${name} .now=${now} .time=${time}></mill-set-aside-row>`,
+      )}
     </section>`;
   }
 

@@ -1,5 +1,5 @@
 import { css, html, LitElement, nothing } from "lit";
-import type { Excursion, Plant } from "../../core/messages/index.ts";
+import { type Excursion, type ExcursionLabel, excursionLabels, type Plant } from "../../core/messages/index.ts";
 import { href, type Route } from "../app/route.ts";
 import { api } from "../data/api.ts";
 import type { Feed } from "../data/feed.ts";
@@ -22,11 +22,14 @@ export class ExcursionsView extends LitElement {
     feed: { attribute: false },
     time: { attribute: false },
     route: { attribute: false },
+    failed: { state: true },
   };
   declare plant: Plant;
   declare feed: Feed;
   declare time: PlantTime;
   declare route: Extract<Route, { view: "excursions" }>;
+  /** why a label was not taken */
+  declare failed: string | undefined;
   #cursor = -1;
   readonly #loaded = new Loaded(this, (key, signal) =>
     api.excursions({ stream: key || undefined, limit: listed }, signal),
@@ -100,6 +103,7 @@ export class ExcursionsView extends LitElement {
           An excursion is an unbroken time beyond a limit. Newest first${value && value.excursions.length >= listed ? `, the last ${listed}` : ""}.
         </p>
       </div>
+      ${this.failed ? html`<p class="card" role="alert">The label was not taken. ${this.failed}</p>` : nothing}
       ${error ? html`<p class="card" role="status">The excursions could not be read. ${error.message}</p>` : nothing}
       ${!value && loading && !error ? html`<p class="card">Reading the excursions …</p>` : nothing}
       ${
@@ -122,6 +126,7 @@ export class ExcursionsView extends LitElement {
             <th scope="col">Lasted</th>
             <th scope="col" class="number">Peak</th>
             <th scope="col">What made it</th>
+            <th scope="col">What it was</th>
             <th scope="col"><span class="unseen">Links</span></th>
           </tr>
         </thead>
@@ -132,7 +137,34 @@ export class ExcursionsView extends LitElement {
     </div>`;
   }
 
-  #row({ stream, kind, start, end, ended, peak, peakTime, unit, readings, says }: Excursion, now: number) {
+  /** Labels are the truth that limits are measured by: whoever knows says what it was. */
+  #label(excursion: Excursion, now: number) {
+    const { label, kind, start, stream } = excursion;
+    const options: ("" | ExcursionLabel)[] = ["", ...excursionLabels];
+    return html`<select
+        aria-label="What the excursion of ${stream} at ${this.time.exact(start, now)} (${kind}) was"
+        @change=${(event: Event) => void this.#setLabel(excursion, event.target as HTMLSelectElement)}
+      >
+        ${options.map((option) => html`<option value=${option} ?selected=${option === (label?.is ?? "")} ?disabled=${option === "" && label !== undefined}>${option || "not said"}</option>`)}
+      </select>
+      ${label ? html`<br /><span class="quiet">${label.by}, ${this.time.brief(label.at, now)}</span>` : nothing}`;
+  }
+
+  async #setLabel(excursion: Excursion, select: HTMLSelectElement): Promise<void> {
+    const label = excursionLabels.find((each) => each === select.value);
+    if (!label) return;
+    this.failed = undefined;
+    try {
+      await api.labelExcursion(excursion, label);
+      this.#loaded.refresh();
+    } catch (error) {
+      this.failed = (error as Error).message;
+      select.value = excursion.label?.is ?? "";
+    }
+  }
+
+  #row(excursion: Excursion, now: number) {
+    const { stream, kind, start, end, ended, peak, peakTime, unit, readings, says } = excursion;
     const { time, plant } = this;
     const verdict = verdictOfKind(kind);
     const isRatio = unit === "× limit";
@@ -154,7 +186,10 @@ export class ExcursionsView extends LitElement {
         <br /><span class="quiet">${counted(readings, "reading")}</span>
       </td>
       <td class="number" title="at ${time.full(peakTime)}"><span class="whole">${isRatio ? ratio(peak) : Number(peak.toPrecision(3))}${thin}${unit}</span></td>
-      <td class="says">${says}</td>
+      <td class="says">
+        ${says} ${(excursion.notes ?? []).map((note) => html`<p class="quiet">${note.by}, ${time.brief(note.at, now)}: ${note.says}</p>`)}
+      </td>
+      <td>${this.#label(excursion, now)}</td>
       <td class="links">
         <a href=${href({ view: "reading", stream, at: peakTime })}>Reading at the peak</a
         ><a href=${href({ view: "watch", window })}>On Watch</a>

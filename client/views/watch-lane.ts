@@ -189,12 +189,12 @@ export class WatchLane extends LitElement {
           .time=${time}
         ></mill-lane-number>
       </div>
-      ${this.#chart(property)}
+      ${this.#chart(property, fresh.kind === "old")}
       <div class="open">${this.#open()}</div>
     `;
   }
 
-  #chart(property: PlantProperty) {
+  #chart(property: PlantProperty, old: boolean) {
     const { from, to } = edges(this.window, this.now);
     const width = this.clientWidth > 1100 ? this.clientWidth - 640 : Math.max(240, this.clientWidth - 360);
     this.#trend.want({ from, to, points: Math.round(Math.min(1200, width)) });
@@ -207,6 +207,7 @@ export class WatchLane extends LitElement {
       from,
       to,
       live: this.window.kind === "live",
+      old,
       marks: this.#marks(),
     };
     const empty = trend && !trend.time.some((at) => at >= from && at <= to);
@@ -312,14 +313,33 @@ export class WatchLane extends LitElement {
     const { feed, stream, now, time } = this;
     const state = feed.of(stream.id);
     const alarms = byUrgency(state?.alarms ?? []).filter(({ priority }) => priority !== "record only");
+    const aside = state?.setAside ?? [];
     const refused = state?.refused ?? 0;
     const trouble = state?.trouble ?? stream.trouble;
     return html`
+      ${
+        !feed.linkUp && feed.heardAt !== null
+          ? html`<p><b>As last heard at <span class="whole">${time.exact(feed.heardAt, now)}:</span></b></p>`
+          : nothing
+      }
       ${alarms.length === 0 ? html`<p class="quiet">No open alarms.</p>` : nothing}
       ${alarms.map(
         (alarm) =>
           html`<mill-alarm-card .alarm=${alarm} .now=${now} .time=${time} .linkUp=${feed.linkUp}></mill-alarm-card>`,
       )}
+      ${
+        aside.length > 0
+          ? html`<p class="quiet"><a href="/alarms">${counted(aside.length, "alarm")} set aside</a>: ${aside.map(({ title, state }) => `${title} (${state})`).join(", ")}</p>`
+          : nothing
+      }
+      ${
+        state?.process && state.process.state !== "running"
+          ? html`<p>
+              The line is <b>${state.process.state}</b> since
+              <span class="whole">${time.brief(state.process.since, now)}</span>.
+            </p>`
+          : nothing
+      }
       ${state?.held ? html`<p class="quiet">Property alarms are held while the reading is not inside.</p>` : nothing}
       ${trouble ? html`<p><b>Not scored.</b> ${trouble}</p>` : nothing}
       ${refused > 0 ? html`<p class="quiet"><a href="/plant">${counted(refused, "message")} refused</a></p>` : nothing}

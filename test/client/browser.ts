@@ -31,6 +31,7 @@ export async function openPage(
 ): Promise<Seen> {
   const context = await browser.newContext({ viewport: { width, height }, colorScheme: theme });
   const page = await context.newPage();
+  page.setDefaultTimeout(15_000);
   const complaints: string[] = [];
   page.on("console", (message) => {
     if (message.type() === "error" || message.type() === "warning") complaints.push(message.text());

@@ -43,16 +43,18 @@ describe("alarms", () => {
     alarm("c", "high", "unacknowledged", 1),
     alarm("d", "high", "returned unacknowledged", 5),
     alarm("e", "medium", "acknowledged", 7),
+    alarm("f", "medium", "latched unacknowledged", 2),
+    alarm("g", "medium", "latched acknowledged", 3),
   ];
 
   test("stand by priority, then those that wait for a person, then the newest; the list itself is not changed", () => {
     const frozen = Object.freeze([...open]);
-    expect(byUrgency(frozen).map(({ key }) => key)).toEqual(["d", "c", "b", "e", "a"]);
+    expect(byUrgency(frozen).map(({ key }) => key)).toEqual(["d", "c", "b", "f", "e", "g", "a"]);
   });
 
   test("are counted by priority, and how many wait", () => {
     expect(countOf(open, "high")).toEqual({ open: 3, waiting: 2 });
-    expect(countOf(open, "medium")).toEqual({ open: 1, waiting: 0 });
+    expect(countOf(open, "medium")).toEqual({ open: 3, waiting: 1 });
   });
 });
 

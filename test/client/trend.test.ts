@@ -154,6 +154,11 @@ describe("gaps on the screen", () => {
     expect(gapsOf(trendOf(every2s(5)), live(end + 60_000), gapMs)).toEqual([{ from: end, to: end + 60_000 }]);
   });
 
+  test("when what is shown is old, all after the newest reading is hatched at once", () => {
+    const window = { ...live(end + 4000), old: true };
+    expect(gapsOf(trendOf(every2s(5)), window, gapMs)).toEqual([{ from: end, to: end + 4000 }]);
+  });
+
   test("what was read as empty is hatched; what was not read yet is not", () => {
     const trend = trendOf(every2s(5));
     const window = { from: start - 600_000, to: start + 600_000, live: false };

@@ -103,12 +103,47 @@ test.each(["/watch?last=900", "/alarms", `/reading/${stream}`])(
   },
 );
 
+test("shelved with a reason it says nothing but stands on the list with the way back, and comes back", async () => {
+  const other = await openPage(browser, `${chain.url}/alarms`);
+  const { page } = other;
+  // The two other streams have never sent anything here, and their alarms say so.
+  const card = page.locator("mill-alarm-card article", { hasText: "Unfamiliar spectrum" });
+  await card.getByText("Shelve for a while").click();
+  await card.getByLabel("Reason").fill("Grab sample is under way");
+  await card.getByRole("combobox").selectOption({ label: "30 min" });
+  await card.getByRole("button", { name: "Shelve" }).click();
+  const row = page.locator("mill-set-aside-row article", { hasText: "Unfamiliar spectrum" });
+  await row.waitFor();
+  expect(await wordsOf(row)).toMatch(
+    /Shelved until \d\d:\d\d \((30|29) min\), R\. Quill: Grab sample is under way\. Its condition holds all the same/,
+  );
+  expect(await card.count()).toBe(0);
+  await lane(seen.page, stream).getByText("1 alarm set aside").waitFor();
+  expect(await accessFaults(page)).toEqual([]);
+  await row.getByRole("button", { name: "Unshelve" }).click();
+  await card.waitFor();
+  expect(other.complaints).toEqual([]);
+  await other.close();
+});
+
 test("acknowledging it puts the person's name to it", async () => {
   const alarm = lane(seen.page, stream).locator("mill-alarm-card");
   await alarm.getByRole("button", { name: "Acknowledge" }).click();
   await alarm.getByText("R. Quill").waitFor();
   expect(await wordsOf(alarm.locator("article"))).toMatch(/acknowledged\s+\d\d:\d\d, R\. Quill/);
   expect(await alarm.getByRole("button", { name: "Acknowledge" }).count()).toBe(0);
+});
+
+test("whoever knows says what the excursion was, and it is kept under their name", async () => {
+  const other = await openPage(browser, `${chain.url}/excursions/${stream}`);
+  const row = other.page.getByRole("row", { name: /unfamiliar/ }).first();
+  await row.getByRole("combobox").selectOption("process change");
+  await row.getByText(/R\. Quill/).waitFor();
+  await other.page.reload();
+  await row.getByText(/R\. Quill/).waitFor();
+  expect(await row.getByRole("combobox").inputValue()).toBe("process change");
+  expect(await accessFaults(other.page)).toEqual([]);
+  await other.close();
 });
 
 test("when the band is gone the lane returns to normal and the alarm leaves", async () => {
