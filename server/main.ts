@@ -10,6 +10,7 @@ import { scoreCommand } from "./commands/score.ts";
 import { serveCommand } from "./commands/serve.ts";
 import { simulateCommand } from "./commands/simulate.ts";
 import { userCommand } from "./commands/user.ts";
+import { verifyRecordCommand } from "./commands/verify-record.ts";
 import { version } from "./version.ts";
 
 const program = new Command("millrace")
@@ -27,6 +28,7 @@ for (const command of [
   loadCommand(),
   simulateCommand(),
   userCommand(),
+  verifyRecordCommand(),
 ]) {
   program.addCommand(command);
 }

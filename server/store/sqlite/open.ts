@@ -2,6 +2,7 @@ import { existsSync, mkdirSync } from "node:fs";
 import { dirname } from "node:path";
 import Database from "better-sqlite3";
 import { MillraceError, type Mismatch, mismatchSentence } from "../../../core/errors.ts";
+import { chainEvents } from "./event-chain.ts";
 import { rollUpAll, rollupSchema } from "./rollup.ts";
 
 export class StoreError extends MillraceError {
@@ -18,6 +19,7 @@ const steps: readonly ((db: Database.Database) => void)[] = [
     db.exec(rollupSchema);
     rollUpAll(db);
   },
+  chainEvents,
 ];
 
 /*

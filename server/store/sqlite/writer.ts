@@ -3,6 +3,7 @@ import type { StreamState } from "../../../core/judging/index.ts";
 import type { LimitSet } from "../../../core/limit-set/index.ts";
 import { type AxisSpec, type Excursion, type Judged, verdictMask } from "../../../core/messages/index.ts";
 import type { Changes, NewReading, NewRefusal, StoreWriter } from "../store.ts";
+import { chainHash, chainStart } from "./event-chain.ts";
 import { openForWriting } from "./open.ts";
 import { RollupWriter } from "./rollup.ts";
 import { spectrumBytes } from "./spectrum-bytes.ts";
@@ -28,7 +29,7 @@ export function sqliteWriter(file: string): StoreWriter {
     setState: db.prepare("UPDATE stream SET state = ? WHERE k = ?"),
     reading: db.prepare(`INSERT INTO reading VALUES (${Array(22).fill("?").join(", ")}) ON CONFLICT DO NOTHING`),
     spectrum: db.prepare("INSERT INTO spectrum VALUES (?, ?, ?, ?)"),
-    event: db.prepare("INSERT INTO event VALUES (?, ?, ?, ?, ?)"),
+    event: db.prepare("INSERT INTO event VALUES (?, ?, ?, ?, ?, ?)"),
     excursion: db.prepare(upsertExcursion),
     excursionById: db.prepare<[string], string>("SELECT json FROM excursion WHERE id = ?").pluck(),
     refusal: db.prepare(
@@ -44,6 +45,7 @@ export function sqliteWriter(file: string): StoreWriter {
     modelText: db.prepare<[string], string>("SELECT text FROM model WHERE id = ?").pluck(),
     limitSet: db.prepare("SELECT json FROM limit_set WHERE stream = ? ORDER BY version DESC LIMIT 1").pluck(),
     addLimitSet: db.prepare("INSERT INTO limit_set VALUES (?, ?, ?)"),
+    lastHash: db.prepare<[], Buffer>("SELECT hash FROM event ORDER BY cursor DESC LIMIT 1").pluck(),
     lastCursor: db.prepare("SELECT coalesce(max(cursor), 0) FROM event").pluck(),
     lastNumber: db.prepare("SELECT coalesce(max(number), 0) FROM spectrum").pluck(),
     firstLive: db
@@ -52,6 +54,7 @@ export function sqliteWriter(file: string): StoreWriter {
   };
   const rollups = new RollupWriter(db);
   let number = sql.lastNumber.get() as number;
+  let lastHash: Buffer = sql.lastHash.get() ?? chainStart;
 
   function streamKey(id: string): number {
     const known = streams.get(id);
@@ -130,20 +133,24 @@ export function sqliteWriter(file: string): StoreWriter {
     rollups.write();
     for (const refusal of changes.refusals) addRefusal(refusal);
     if (changes.refusals.length > 0) sql.trimRefusals.run(mostRefusals);
+    let hash = lastHash;
     for (const event of changes.events) {
-      sql.event.run(event.cursor, event.at, event.stream, event.kind, JSON.stringify(event));
+      const json = JSON.stringify(event);
+      hash = chainHash(hash, json);
+      sql.event.run(event.cursor, event.at, event.stream, event.kind, json, hash);
     }
     for (const excursion of changes.excursions) {
       const { id, stream, start, end } = excursion;
       sql.excursion.run(id, stream, start, end ?? Number.MAX_SAFE_INTEGER, JSON.stringify(excursion));
     }
     for (const [stream, state] of changes.states) sql.setState.run(JSON.stringify(state), streamKey(stream));
+    return hash;
   });
 
   return {
     commit(changes) {
       try {
-        commit.immediate(changes);
+        lastHash = commit.immediate(changes);
       } catch (error) {
         // Rolled back, and with it rows that these remember.
         for (const remembered of [streams, axes]) remembered.clear();
