@@ -1,4 +1,5 @@
 import type { AlarmState, DetectorState, Drift, OpenExcursion } from "../alarms/index.ts";
+import type { Proposals } from "../limit-set/index.ts";
 import type { Judged, ProcessState, Verdict } from "../messages/index.ts";
 
 /**
@@ -25,6 +26,8 @@ export interface StreamState {
   detectors: Record<string, DetectorState>;
   alarms: Record<string, AlarmState>;
   excursions: Record<string, OpenExcursion>;
+  /** limit sets that wait for another person's approval */
+  proposals: Proposals;
 }
 
 export const freshState: StreamState = {
@@ -41,4 +44,5 @@ export const freshState: StreamState = {
   detectors: {},
   alarms: {},
   excursions: {},
+  proposals: { waiting: [], last: 0 },
 };

@@ -1,4 +1,15 @@
+export {
+  changesInWords,
+  decideLimits,
+  type LimitAnswer,
+  type LimitAsk,
+  type LimitProposal,
+  LimitProposalSchema,
+  type LimitSituation,
+  type Proposals,
+} from "./changes.ts";
 export { defaultAlarms } from "./default-alarms.ts";
+export { type Difference, differences } from "./differences.ts";
 export {
   type AlarmRule,
   AlarmRuleSchema,

@@ -123,8 +123,10 @@ export const LimitSetSchema = Type.Object({
   }),
   alarms: Type.Array(AlarmRuleSchema),
   author: Type.String(),
+  /** who approved it, where the plant asks for another person */
+  approver: Type.Optional(Type.String()),
   reason: Type.String(),
-  /** when it was made, epoch ms */
+  /** since when it is in force, epoch ms */
   time: Type.Number(),
 });
 export type LimitSet = Static<typeof LimitSetSchema>;

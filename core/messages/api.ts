@@ -294,3 +294,43 @@ export const ProblemSchema = Type.Object({
   says: Type.String(),
 });
 export type Problem = Static<typeof ProblemSchema>;
+
+const DifferenceSchema = Type.Object({
+  /** the setting: `unfamiliar › onDelay › readings` */
+  what: Type.String(),
+  before: Type.Optional(Type.String()),
+  after: Type.Optional(Type.String()),
+});
+const LimitChangeFields = {
+  author: Type.String(),
+  reason: Type.String(),
+  time: Type.Number(),
+  differences: Type.Array(DifferenceSchema),
+};
+/** GET /api/v1/streams/:id/limit-sets */
+export const LimitSetsSchema = Type.Object({
+  /** the limit set that judges now, whole (core/limit-set); null while the stream has no usable model */
+  inForce: Type.Unknown(),
+  /** "another person" where a change needs an approver */
+  approval: orNull(Type.String()),
+  /** newest first; the differences are those to the version before */
+  versions: Type.Array(
+    Type.Object({
+      version: Type.Integer(),
+      approver: Type.Optional(Type.String()),
+      model: Type.String(),
+      ...LimitChangeFields,
+    }),
+  ),
+  /** what waits for approval; the differences are those to the limits in force */
+  proposals: Type.Array(Type.Object({ id: Type.Integer(), base: Type.Integer(), ...LimitChangeFields })),
+});
+export type LimitSets = Static<typeof LimitSetsSchema>;
+
+/** What came of a change of limits: a version in force, or a proposal that waits. */
+export const LimitChangeOutcomeSchema = Type.Object({
+  done: Type.Literal(true),
+  version: Type.Optional(Type.Integer()),
+  proposal: Type.Optional(Type.Integer()),
+});
+export type LimitChangeOutcome = Static<typeof LimitChangeOutcomeSchema>;

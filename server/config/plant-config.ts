@@ -61,6 +61,8 @@ export const PlantConfigSchema = Type.Object({
   data: Type.String(),
   http: HttpSchema,
   mqtt: Type.Object({ prefix: Type.String({ pattern: "^[^+#\\u0000]+$" }), broker: BrokerSchema }),
+  /** who may put limits in force: "another person" asks for an approver beside the author */
+  limits: Type.Optional(Type.Object({ approval: Type.Literal("another person") })),
   /** an invented plant: the screens say so, and an invented person is signed in */
   demo: Type.Optional(Type.Boolean()),
   streams: Type.Array(StreamConfigSchema, { minItems: 1 }),

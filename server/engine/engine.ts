@@ -32,6 +32,7 @@ const retryAfterMs = 1000;
 export class Engine {
   readonly #store: StoreWriter;
   readonly #topics: Topics;
+  readonly #approval: boolean;
   readonly #tell: (told: Told) => void;
   readonly #log: (says: string) => void;
   #source: Source | undefined;
@@ -52,11 +53,14 @@ export class Engine {
     store: StoreWriter;
     topics: Topics;
     streams: Map<string, EngineStream>;
+    /** does a change of limits need another person's approval? */
+    approval: boolean;
     tell: (told: Told) => void;
     log: (says: string) => void;
   }) {
     this.#store = parts.store;
     this.#topics = parts.topics;
+    this.#approval = parts.approval;
     this.#streams = parts.streams;
     this.#tell = parts.tell;
     this.#log = parts.log;
@@ -189,6 +193,7 @@ export class Engine {
       { streams: this.#streams, cursor: this.#cursor },
       {
         topics: this.#topics,
+        approval: this.#approval,
         isRecorded: (...identity) => this.#store.isRecorded(...identity),
         excursion: (id) => this.#store.excursion(id),
       },

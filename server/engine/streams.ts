@@ -38,6 +38,7 @@ export function readyStream(config: StreamConfig, store: StoreWriter, now: numbe
     const { model, text } = readModel(config.model);
     const compiled = compileModel(model);
     checkJudges(compiled, config.model);
+    statisticLimits(model, defaultStatisticChoice()); // throws here, where it is told as the model's trouble, if it lacks the residuals
     checkAxis(compiled, config);
     scorer = new Scorer(compiled);
     const properties = model.properties.map(({ name }) => name);
@@ -50,7 +51,8 @@ export function readyStream(config: StreamConfig, store: StoreWriter, now: numbe
   const limitSet = limitSetFor(config, scorer?.compiled, store, now);
   return {
     rules: rulesOf(config, limitSet, scorer, modelTrouble),
-    state: store.state(config.id) ?? freshState,
+    // A state that an earlier version wrote may lack what has come since.
+    state: { ...freshState, ...store.state(config.id) },
   };
 }
 

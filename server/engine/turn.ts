@@ -1,4 +1,5 @@
 import {
+  adopt,
   hearProcessState,
   type Judgement,
   judge,
@@ -10,6 +11,7 @@ import {
   setAsideAlarms,
   tick,
 } from "../../core/judging/index.ts";
+import { decideLimits, type LimitAsk, type LimitSet } from "../../core/limit-set/index.ts";
 import type { Excursion, Judged, Reading, RecordedEvent, StreamNow } from "../../core/messages/index.ts";
 import type { Changes, NewReading, NewRefusal } from "../store/store.ts";
 import { decodeReading } from "./decode.ts";
@@ -22,9 +24,14 @@ import type { Topics } from "./topics.ts";
 /** What a person or a program asks of the engine. */
 export type Command =
   | StreamCommand
+  | LimitCommand
   /** something for the record that touches no stream: a sign-in, say */
   | { kind: "record"; event: string; says: string; by?: string };
-export type CommandOutcome = { done: true } | { done: false; says: string };
+export type CommandOutcome = { done: true; version?: number; proposal?: number } | { done: false; says: string };
+
+type Untimed<Ask> = Ask extends LimitAsk ? Omit<Ask, "at"> & { stream: string } : never;
+/** What an engineer asks of a stream's limits. */
+export type LimitCommand = Untimed<LimitAsk>;
 
 export type Input =
   | { kind: "message"; message: Message }
@@ -58,6 +65,8 @@ export interface Turn {
 
 export interface Context {
   topics: Topics;
+  /** does a change of limits need another person's approval? */
+  approval: boolean;
   /** is this identity on record already? (not counting this turn) */
   isRecorded: (stream: string, time: number, sequence: number) => boolean;
   /** an excursion on record (not counting this turn) */
@@ -85,6 +94,7 @@ class TurnBuilder {
   readonly #judged: Judged[] = [];
   readonly #changed = new Set<string>();
   readonly #loads = new Map<string, Load>();
+  readonly #limitSets: LimitSet[] = [];
   readonly #replies: Turn["replies"] = [];
   /** identities within this turn: the store does not know them yet */
   readonly #seen = new Set<string>();
@@ -127,6 +137,7 @@ class TurnBuilder {
         refusals: this.#refusals,
         events: this.#events,
         excursions: this.#excursions,
+        limitSets: this.#limitSets,
         states,
       },
       streams: this.#streams,
@@ -304,6 +315,10 @@ class TurnBuilder {
       this.#replies.push({ id, outcome: { done: false, says } });
       return;
     }
+    if (isLimitCommand(command)) {
+      this.#limits(id, now, stream, command);
+      return;
+    }
     const { state, notes, excursions, rejected } = carryOut(stream, command, now, (excursion) =>
       this.#excursion(excursion),
     );
@@ -317,6 +332,39 @@ class TurnBuilder {
     this.#changed.add(command.stream);
     this.#excursions.push(...excursions);
     this.#replies.push({ id, outcome: { done: true } });
+  }
+
+  /** Limits change between two readings: what is judged from here on is judged by the new version, and says so. */
+  #limits(id: number, now: number, { rules, state }: EngineStream, command: LimitCommand): void {
+    const { stream } = command;
+    const answer = decideLimits({ ...command, at: now } as LimitAsk, {
+      inForce: rules.limitSet,
+      proposals: state.proposals,
+      properties: rules.scorer?.compiled.properties.map(({ name }) => name) ?? [],
+      approval: this.#context.approval,
+    });
+    if (answer.kind === "rejected") {
+      this.#replies.push({ id, outcome: { done: false, says: answer.why } });
+      return;
+    }
+    const next = { ...state, proposals: answer.proposals };
+    const note = { at: now, stream, kind: `limits ${answer.kind}`, says: answer.says, by: command.by };
+    this.#changed.add(stream);
+    if (answer.kind !== "in force") {
+      this.#streams.set(stream, { rules, state: next });
+      this.#note([note], false);
+      this.#replies.push({
+        id,
+        outcome: { done: true, ...(answer.kind === "waits" ? { proposal: answer.proposal.id } : {}) },
+      });
+      return;
+    }
+    const ruled = { ...rules, limitSet: answer.set };
+    const [adopted, notes] = adopt(next, now, ruled);
+    this.#streams.set(stream, { rules: ruled, state: adopted });
+    this.#limitSets.push(answer.set);
+    this.#note([note, ...notes], false);
+    this.#replies.push({ id, outcome: { done: true, version: answer.set.version } });
   }
 
   /** As it is on record, or will be with this turn. */
@@ -351,6 +399,10 @@ class TurnBuilder {
       this.#events.push({ cursor: ++this.#cursor, ...note, ...(history ? { history: true } : {}) });
     }
   }
+}
+
+function isLimitCommand(command: StreamCommand | LimitCommand): command is LimitCommand {
+  return command.kind === "change limits" || command.kind === "approve limits" || command.kind === "withdraw limits";
 }
 
 /** Nobody was there to acknowledge or reset what history raised: an alarm whose condition has gone is done, and does not wait to be raised "again". */

@@ -30,6 +30,7 @@ function run(): void {
     store,
     topics,
     streams,
+    approval: config.limits?.approval === "another person",
     log,
     tell(told) {
       say({ kind: ready ? "told" : "ready", told });

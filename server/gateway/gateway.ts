@@ -18,6 +18,7 @@ import { ReadingExplainer } from "./reading-view.ts";
 import { alarmRoutes } from "./routes/alarms.ts";
 import { excursionRoutes } from "./routes/excursions.ts";
 import { healthRoutes } from "./routes/health.ts";
+import { limitSetRoutes } from "./routes/limit-sets.ts";
 import { loadRoutes } from "./routes/load.ts";
 import { peopleRoutes } from "./routes/people.ts";
 import { recordRoutes } from "./routes/record.ts";
@@ -133,6 +134,7 @@ export async function startGateway(options: {
       alarmRoutes(api, parts);
       excursionRoutes(api, parts);
       loadRoutes(api, parts);
+      limitSetRoutes(api, parts);
       api.get("/openapi.json", { schema: { hide: true } }, () => app.swagger());
       api.setNotFoundHandler((request) => {
         throw new RequestError(

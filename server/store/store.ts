@@ -1,5 +1,5 @@
 import type { StreamState } from "../../core/judging/index.ts";
-import type { LimitSet } from "../../core/limit-set/index.ts";
+import type { LimitProposal, LimitSet } from "../../core/limit-set/index.ts";
 import type {
   AxisSpec,
   Excursion,
@@ -45,6 +45,8 @@ export interface Changes {
   excursions: Excursion[];
   /** by stream: what judging remembers after these readings */
   states: Map<string, StreamState>;
+  /** new versions, in force from here on */
+  limitSets?: LimitSet[];
 }
 
 /** The record, as its single writer sees it. What a method is asked must be portable: no maker's own words cross this border. */
@@ -95,6 +97,10 @@ export interface StoreReader {
   /** Newest first, those that touch `from`–`to`. */
   excursions(query: { stream?: string; from?: number; to?: number; limit: number }): Excursion[];
   limitSet(stream: string, version?: number): LimitSet | undefined;
+  /** Every version, newest first. */
+  limitSets(stream: string): LimitSet[];
+  /** What waits for approval. */
+  proposals(stream: string): LimitProposal[];
   modelText(id: string): string | undefined;
   /** How many readings of the stream are on record, and the time of the first. */
   extent(stream: string): { readings: number; first: number | null };

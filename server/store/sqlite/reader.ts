@@ -1,4 +1,5 @@
 import type Database from "better-sqlite3";
+import type { StreamState } from "../../../core/judging/index.ts";
 import type { LimitSet } from "../../../core/limit-set/index.ts";
 import {
   type AxisSpec,
@@ -56,6 +57,10 @@ export function sqliteReader(file: string): StoreReader {
         "SELECT json FROM limit_set WHERE stream = ? AND version <= ? ORDER BY version DESC LIMIT 1",
       )
       .pluck(),
+    limitSets: db
+      .prepare<[number], string>("SELECT json FROM limit_set WHERE stream = ? ORDER BY version DESC")
+      .pluck(),
+    state: db.prepare<[string], string | null>("SELECT state FROM stream WHERE id = ?").pluck(),
     totals: db.prepare<Named, { stream: string; reason: string; count: number }>(
       "SELECT stream, reason, count FROM refusal_total WHERE @stream IS NULL OR stream = @stream ORDER BY stream, reason",
     ),
@@ -148,6 +153,11 @@ export function sqliteReader(file: string): StoreReader {
     limitSet(stream, version = Number.MAX_SAFE_INTEGER) {
       const json = sql.limitSet.get(streamKey(stream), version);
       return json ? (JSON.parse(json) as LimitSet) : undefined;
+    },
+    limitSets: (stream) => sql.limitSets.all(streamKey(stream)).map((json) => JSON.parse(json) as LimitSet),
+    proposals(stream) {
+      const json = sql.state.get(stream);
+      return json ? ((JSON.parse(json) as Partial<StreamState>).proposals?.waiting ?? []) : [];
     },
     modelText: (id) => sql.modelText.get(id),
     extent: (stream) => sql.extent.get(streamKey(stream))!,

@@ -83,6 +83,9 @@ export function sqliteWriter(file: string): StoreWriter {
     return model;
   }
 
+  function addLimitSet(set: LimitSet): void {
+    sql.addLimitSet.run(streamKey(set.stream), set.version, JSON.stringify(set));
+  }
   function addReading(reading: NewReading): void {
     const { judged, receivedAt, late, history, gapFrom, quality, context } = reading;
     const model = modelOf(judged.model);
@@ -143,6 +146,7 @@ export function sqliteWriter(file: string): StoreWriter {
       const { id, stream, start, end } = excursion;
       sql.excursion.run(id, stream, start, end ?? Number.MAX_SAFE_INTEGER, JSON.stringify(excursion));
     }
+    for (const set of changes.limitSets ?? []) addLimitSet(set);
     for (const [stream, state] of changes.states) sql.setState.run(JSON.stringify(state), streamKey(stream));
     return hash;
   });
@@ -172,7 +176,7 @@ export function sqliteWriter(file: string): StoreWriter {
       const json = sql.limitSet.get(streamKey(stream)) as string | undefined;
       return json ? (JSON.parse(json) as LimitSet) : undefined;
     },
-    addLimitSet: (set) => void sql.addLimitSet.run(streamKey(set.stream), set.version, JSON.stringify(set)),
+    addLimitSet,
     addModel: ({ id, name, properties, text }) => void sql.addModel.run(id, name, JSON.stringify(properties), text),
     modelText: (id) => sql.modelText.get(id),
     firstLive: (stream) => sql.firstLive.get(streamKey(stream)),
