@@ -263,6 +263,7 @@ function drawRibbon(pen: Pen, picture: LanePicture, trend: HeldTrend, first: num
   drawUnusable(pen, trend, spanOf, first, last);
 }
 
+/** One strip as steps: few long paths are far cheaper to paint than a rectangle for each column. */
 function drawStrip(
   pen: Pen,
   columns: HeldTrend["t2"],
@@ -275,29 +276,41 @@ function drawStrip(
   const { ctx, colours, ratio } = pen;
   const limit = place(1);
   const floor = place(0);
+  const fill = new Path2D();
+  const edge = new Path2D();
+  const over = new Path2D();
+  let end = Number.NaN; // where the step before ends; NaN before the first and after a gap
   for (let index = first; index <= last; index++) {
     const mean = columns.mean[index];
     const max = columns.max[index];
     if (mean === null || max === null) continue;
     const [x, wide] = spanOf(index);
     const top = place(mean);
-    ctx.fillStyle = colours.fill;
-    ctx.fillRect(x, Math.max(limit, top), wide, floor - Math.max(limit, top));
-    if (mean <= 1 && top < floor) {
-      // The edge carries the reading of the strip: it stands out from the ground where the fill alone would not.
-      ctx.fillStyle = colours.edge;
-      ctx.fillRect(x, top, wide, ratio);
+    const step = Math.max(limit, top);
+    const joins = Math.abs(x - end) < 1.5 * ratio;
+    if (!joins) {
+      if (!Number.isNaN(end)) fill.lineTo(end, floor);
+      fill.moveTo(x, floor);
+      edge.moveTo(x, step);
     }
-    if (mean > 1) {
-      ctx.fillStyle = beyond;
-      ctx.fillRect(x, top, wide, limit - top);
-    }
-    if (max > 1 && max > mean) {
-      // One reading beyond the limit among many: a hairline, as high as it went.
-      ctx.fillStyle = beyond;
-      ctx.fillRect(x + wide / 2 - ratio * 0.6, place(max), 1.2 * ratio, limit - place(max));
-    }
+    fill.lineTo(x, step);
+    fill.lineTo(x + wide, step);
+    edge.lineTo(x, step);
+    edge.lineTo(x + wide, step);
+    end = x + wide;
+    if (mean > 1) over.rect(x, top, wide, limit - top);
+    // One reading beyond the limit among many: a hairline, as high as it went.
+    if (max > 1 && max > mean) over.rect(x + wide / 2 - ratio * 0.6, place(max), 1.2 * ratio, limit - place(max));
   }
+  if (!Number.isNaN(end)) fill.lineTo(end, floor);
+  ctx.fillStyle = colours.fill;
+  ctx.fill(fill);
+  // The edge carries the reading of the strip: it stands out from the ground where the fill alone would not.
+  ctx.strokeStyle = colours.edge;
+  ctx.lineWidth = ratio;
+  ctx.stroke(edge);
+  ctx.fillStyle = beyond;
+  ctx.fill(over);
 }
 
 /** Where an entry's column begins and how wide it is, canvas px. A reading speaks until the next one; an interval has its own width. */

@@ -45,6 +45,14 @@ export class RangeBar extends LitElement {
       .group button {
         padding: 2px 10px;
       }
+      .here {
+        border: 1px solid var(--ink);
+        border-radius: 4px;
+        background: var(--ink);
+        color: var(--lane);
+        min-height: 28px;
+        padding: 2px 10px;
+      }
       .state {
         margin-left: auto;
         display: flex;
@@ -82,7 +90,7 @@ export class RangeBar extends LitElement {
               ${each.name}
             </button>`,
         )}
-        ${preset ? nothing : html`<button aria-pressed="true" disabled>${duration(spanMs)}</button>`}
+        ${preset ? nothing : html`<span class="here">${duration(spanMs)}</span>`}
       </div>
       <div class="group" role="group" aria-label="Move through time">
         <button @click=${wish({ kind: "pan", share: -0.5 })} title="Half a screen earlier">◂ earlier</button>
@@ -118,7 +126,7 @@ export class RangeBar extends LitElement {
       <span class="unseen" role="status">The trends are stopped, not live.</span>
       <span
         ><b>Trends are not live:</b> stopped at <span class="whole">${time.exact(to, now)}</span>,
-        <span class="whole">${duration(now - to)}</span> before now. Numbers and alarms are still the present ones.</span
+        <span class="whole">${duration(now - to)}</span> before now. ${this.linkUp ? "Numbers and alarms are still the present ones." : "The link is lost, too: nothing here is current."}</span
       >
       <button @click=${wish({ kind: "live" })}>Back to live</button>
     </div>`;

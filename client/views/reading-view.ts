@@ -112,6 +112,10 @@ export class ReadingView extends LitElement {
         gap: 8px;
         font-size: 20px;
       }
+      .verdict small {
+        font-weight: 400;
+        font-size: 15px;
+      }
       .says {
         margin-top: 6px;
         font-size: 16px;
@@ -317,7 +321,7 @@ export class ReadingView extends LitElement {
           ${
             model
               ? html`Model ${model.name}, ${model.components} components; limit set ${judged.limitSet}; leverage
-              ${judged.leverage === null ? "—" : judged.leverage.toPrecision(2)}`
+              ${judged.leverage === null ? "—" : figure(judged.leverage, 2)}`
               : "No model scored this reading."
           }
         </caption>

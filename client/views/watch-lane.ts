@@ -13,6 +13,10 @@ import { baseStyle } from "../parts/base-style.ts";
 import type { PlantTime } from "../words/plant-time.ts";
 import { counted, named } from "../words/quantity.ts";
 
+/** Lanes that come into sight when the page is scrolled by this much are kept ready. */
+const nearPx = 300;
+const farEveryMs = 1000;
+
 /** One stream: the number, the trend with its ribbon, and what is open at its end. */
 export class WatchLane extends LitElement {
   static override properties = {
@@ -44,6 +48,9 @@ export class WatchLane extends LitElement {
     () => this.stream,
   );
   #sentence = { made: 0, text: "" };
+  #near = true;
+  #renderedAt = 0;
+  #stopWatching: (() => void) | undefined;
 
   constructor() {
     super();
@@ -163,7 +170,31 @@ export class WatchLane extends LitElement {
     `,
   ];
 
+  override connectedCallback(): void {
+    super.connectedCallback();
+    const seen = new IntersectionObserver(
+      ([entry]) => {
+        this.#near = entry.isIntersecting;
+        if (this.#near) this.requestUpdate();
+      },
+      { rootMargin: `${nearPx}px` },
+    );
+    seen.observe(this);
+    this.#stopWatching = () => seen.disconnect();
+  }
+
+  override disconnectedCallback(): void {
+    super.disconnectedCallback();
+    this.#stopWatching?.();
+  }
+
+  /** A lane far off the screen follows once a second, not every move of the pointer. */
+  override shouldUpdate(): boolean {
+    return this.#near || !this.hasUpdated || performance.now() - this.#renderedAt > farEveryMs;
+  }
+
   override render() {
+    this.#renderedAt = performance.now();
     const { stream, feed, now, time } = this;
     const state = feed.of(stream.id);
     const property = stream.properties.find(({ name }) => name === this.chosen) ?? stream.properties[0];
@@ -197,7 +228,7 @@ export class WatchLane extends LitElement {
   #chart(property: PlantProperty, old: boolean) {
     const { from, to } = edges(this.window, this.now);
     const width = this.clientWidth > 1100 ? this.clientWidth - 640 : Math.max(240, this.clientWidth - 360);
-    this.#trend.want({ from, to, points: Math.round(Math.min(1200, width)) });
+    if (this.#near) this.#trend.want({ from, to, points: Math.round(Math.min(1200, width)) });
     const { trend, version, error, loading } = this.#trend;
     const picture: LanePicture = {
       trend,

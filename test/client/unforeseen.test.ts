@@ -82,7 +82,12 @@ test("the Reading view names the wavelengths of the band", async () => {
 });
 
 test("a screen reader is told of the alarm without asking, once", async () => {
-  const spoken = seen.page.getByRole("alert").filter({ hasText: "alarm:" });
+  const spoken = await wordsOf(seen.page.getByRole("alert").filter({ hasText: "alarm:" }));
+  expect(spoken).toContain("high alarm: Recycled blend: Unfamiliar spectrum. Take a grab sample");
+  expect(spoken.split("Unfamiliar spectrum")).toHaveLength(2);
+  // The other two streams have sent nothing, and may have raised alarms of their own by now.
+  expect(await seen.page.title()).toMatch(/^\([123]\) Watch · Brindle Quay$/);
+});
   expect(await wordsOf(spoken)).toMatch(/^high alarm: Recycled blend: Unfamiliar spectrum\. Take a grab sample/);
   expect(await seen.page.title()).toBe("(1) Watch · Brindle Quay");
 });
