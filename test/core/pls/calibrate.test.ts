@@ -19,6 +19,7 @@ import {
 } from "../../../core/pls/index.ts";
 import { parseSteps } from "../../../core/spectrum/index.ts";
 import { expectAgreement } from "../../reference/agreement.ts";
+import { runs } from "../runs.ts";
 import { ordinaryTable, tableOf, wildTable } from "./any-table.ts";
 
 function fitted(set: CalibrationSet, options: Partial<CalibrationOptions> = {}): Model {
@@ -66,7 +67,7 @@ describe("for any table that can be calibrated", () => {
           expect(row).toEqual(before);
         }
       }),
-      { numRuns: 80 },
+      { numRuns: runs(80) },
     );
   });
 
@@ -94,7 +95,7 @@ describe("for any table that can be calibrated", () => {
           );
         }
       }),
-      { numRuns: 60 },
+      { numRuns: runs(60) },
     );
   });
 
@@ -115,7 +116,7 @@ describe("for any table that can be calibrated", () => {
           expectSameScores(fitted(set, options), set, fitted(shuffled, options), shuffled);
         },
       ),
-      { numRuns: 50 },
+      { numRuns: runs(50) },
     );
   });
 
@@ -134,7 +135,7 @@ describe("for any table that can be calibrated", () => {
         const options = { steps: parseSteps("snv; center") };
         expectSameScores(fitted(set, options), set, fitted(disturbed, options), disturbed);
       }),
-      { numRuns: 50 },
+      { numRuns: runs(50) },
     );
   });
 
@@ -180,7 +181,7 @@ describe("for any table that can be calibrated", () => {
           "Q",
         );
       }),
-      { numRuns: 50 },
+      { numRuns: runs(50) },
     );
   });
 
@@ -194,7 +195,7 @@ describe("for any table that can be calibrated", () => {
         for (const w of model.weights!) expect(dot(w, w)).toBeCloseTo(1, 10);
         expect(parseModel(JSON.stringify(model), "x")).toEqual(model);
       }),
-      { numRuns: 40 },
+      { numRuns: runs(40) },
     );
   });
 });
@@ -261,7 +262,7 @@ describe("for any table at all", () => {
           expectFinite([...values, t2, q, leverage, nearest], "score");
         }
       }),
-      { numRuns: 1500 },
+      { numRuns: runs(1500) },
     );
     expect(models, "tables that could be calibrated").toBeGreaterThan(100);
   });

@@ -11,6 +11,7 @@ import {
   StepError,
 } from "../../../core/spectrum/index.ts";
 import { expectAgreement } from "../../reference/agreement.ts";
+import { runs } from "../runs.ts";
 import { anySteps } from "./any-steps.ts";
 
 const axis = axisFromSpec({ unit: "nm", start: 1000, step: 10, count: 60 });
@@ -59,7 +60,7 @@ describe("steps folded together", () => {
         expectAgreement(folded, one, 1e-10, steps.map(({ step }) => step).join("; "));
         expect(Array.from(before)).toEqual(values);
       }),
-      { numRuns: 400 },
+      { numRuns: runs(400) },
     );
   });
 
@@ -91,7 +92,7 @@ describe("what a step makes itself independent of", () => {
         for (const step of ["snv", "msc"])
           expectAgreement(stepped(step, shifted(values, add, times)), stepped(step, values), 1e-9, step);
       }),
-      { numRuns: 60 },
+      { numRuns: runs(60) },
     );
   });
 
@@ -108,7 +109,7 @@ describe("what a step makes itself independent of", () => {
         const tilted = values.map((value, j) => value + add + times * j);
         expectAgreement(stepped("detrend 1", tilted), stepped("detrend 1", values), 1e-9, "detrend", 1);
       }),
-      { numRuns: 60 },
+      { numRuns: runs(60) },
     );
   });
 
