@@ -1,5 +1,12 @@
 import { describe, expect, test } from "vitest";
-import { canonicalJson, type Model, ModelFileError, modelId, parseModel } from "../../../core/model/index.ts";
+import {
+  canonicalJson,
+  checkModel,
+  type Model,
+  ModelFileError,
+  modelId,
+  parseModel,
+} from "../../../core/model/index.ts";
 import { smallModel } from "./small-model.ts";
 
 const read = (model: unknown) => parseModel(JSON.stringify(model), "bq.model.json");
@@ -106,6 +113,12 @@ describe("a damaged model file is refused, and the field named", () => {
     const text = JSON.stringify(smallModel()).replace(/"loadings":\[\[[^,]+,/, '"loadings":[[1e999,');
     expect(() => parseModel(text, "x")).toThrow(/loadings\[0\]\[0\]/);
   });
+});
+
+test("a model that a program made, not a file, may hold NaN: it is found", () => {
+  const model = smallModel();
+  model.scores![4][1] = Number.NaN;
+  expect(() => checkModel(model, "x")).toThrow(/^x: scores\[4\]\[1\] is NaN, expected a finite number/);
 });
 
 describe("canonical JSON", () => {

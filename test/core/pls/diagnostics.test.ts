@@ -68,12 +68,16 @@ describe("samples that a person should look at", () => {
     ).toEqual(["odd relation"]);
   });
 
-  test("an unknown band is an odd spectrum, though it widens the limit of Q by moments beyond itself", () => {
+  test.each([
+    ["an unknown band, though it widens the limit of Q by moments beyond itself,", 0.1],
+    ["a faint one too", 0.015],
+  ])("%s is an odd spectrum", (_, height) => {
     const withBand = mixture((i, amounts, row) => {
-      if (i === 5)
-        row.forEach((_, j) => {
-          row[j] += 0.1 * Math.exp(-0.5 * ((j - 70) / 2) ** 2);
+      if (i === 5) {
+        row.forEach((__, j) => {
+          row[j] += height * Math.exp(-0.5 * ((j - 70) / 2) ** 2);
         });
+      }
       return amounts[0];
     });
     expect(kinds(withBand, 5)).toContain("odd spectrum");
