@@ -6,10 +6,12 @@ import type { PanelPicture } from "../charts/panel-picture.ts";
 import "../charts/spectrum-panel.ts";
 import "../charts/place-map.ts";
 import { api } from "../data/api.ts";
+import { readingCsv } from "../data/csv.ts";
 import type { Feed } from "../data/feed.ts";
 import { ticking } from "../data/listening.ts";
 import { Loaded } from "../data/loaded.ts";
 import { nearestSamples } from "../data/nearest-samples.ts";
+import { fileName, saveFile } from "../data/save-file.ts";
 import { centredOn, type TimeWindow } from "../data/time-window.ts";
 import { baseStyle } from "../parts/base-style.ts";
 import { verdictColour } from "../parts/verdict-mark.ts";
@@ -206,6 +208,11 @@ export class ReadingView extends LitElement {
       }
       <span style="margin-left:auto"></span>
       ${step(reading?.previous, "◂ previous")} ${step(reading?.next, "next ▸")}
+      ${
+        reading
+          ? html`<button @click=${() => saveFile(fileName(stream.id, reading.judged.time), readingCsv(reading))}>Save as CSV</button>`
+          : nothing
+      }
       <a class="button" href=${href({ view: "reading", stream: stream.id })} @click=${this.#newest}>newest</a>
       ${at === undefined ? nothing : html`<a class="button" href=${href({ view: "watch", window: around(at, now) })}>Show on Watch</a>`}
     </div>`;

@@ -2,9 +2,11 @@ import { css, html, LitElement, nothing } from "lit";
 import type { Excursion, PlantProperty, PlantStream } from "../../core/messages/index.ts";
 import type { LanePicture } from "../charts/lane-drawing.ts";
 import { byUrgency } from "../data/alarm-order.ts";
+import { trendCsv } from "../data/csv.ts";
 import type { Feed } from "../data/feed.ts";
 import { freshness } from "../data/freshness.ts";
 import { Listening } from "../data/listening.ts";
+import { fileName, saveFile } from "../data/save-file.ts";
 import { edges, type TimeWindow } from "../data/time-window.ts";
 import { entryAt, type HeldTrend } from "../data/trend-columns.ts";
 import { TrendLoader } from "../data/trend-loader.ts";
@@ -125,6 +127,9 @@ export class WatchLane extends LitElement {
       mill-lane-chart {
         grid-row: 2;
         grid-column: 1;
+      }
+      .table button {
+        float: right;
       }
       .table {
         max-height: 260px;
@@ -311,7 +316,9 @@ export class WatchLane extends LitElement {
     const { trend } = this.#trend;
     if (!trend) return nothing;
     const sight = this.#sight(trend, property, from, to);
+    const save = () => saveFile(fileName(this.stream.id, from), trendCsv(trend, property, sight));
     return html`<div class="table" tabindex="0" role="region" aria-label="Table of ${this.stream.name}">
+      <button @click=${save}>Save all of it as CSV</button>
       <table>
         <caption>
           ${trendSentence(sight)}

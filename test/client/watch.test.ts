@@ -1,3 +1,4 @@
+import { readFileSync } from "node:fs";
 import type { Browser, Page } from "playwright-core";
 import { afterAll, beforeAll, describe, expect, test } from "vitest";
 import type { Trend } from "../../core/messages/index.ts";
@@ -158,6 +159,20 @@ describe("Reading", () => {
     await eventually("the first again", async () => (await wordsOf(stamp)) === first);
     await seen.page.getByRole("link", { name: "Show on Watch" }).click();
     await seen.page.getByText("Trends are not live").waitFor();
+  });
+
+  test("is handed over as a CSV file with a row for every channel", async () => {
+    await seen.page.goto(`${chain.url}/reading/bq-305`);
+    const [file] = await Promise.all([
+      seen.page.waitForEvent("download"),
+      seen.page.getByRole("button", { name: "Save as CSV" }).click(),
+    ]);
+    expect(file.suggestedFilename()).toMatch(/^bq-305 \d{4}-\d\d-\d\dT\d\d-\d\d-\d\dZ\.csv$/);
+    const lines = readFileSync(await file.path(), "utf8")
+      .trimEnd()
+      .split("\r\n");
+    expect(lines).toHaveLength(1 + 301);
+    expect(lines[1]).toMatch(/^1000,0\.\d+/);
   });
 
   test("shows T² and Q beside their limits, and the place among the calibration samples", async () => {
