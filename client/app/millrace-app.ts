@@ -21,6 +21,7 @@ import "../views/watch-view.ts";
 import "../views/reading-view.ts";
 import "../views/excursions-view.ts";
 import "../views/alarms-view.ts";
+import "../views/limits-view.ts";
 import "../views/plant-view.ts";
 import "../views/sign-in-view.ts";
 
@@ -44,6 +45,8 @@ export class MillraceApp extends LitElement {
   #settle: ReturnType<typeof setTimeout> | undefined;
   #said = new Map<string, string>();
   #wasUp = false;
+  /** cursor of the newest change of limits that the drawn limits know of */
+  #limitsKnown = 0;
   readonly #stop = new AbortController();
 
   constructor() {
@@ -186,9 +189,12 @@ export class MillraceApp extends LitElement {
     if (!(await api.isWelcome())) location.reload();
   }
 
-  /** When the link is back the service may be another one: other limits, another model, other streams. */
+  /** New limits, or a link that is back (the service may be another one: other limits, another model, other streams): the plant is read again. */
   #heard(): void {
     const up = this.#feed?.linkUp ?? false;
+    const changed = this.#feed?.events.findLast(({ kind }) => kind === "limits in force")?.cursor ?? 0;
+    if (changed > this.#limitsKnown && this.plant && this.#wasUp) void this.#readPlantAgain(this.plant);
+    this.#limitsKnown = Math.max(this.#limitsKnown, changed);
     if (up && !this.#wasUp && this.plant) void this.#readPlantAgain(this.plant);
     if (!up && this.#wasUp) void this.#stayOnlyIfWelcome();
     this.#wasUp = up;
@@ -283,6 +289,8 @@ export class MillraceApp extends LitElement {
         return html`<mill-reading-view .plant=${plant} .feed=${feed} .time=${time} .route=${route}></mill-reading-view>`;
       case "excursions":
         return html`<mill-excursions-view .plant=${plant} .feed=${feed} .time=${time} .route=${route}></mill-excursions-view>`;
+      case "limits":
+        return html`<mill-limits-view .plant=${plant} .feed=${feed} .time=${time} .route=${route}></mill-limits-view>`;
       case "alarms":
         return html`<mill-alarms-view .plant=${plant} .feed=${feed} .time=${time}></mill-alarms-view>`;
       case "plant":

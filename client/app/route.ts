@@ -6,6 +6,7 @@ export type Route =
   | { view: "watch"; window: TimeWindow; stream?: string }
   | { view: "reading"; stream?: string; at?: number }
   | { view: "excursions"; stream?: string }
+  | { view: "limits"; stream?: string }
   | { view: "alarms" }
   | { view: "plant" };
 export type ViewName = Route["view"];
@@ -38,6 +39,7 @@ export function parseRoute(path: string, search: string): Route {
     case "reading":
       return { view, stream, at: timeOf(query.get("at")) };
     case "excursions":
+    case "limits":
       return { view, stream };
     case "alarms":
     case "plant":

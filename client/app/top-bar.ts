@@ -17,6 +17,7 @@ const views: { view: ViewName; name: string }[] = [
   { view: "reading", name: "Reading" },
   { view: "excursions", name: "Excursions" },
   { view: "alarms", name: "Alarms" },
+  { view: "limits", name: "Limits" },
   { view: "plant", name: "Plant" },
 ];
 

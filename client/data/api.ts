@@ -1,6 +1,9 @@
+import type { LimitSet } from "../../core/limit-set/index.ts";
 import type {
   Excursion,
   ExcursionLabel,
+  LimitChangeOutcome,
+  LimitSets,
   OpenAlarm,
   Plant,
   Problem,
@@ -80,6 +83,20 @@ export const api = {
     ask<unknown>(`${alarmPath(alarm)}/shelve`, asJson(wish)),
   labelExcursion: ({ stream: id, kind, start }: Pick<Excursion, "stream" | "kind" | "start">, label: ExcursionLabel) =>
     ask<unknown>(`${stream(id)}/excursions/${encodeURIComponent(kind)}/${start}/label`, asJson({ label })),
+  limitSets: (id: string, signal?: AbortSignal) => ask<LimitSets>(`${stream(id)}/limit-sets`, { signal }),
+  limitDifferences: (id: string, limitSet: LimitSet) =>
+    ask<Pick<LimitSets["versions"][number], "differences">>(
+      `${stream(id)}/limit-sets/differences`,
+      asJson({ limitSet }),
+    ),
+  changeLimits: (id: string, limitSet: LimitSet, reason: string) =>
+    ask<LimitChangeOutcome>(`${stream(id)}/limit-sets`, asJson({ limitSet, reason })),
+  rollBackLimits: (id: string, version: number, reason: string) =>
+    ask<LimitChangeOutcome>(`${stream(id)}/limit-sets/${version}/roll-back`, asJson({ reason })),
+  approveLimits: (id: string, proposal: number) =>
+    ask<LimitChangeOutcome>(`${stream(id)}/limit-proposals/${proposal}/approve`, { method: "POST" }),
+  withdrawLimits: (id: string, proposal: number, reason: string) =>
+    ask<LimitChangeOutcome>(`${stream(id)}/limit-proposals/${proposal}/withdraw`, asJson({ reason })),
   signIn: (name: string, password: string) => ask<Plant["person"]>("/sign-in", asJson({ name, password })),
   /** is somebody signed in, or nobody needed? A link that was refused does not say why. */
   isWelcome: () =>

@@ -172,7 +172,7 @@ export class PlantView extends LitElement {
               : "no model"
         }
       </td>
-      <td class="number">${stream.limitSet}</td>
+      <td class="number"><a href=${href({ view: "limits", stream: stream.id })}>${stream.limitSet}</a></td>
       <td class="number">${grouped(refused)}</td>
     </tr>`;
   }

@@ -70,7 +70,7 @@ describe("signing in", () => {
     expect(answer.headers.get("set-cookie")).toMatch(/^millrace=[\w-]{43}; .*HttpOnly; SameSite=Strict$/);
     const cookie = answer.headers.get("set-cookie")!.split(";")[0];
     const plant = (await (await ask("/plant", { cookie })).json()) as { person: unknown };
-    expect(plant.person).toEqual({ name: "O. Quill", role: "operator" });
+    expect(plant.person).toEqual({ name: "O. Quill", role: "operator", signedIn: true });
   });
 
   test("signing out ends the session and its live link", async () => {
