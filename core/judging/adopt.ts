@@ -1,13 +1,15 @@
 import { type Activation, type AlarmState, waits } from "../alarms/index.ts";
-import { advanceAll } from "./advance-alarm.ts";
+import { advanceAlarm, advanceAll } from "./advance-alarm.ts";
 import { removedNote } from "./alarms.ts";
 import type { StreamRules } from "./judge.ts";
 import type { Note } from "./notes.ts";
+import { suppressionEvent } from "./process-state.ts";
 import { freshState, type StreamState } from "./state.ts";
 
 /**
  * Takes up a stream's state at a start, or under a new limit set: alarms and detectors that the limit set does not have any more end, with
- * a note; what ran out meanwhile (a shelf, say) ends now. Pure.
+ * a note; what ran out meanwhile (a shelf, say) ends now; and what the limit set suppresses in the present state of the process is as it says.
+ * Pure.
  *
  * @param at wall clock, epoch ms
  */
@@ -26,8 +28,23 @@ export function adopt(kept: StreamState, at: number, rules: StreamRules): [Strea
     }),
   );
   const adopted = { ...state, alarms, detectors: keep(state.detectors), drifts: keep(state.drifts) };
-  const [next, more] = advanceAll(adopted, { kind: "wall clock", at }, rules);
-  return [next, [...notes, ...more]];
+  const [timed, timeNotes] = advanceAll(adopted, { kind: "wall clock", at }, rules);
+  const [next, processNotes] = suppressedAsRuled(timed, at, rules);
+  return [next, [...notes, ...timeNotes, ...processNotes]];
+}
+
+function suppressedAsRuled(state: StreamState, at: number, rules: StreamRules): [StreamState, Note[]] {
+  const { process } = state;
+  if (!process) return [state, []];
+  let next = state;
+  const notes: Note[] = [];
+  for (const rule of rules.limitSet.alarms) {
+    const event = suppressionEvent(rule, process);
+    const step = advanceAlarm(next, rule, event.kind === "suppress" ? { ...event, at } : event, rules);
+    next = step.state;
+    notes.push(...step.notes);
+  }
+  return [next, notes];
 }
 
 /** What an older version of this program kept has less in it. */

@@ -38,16 +38,15 @@ export function hearProcessState(
   let next: StreamState = { ...state, process: heard };
   const notes: Note[] = same ? [] : [changeNote(known, heard, rules.stream)];
   for (const rule of rules.limitSet.alarms) {
-    const event = suppressionEvent(rule, heard);
-    if (!event) continue;
-    const step = advanceAlarm(next, rule, event, rules);
+    const step = advanceAlarm(next, rule, suppressionEvent(rule, heard), rules);
     next = step.state;
     notes.push(...step.notes);
   }
   return [next, { kind: "heard", notes }];
 }
 
-function suppressionEvent(rule: AlarmRule, { state, since }: ProcessState): AlarmEvent | undefined {
+/** What a state of the process means to an alarm. */
+export function suppressionEvent(rule: AlarmRule, { state, since }: ProcessState): AlarmEvent {
   const { suppressedIn = [], suppressedForMinutesAfter = 0 } = rule;
   if (suppressedIn.includes(state)) return { kind: "suppress", at: since, state };
   return { kind: "leave suppressing state", at: since, until: since + suppressedForMinutesAfter * 60_000 };

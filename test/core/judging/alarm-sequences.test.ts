@@ -40,10 +40,14 @@ const alarms = [
   alarm("share", { ...one, watches: { kind: "unusable share", share: 0.5, among: 4 } }),
   alarm("recorded", { ...one, priority: "record only", ...cleaning }),
 ];
-/** The first as they are; then without one of them, and with one that asks nobody any more. */
+/** The first as they are; then without one of them and another suppressed in other states; and with one that asks nobody any more. */
 const ruleSets: StreamRules[] = [
   smallRules(alarms),
-  smallRules(alarms.filter(({ key }) => key !== "latching")),
+  smallRules(
+    alarms
+      .filter(({ key }) => key !== "latching")
+      .map((rule) => (rule.key === "unfamiliar" ? { ...rule, suppressedIn: ["stopped"] } : rule)),
+  ),
   smallRules(alarms.map((rule) => (rule.key === "range" ? { ...rule, priority: "record only" } : rule))),
 ];
 const keys = [...alarms.map(({ key }) => key), "no-such-alarm"];
@@ -274,6 +278,9 @@ function check({ state, rules, told }: Plant): void {
     hold(knows.active === active, `${key}: the record does not say active ${active}`);
     // Not lost: an alarm that holds and is not set aside has called somebody, and is in the list.
     hold(!active || isSetAside(alarm) || knows.called, `${key} holds, and nobody was called`);
+    const inState = state.process !== null && (rule.suppressedIn ?? []).includes(state.process.state);
+    const { suppressed } = alarm ?? {};
+    hold(inState === (suppressed !== undefined && suppressed.until === undefined), `${key}: suppressed or not?`);
     if (priority === "record only") continue;
     hold(open.has(key) === (alarm !== undefined && !isSetAside(alarm)), `${key}: open or not?`);
     hold(aside.has(key) === isSetAside(alarm), `${key}: set aside or not?`);
