@@ -1,10 +1,11 @@
 import type { Axis } from "./axis.ts";
 import { axisAfterSteps } from "./fit-steps.ts";
+import { filter } from "./fold/filter.ts";
+import { levelAtLeast, levelOver, scatter, shrinkToArea, shrinkToLength, standardise } from "./fold/level-and-size.ts";
+import type { State, Walk } from "./fold/walk.ts";
 import type { Apply, Fitted, FittedStep } from "./step.ts";
 import { absorbance } from "./steps/absorbance.ts";
 import { detrend } from "./steps/detrend.ts";
-import { regressor } from "./steps/msc.ts";
-import { checkSavitzkyGolay, savitzkyGolayWeights } from "./steps/savitzky-golay.ts";
 import { channelsOf } from "./steps/select.ts";
 
 /**
@@ -35,14 +36,6 @@ export function compileSteps(steps: readonly FittedStep[], axis: Axis): Apply {
     last(state, out);
   };
 }
-
-/** The spectrum under way: its values are (x − alpha) · beta. */
-interface State {
-  x: Float64Array;
-  alpha: number;
-  beta: number;
-}
-type Walk = (state: State) => void;
 
 /** What compiling has come to: the walks so far, and center and scale that wait for the next walk that writes: (v − m) k. */
 interface Fold {
@@ -138,54 +131,6 @@ function finish({ channels, axis }: Fold): (state: State, out: Float64Array) => 
   };
 }
 
-/** SNV of (x − α) β is SNV of x, up to the sign of β. */
-const standardise: Walk = (state) => {
-  const { x } = state;
-  const p = x.length;
-  const mean = sum(x) / p;
-  const deviation = Math.sqrt(squaresAbout(x, mean) / (p - 1));
-  state.beta = (state.beta < 0 ? -1 : 1) / deviation;
-  state.alpha = mean;
-};
-
-function scatter({ reference }: Fitted<"msc">): Walk {
-  const { centred, mean, squares } = regressor(reference);
-  return (state) => {
-    const { x } = state;
-    let product = 0;
-    for (let j = 0; j < x.length; j++) product += x[j] * centred[j];
-    const slope = product / squares;
-    state.alpha = sum(x) / x.length - slope * mean;
-    state.beta = 1 / slope;
-  };
-}
-
-function levelOver(quiet: Int32Array): Walk {
-  return (state) => {
-    let level = 0;
-    for (let k = 0; k < quiet.length; k++) level += state.x[quiet[k]];
-    state.alpha = level / quiet.length;
-  };
-}
-
-const levelAtLeast: Walk = (state) => {
-  const { x, beta } = state;
-  let least = x[0];
-  for (let j = 1; j < x.length; j++) if (!(x[j] * beta >= least * beta)) least = x[j];
-  state.alpha = least;
-};
-
-const shrinkToArea: Walk = (state) => {
-  const { x, alpha } = state;
-  let area = 0;
-  for (let j = 0; j < x.length; j++) area += Math.abs(x[j] - alpha);
-  state.beta = (state.beta < 0 ? -1 : 1) / area;
-};
-
-const shrinkToLength: Walk = (state) => {
-  state.beta = (state.beta < 0 ? -1 : 1) / Math.sqrt(squaresAbout(state.x, state.alpha));
-};
-
 function flatten(step: Fitted<"detrend">, axis: Axis): Walk {
   const apply = detrend(step, axis);
   const buffer = new Float64Array(axis.points.length);
@@ -203,161 +148,4 @@ function takeLogarithm(axis: Axis): Walk {
     apply(state.x, buffer);
     state.x = buffer;
   };
-}
-
-/**
- * Savitzky–Golay with half the multiplications inside: the weights are symmetric about the middle (even derivatives) or antisymmetric
- * (odd ones), so the two points at equal distance are taken together.
- */
-function filter(step: Fitted<"savitzky-golay">, axis: Axis): Walk {
-  const spacing = checkSavitzkyGolay(step, axis);
-  const { window, derivative } = step;
-  const weights = savitzkyGolayWeights(window, step.order, derivative, spacing);
-  const p = axis.points.length;
-  const half = (window - 1) / 2;
-  const middle = weights[half];
-  const right = Float64Array.from({ length: half }, (_, k) => middle[half + 1 + k]);
-  const centre = derivative % 2 === 0 ? middle[half] : 0;
-  const buffer = new Float64Array(p);
-  const ends = endPoints(p, half);
-  const inside = derivative % 2 === 0 ? filterEven : filterOdd;
-  return (state) => {
-    const { x } = state;
-    inside(x, right, centre, buffer);
-    for (let i = 0; i < ends.length; i++) {
-      const j = ends[i];
-      const first = j < half ? 0 : p - window;
-      const row = weights[j - first];
-      let total = 0;
-      for (let k = 0; k < window; k++) total += row[k] * x[first + k];
-      buffer[j] = total;
-    }
-    state.x = buffer;
-    if (derivative > 0) state.alpha = 0;
-  };
-}
-
-// Four points at a time below: neighbours share all but one of the values that a weight falls on, so each weight costs three reads for the
-// four, and their sums do not wait for each other. Twice as fast as point by point, measured by test/bench/score.ts.
-
-function filterOdd(x: Float64Array, right: Float64Array, _centre: number, out: Float64Array): void {
-  const half = right.length;
-  const end = x.length - half;
-  let j = half;
-  for (; j + 3 < end; j += 4) {
-    let a = 0;
-    let b = 0;
-    let c = 0;
-    let d = 0;
-    let above0 = x[j + 1];
-    let above1 = x[j + 2];
-    let above2 = x[j + 3];
-    let below1 = x[j];
-    let below2 = x[j + 1];
-    let below3 = x[j + 2];
-    for (let k = 0; k < half; k++) {
-      const weight = right[k];
-      const above3 = x[j + 4 + k];
-      const below0 = x[j - 1 - k];
-      a += weight * (above0 - below0);
-      b += weight * (above1 - below1);
-      c += weight * (above2 - below2);
-      d += weight * (above3 - below3);
-      above0 = above1;
-      above1 = above2;
-      above2 = above3;
-      below3 = below2;
-      below2 = below1;
-      below1 = below0;
-    }
-    out[j] = a;
-    out[j + 1] = b;
-    out[j + 2] = c;
-    out[j + 3] = d;
-  }
-  for (; j < end; j++) {
-    let total = 0;
-    for (let k = 0; k < half; k++) total += right[k] * (x[j + k + 1] - x[j - k - 1]);
-    out[j] = total;
-  }
-}
-
-function filterEven(x: Float64Array, right: Float64Array, centre: number, out: Float64Array): void {
-  const half = right.length;
-  const end = x.length - half;
-  let j = half;
-  for (; j + 3 < end; j += 4) {
-    let a = centre * x[j];
-    let b = centre * x[j + 1];
-    let c = centre * x[j + 2];
-    let d = centre * x[j + 3];
-    let above0 = x[j + 1];
-    let above1 = x[j + 2];
-    let above2 = x[j + 3];
-    let below1 = x[j];
-    let below2 = x[j + 1];
-    let below3 = x[j + 2];
-    for (let k = 0; k < half; k++) {
-      const weight = right[k];
-      const above3 = x[j + 4 + k];
-      const below0 = x[j - 1 - k];
-      a += weight * (above0 + below0);
-      b += weight * (above1 + below1);
-      c += weight * (above2 + below2);
-      d += weight * (above3 + below3);
-      above0 = above1;
-      above1 = above2;
-      above2 = above3;
-      below3 = below2;
-      below2 = below1;
-      below1 = below0;
-    }
-    out[j] = a;
-    out[j + 1] = b;
-    out[j + 2] = c;
-    out[j + 3] = d;
-  }
-  for (; j < end; j++) {
-    let total = centre * x[j];
-    for (let k = 0; k < half; k++) total += right[k] * (x[j + k + 1] + x[j - k - 1]);
-    out[j] = total;
-  }
-}
-
-function endPoints(p: number, half: number): Int32Array {
-  const ends: number[] = [];
-  for (let j = 0; j < p; j++) if (j < half || j >= p - half) ends.push(j);
-  return Int32Array.from(ends);
-}
-
-function sum(x: Float64Array): number {
-  let a = 0;
-  let b = 0;
-  let c = 0;
-  let d = 0;
-  let j = 0;
-  for (; j + 3 < x.length; j += 4) {
-    a += x[j];
-    b += x[j + 1];
-    c += x[j + 2];
-    d += x[j + 3];
-  }
-  for (; j < x.length; j++) a += x[j];
-  return a + b + (c + d);
-}
-
-function squaresAbout(x: Float64Array, centre: number): number {
-  let a = 0;
-  let b = 0;
-  let c = 0;
-  let d = 0;
-  let j = 0;
-  for (; j + 3 < x.length; j += 4) {
-    a += (x[j] - centre) * (x[j] - centre);
-    b += (x[j + 1] - centre) * (x[j + 1] - centre);
-    c += (x[j + 2] - centre) * (x[j + 2] - centre);
-    d += (x[j + 3] - centre) * (x[j + 3] - centre);
-  }
-  for (; j < x.length; j++) a += (x[j] - centre) * (x[j] - centre);
-  return a + b + (c + d);
 }
