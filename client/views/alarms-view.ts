@@ -64,6 +64,26 @@ export class AlarmsView extends LitElement {
       td.words {
         min-width: 28ch;
       }
+      @media (max-width: 700px) {
+        /* on a narrow screen an entry is a paragraph, so that its words are in sight */
+        .record table,
+        .record tbody,
+        .record tr {
+          display: block;
+        }
+        .record thead {
+          display: none;
+        }
+        .record tr {
+          border-bottom: 1px solid var(--rule);
+          padding: 6px 0;
+        }
+        .record td {
+          display: inline;
+          border: 0;
+          padding: 0 8px 0 0;
+        }
+      }
       .old td {
         color: var(--quiet);
       }

@@ -50,7 +50,9 @@ export function readingPanels(reading: ReadingView): PanelPicture[] {
       bars: { values: scored(explanation.residual), colour: "quiet", label: "residual" },
     },
     {
-      title: "What makes Q (up: more absorption than the model explains; down: less)",
+      title: explanation.slopes
+        ? "What makes Q (after a derivative: up where the spectrum climbs more than the model explains)"
+        : "What makes Q (up: more absorption than the model explains; down: less)",
       axis: channels,
       unit,
       lines: [],

@@ -391,7 +391,7 @@ export class ReadingView extends LitElement {
                   .slice(0, listedRegions)
                   .map(
                     (region) =>
-                      html`<div><span class="whole">${regionName(region)}</span>: ${percent(region.share)}${signed ? (region.sign > 0 ? ", more than modelled" : ", less than modelled") : ""}</div>`,
+                      html`<div><span class="whole">${regionName(region)}</span>: ${percent(region.share)}${signed && !explanation.slopes ? (region.sign > 0 ? ", more than modelled" : ", less than modelled") : ""}</div>`,
                   )
           }
         </td>

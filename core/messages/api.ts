@@ -134,6 +134,8 @@ export const ReadingViewSchema = Type.Object({
       q: numbers,
       t2Regions: Type.Array(RegionSchema),
       qRegions: Type.Array(RegionSchema),
+      /** the model's steps take a derivative: a residual tells of a slope then, not of more or less absorption */
+      slopes: Type.Boolean(),
       /** the sentence in words */
       says: Type.String(),
       scores: numbers,

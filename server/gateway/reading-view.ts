@@ -27,6 +27,7 @@ export class ReadingExplainer {
     const compiled = judged.model === null ? undefined : this.model(judged.model);
     const spectrum = compiled && valuesOnAxis(stored, compiled);
     const explained = spectrum && !judged.verdict.includes("unusable") ? explain(spectrum, compiled) : undefined;
+    const reasons = explained && explainedOf(explained, compiled!);
     const limits = limitsOf(limitSet);
     return {
       judged,
@@ -39,7 +40,7 @@ export class ReadingExplainer {
       spectrum: shownValues(spectrum ?? stored.values),
       calibration: compiled?.model.band ?? null,
       ...(explained && {
-        explanation: { ...explained, says: readingWords(judged, explainedOf(explained, compiled!)) },
+        explanation: { ...explained, slopes: reasons!.slopes, says: readingWords(judged, reasons!) },
       }),
       ...samplesOf(compiled, limits),
     };
