@@ -176,7 +176,7 @@ export class AlarmsView extends LitElement {
                 </tr>
               </thead>
               <tbody>
-                ${value.events.map((event) => this.#event(event, now))}
+                ${byTime(value.events).map((event) => this.#event(event, now))}
               </tbody>
             </table>
           </div>`
@@ -202,4 +202,9 @@ export class AlarmsView extends LitElement {
     this.#recent.refresh();
   }
 }
+/** The record is kept in the order in which things became known; recorded history becomes known late. People read by time. A copy. */
+function byTime(events: readonly RecordedEvent[]): RecordedEvent[] {
+  return [...events].sort((a, b) => b.at - a.at || b.cursor - a.cursor);
+}
+
 customElements.define("mill-alarms-view", AlarmsView);
