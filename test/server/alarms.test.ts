@@ -39,10 +39,12 @@ const say = (state: string, more: object = {}) =>
 const alarms = () => chain.get<Static<typeof AlarmsSchema>>("/alarms");
 const open = async (key: string) => (await alarms()).alarms.find((alarm) => alarm.key === key);
 const aside = async (key: string) => (await alarms()).setAside.find((alarm) => alarm.key === key);
-const kinds = async () =>
-  (await chain.get<{ events: RecordedEvent[] }>("/events?stream=bq-305&limit=1000")).events
-    .map(({ kind }) => kind)
-    .reverse();
+const recorded = async () =>
+  (await chain.get<{ events: RecordedEvent[] }>("/events?stream=bq-305&limit=1000")).events.reverse();
+const kinds = async () => (await recorded()).map(({ kind }) => kind);
+// By itself: on a slow machine the stream may be called silent between two steps.
+const kindsOfUnfamiliar = async () =>
+  (await recorded()).filter(({ alarm, setAside }) => (alarm ?? setAside)?.key === "unfamiliar").map(({ kind }) => kind);
 async function post(path: string, body: object): Promise<{ status: number; says?: string; code?: string }> {
   const answer = await fetch(`${chain.url}/api/v1/streams/bq-305${path}`, {
     method: "POST",
@@ -87,7 +89,7 @@ describe("what a person does to an alarm", () => {
     expect(await aside("unfamiliar")).toMatchObject({ state: "shelved", active: true });
     expect((await unfamiliar("unshelve", { note: "done" })).status).toBe(200);
     expect(await open("unfamiliar")).toMatchObject({ state: "unacknowledged" });
-    expect((await kinds()).slice(-2)).toEqual(["alarm unshelved", "alarm annunciated anew"]);
+    expect((await kindsOfUnfamiliar()).slice(-2)).toEqual(["alarm unshelved", "alarm annunciated anew"]);
   });
 
   test("a shelf whose time runs out while the service is down ends at the start", async () => {
@@ -96,7 +98,7 @@ describe("what a person does to an alarm", () => {
     await new Promise((resolve) => setTimeout(resolve, 2000));
     chain = await chain.again();
     expect(await open("unfamiliar")).toMatchObject({ state: "unacknowledged" });
-    expect((await kinds()).slice(-2)).toEqual(["alarm unshelved", "alarm annunciated anew"]);
+    expect((await kindsOfUnfamiliar()).slice(-2)).toEqual(["alarm unshelved", "alarm annunciated anew"]);
   });
 
   test("one shelved for the present activation comes back with the next", async () => {
@@ -163,7 +165,7 @@ describe("what the plant says of the process", () => {
     await eventually("the suppression", () => aside("unfamiliar"));
     expect(await aside("silent")).toBeUndefined(); // an analyzer that has gone silent matters then, too
     await feed(5, { strange: true });
-    await eventually("the record of what came", async () => (await kinds()).at(-1) === "excursion began");
+    await eventually("the condition beneath", async () => (await aside("unfamiliar"))?.active);
     expect(await open("unfamiliar")).toBeUndefined();
     expect(await aside("unfamiliar")).toMatchObject({
       state: "suppressed",
@@ -203,10 +205,12 @@ test("the figures of the alarm system come over what was annunciated here, by th
   const [from, to] = [began - 2 * 60 * minute, Date.now() + minute];
   const performance = await chain.get<Static<typeof PerformanceSchema>>(`/alarms/performance?from=${from}&to=${to}`);
   expect(checker(PerformanceSchema).mismatch(performance)).toBeUndefined();
-  const called = (await kinds()).filter((kind) => /^alarm (raised( again)?|annunciated anew)$/.test(kind)).length;
-  expect(performance.annunciations).toBe(called);
-  expect(called).toBeGreaterThan(3);
-  expect(performance.withheld).toBe((await kinds()).filter((kind) => kind === "alarm raised unannounced").length);
+  // Of all streams: on a slow machine one of the others may have been called silent meanwhile.
+  const { events } = await chain.get<{ events: RecordedEvent[] }>("/events?limit=1000");
+  const called = events.filter(({ kind }) => /^alarm (raised( again)?|annunciated anew)$/.test(kind));
+  expect(performance.annunciations).toBe(called.length);
+  expect(called.filter(({ alarm }) => alarm?.key === "unfamiliar").length).toBeGreaterThan(3);
+  expect(performance.withheld).toBe(events.filter(({ kind }) => kind === "alarm raised unannounced").length);
   const backwards = await fetch(`${chain.url}/api/v1/alarms/performance?from=2&to=1`);
   expect(backwards.status).toBe(400);
 });
