@@ -25,6 +25,8 @@ interface Stretch {
 const margin = 0.3;
 const settleMs = 120;
 const retryMs = 2000;
+/** While recorded history is being brought in, what was read before lacks it: it is read again so often. */
+const historyEveryMs = 3000;
 
 /**
  * Holds the trend of one stream for the window that is on the screen: asks the server when the window leaves what is held or needs another
@@ -46,6 +48,8 @@ export class TrendLoader implements ReactiveController {
   /** readings that came while a request was under way: the answer may not have them yet */
   #waiting: Judged[] = [];
   #listensTo: string | undefined;
+  #askedAt = 0;
+  #historyGrows = false;
   #close: (() => void) | undefined;
 
   constructor(host: ReactiveControllerHost, feed: () => Feed, stream: () => Pick<PlantStream, "id" | "gapMs">) {
@@ -77,6 +81,16 @@ export class TrendLoader implements ReactiveController {
       this.#listen();
     }
     if (!this.#serves(this.#asked ?? this.#held, wish)) this.#schedule(this.trend ? settleMs : 0);
+    this.#followHistory();
+  }
+
+  /** History does not come over the live link: it is read every few seconds while it grows, and once more when it is whole. */
+  #followHistory(): void {
+    const grows = this.#feed().engine?.loading !== undefined;
+    this.#historyGrows ||= grows;
+    if (!this.#historyGrows || this.#asked || performance.now() - this.#askedAt < historyEveryMs) return;
+    this.#historyGrows = grows;
+    this.#schedule(0);
   }
 
   /** Lets go of everything that belongs to another stream, or to a time when nobody listened. */
@@ -158,6 +172,7 @@ export class TrendLoader implements ReactiveController {
       whole: false,
     };
     this.#asked = asked;
+    this.#askedAt = performance.now();
     this.#waiting = [];
     try {
       const trend = await api.trend(asked.stream, from, to, points, abort.signal);

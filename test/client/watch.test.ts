@@ -10,10 +10,13 @@ import { cuttableLink } from "./cuttable-link.ts";
 let chain: Chain;
 let browser: Browser;
 let seen: Seen;
+/** opened while the history was still being brought in */
+let early: Seen;
 const hour = 3_600_000;
 
 beforeAll(async () => {
   [chain, browser] = await Promise.all([startChain({ simulate: "calm", historyDays: 1 }), openBrowser()]);
+  early = await openPage(browser, `${chain.url}/watch?last=28800`);
   await eventually(
     "a day of history",
     async () => {
@@ -53,6 +56,16 @@ describe("Watch", () => {
       const value = lane(seen.page, stream).locator("mill-lane-number .value");
       await eventually(`a number for ${stream}`, async () => /^[\d.]+ ± [\d.]+\u2009wt%$/.test(await wordsOf(value)));
     }
+  });
+
+  test("a screen that was opened while history was brought in fills up by itself", async () => {
+    const blend = lane(early.page, "bq-305");
+    await blend.getByRole("button", { name: "Table of Recycled blend" }).click();
+    await eventually("eight hours without a gap", async () =>
+      /\(8 h\).*no gaps/.test(await wordsOf(blend.locator("caption"))),
+    );
+    expect(early.complaints).toEqual([]);
+    await early.close();
   });
 
   test("says the chart in a sentence, and gives it as a table on demand", async () => {
