@@ -6,7 +6,7 @@ export default defineConfig({
   root: `${import.meta.dirname}/..`,
   test: {
     include: ["test/**/*.test.ts"],
-    globalSetup: ["test/chromium.ts", "test/models.ts"],
+    globalSetup: ["test/chromium.ts", "test/mosquitto.ts", "test/models.ts"],
     reporters: ["default", "./test/closing-line.ts"],
     // Two cores: the real chain has a service, a simulator and a browser of its own beside each worker.
     maxWorkers: 2,

@@ -7,6 +7,7 @@ import { endExcursions, runExcursions } from "./excursions.ts";
 import { closeGap, type Note } from "./notes.ts";
 import { processTimeAt } from "./process-state.ts";
 import type { Scorer } from "./scorer.ts";
+import { followNumbering } from "./sequence-gap.ts";
 import type { StreamState } from "./state.ts";
 import { fingerprint, type Invalid, invalidity, type ValidityRules } from "./validity.ts";
 
@@ -108,7 +109,8 @@ export function judge(state: StreamState, arrival: Arrival, rules: StreamRules):
   const gapFrom = state.latest && reading.time - newest > rules.gapMs ? newest : null;
   const [before, gapNotes, gapExcursions] = gapFrom === null ? untouched(state) : closeGap(state, rules);
   const frozen = invalid?.reason === "frozen";
-  const seen = remember(before, { judged, receivedAt, print, same, frozen });
+  const [numbering, missing] = followNumbering(state.numbering, reading.sequence);
+  const seen = remember({ ...before, numbering }, { judged, receivedAt, print, same, frozen });
   const [alarmed, alarmNotes] = runAlarms(seen, judged, { frozen }, rules);
   const [next, excursionNotes, excursions] = runExcursions(alarmed, judged, rules);
   const judgement: Judgement = {
@@ -117,7 +119,7 @@ export function judge(state: StreamState, arrival: Arrival, rules: StreamRules):
     late,
     gapFrom,
     ...refusal,
-    notes: [...gapNotes, ...alarmNotes, ...excursionNotes],
+    notes: [...gapNotes, ...missingNotes(missing, judged), ...alarmNotes, ...excursionNotes],
     excursions: [...gapExcursions, ...excursions],
   };
   return [next, judgement];
@@ -142,6 +144,14 @@ export function tick(
   if (now - lastHeard <= rules.gapMs || Object.keys(silent.excursions).length === 0) return [silent, notes, []];
   const [next, moreNotes, excursions] = endExcursions(silent, "gap", rules);
   return [next, [...notes, ...moreNotes], excursions];
+}
+
+function missingNotes(missing: number, { stream, time, sequence }: Judged): Note[] {
+  if (missing === 0) return [];
+  const [first, last] = [sequence - missing, sequence - 1];
+  const what = missing === 1 ? `reading ${first} is missing` : `readings ${first} to ${last} are missing (${missing})`;
+  const says = `${what}: lost on the way here, or still to come. Does the broker queue enough for an engine that is away?`;
+  return [{ at: time, stream, kind: "sequence gap", says }];
 }
 
 function untouched(state: StreamState): [StreamState, Note[], Excursion[]] {

@@ -1,6 +1,7 @@
 import type { AlarmState, DetectorState, Drift, OpenExcursion } from "../alarms/index.ts";
 import type { Proposals } from "../limit-set/index.ts";
 import type { Judged, ProcessState, Verdict } from "../messages/index.ts";
+import type { Numbering } from "./sequence-gap.ts";
 
 /**
  * All that judging remembers of one stream: plain data, kept in the store with every commit, so that a restart goes on where the record
@@ -17,6 +18,8 @@ export interface StreamState {
   /** the newest spectrum's fingerprint and how often in a row it came */
   fingerprint: string;
   same: number;
+  /** how its readings are numbered; absent in what was remembered before this was followed */
+  numbering?: Numbering;
   /** of the last readings, which were unusable (1 or 0), oldest first */
   unusable: number[];
   /** what the plant said last of the line; null while it has said nothing */

@@ -24,17 +24,37 @@ const StreamConfigSchema = Type.Object({
   ),
 });
 
+/** A broker of the site's own. */
+const ExternalBrokerSchema = Type.Object({
+  /** mqtts:// and ssl:// go by TLS; user and password stand in fields of their own, never here */
+  url: Type.String({ pattern: "^(mqtt|mqtts|tcp|ssl)://[^/@]+/?$" }),
+  /** of MQTT; with 5 the session's expiry and the receive maximum are told to the broker, with 3.1.1 they are settings over there */
+  version: Type.Optional(Type.Enum(["3.1.1", "5"])),
+  clientId: Type.Optional(Type.String({ minLength: 1 })),
+  username: Type.Optional(Type.String()),
+  /** name of the environment variable that holds the password: it never stands in the file */
+  passwordFrom: Type.Optional(Type.String()),
+  /** PEM files, seen from the configuration's folder: who vouches for the broker, and the engine's own certificate where it asks for one */
+  tls: Type.Optional(
+    Type.Object({
+      ca: Type.Optional(Type.String()),
+      certificate: Type.Optional(Type.String()),
+      key: Type.Optional(Type.String()),
+    }),
+  ),
+  keepAliveSeconds: Type.Optional(Type.Integer({ minimum: 1, maximum: 65535 })),
+  /** how long the broker keeps messages for an engine that is away (MQTT 5) */
+  sessionExpiryHours: Type.Optional(Type.Number({ minimum: 0.01, maximum: 100_000 })),
+  /** most messages received and not yet on record */
+  inFlight: Type.Optional(Type.Integer({ minimum: 1, maximum: 65535 })),
+});
+export type ExternalBroker = Static<typeof ExternalBrokerSchema>;
+
 const BrokerSchema = Type.Union([
   Type.Object({
     embedded: Type.Object({ host: Type.String(), port: Type.Integer({ minimum: 0, maximum: 65535 }) }),
   }),
-  Type.Object({
-    url: Type.String({ pattern: "^(mqtt|mqtts|tcp|ssl)://" }),
-    clientId: Type.Optional(Type.String({ minLength: 1 })),
-    username: Type.Optional(Type.String()),
-    /** name of the environment variable that holds the password: it never stands in the file */
-    passwordFrom: Type.Optional(Type.String()),
-  }),
+  ExternalBrokerSchema,
 ]);
 export type BrokerConfig = Static<typeof BrokerSchema>;
 
@@ -121,6 +141,7 @@ export function parsePlantConfig(text: string, file: string): PlantConfig {
   return {
     ...config,
     data: from(config.data),
+    mqtt: { ...config.mqtt, broker: brokerFrom(config.mqtt.broker, from) },
     http: {
       ...config.http,
       ...(config.http.tls && {
@@ -133,6 +154,12 @@ export function parsePlantConfig(text: string, file: string): PlantConfig {
       ...(stream.alarms ? { alarms: from(stream.alarms) } : {}),
     })),
   };
+}
+
+function brokerFrom(broker: BrokerConfig, from: (path: string) => string): BrokerConfig {
+  if ("embedded" in broker || !broker.tls) return broker;
+  const tls = Object.fromEntries(Object.entries(broker.tls).map(([what, path]) => [what, from(path)]));
+  return { ...broker, tls };
 }
 
 function checkTimeZone(timeZone: string, file: string): void {

@@ -1,5 +1,7 @@
-import { connect, type IClientOptions, type MqttClient } from "mqtt";
+import { MqttClient } from "mqtt";
 import { resultOf } from "../../core/messages/index.ts";
+import type { Log } from "../log.ts";
+import { type Connection, firstWaitMs, nextWaitMs } from "./connection.ts";
 import type { Told } from "./engine.ts";
 import type { Topics } from "./topics.ts";
 
@@ -10,22 +12,25 @@ export class Outside {
   /** what each stream's retained status said last */
   readonly #said = new Map<string, string>();
 
-  constructor(url: string, connection: IClientOptions, topics: Topics, log: (says: string) => void) {
+  constructor({ url, dial, options }: Connection, topics: Topics, log: Log) {
     this.#topics = topics;
     const gone = JSON.stringify({ running: false });
-    this.#client = connect(url, {
-      ...connection,
+    this.#client = new MqttClient(dial, {
+      ...options,
       clean: true,
-      reconnectPeriod: 1000,
       // Results are of the moment: those of a broken link are not sent late.
       queueQoSZero: false,
       will: { topic: topics.engineStatus, payload: Buffer.from(gone), qos: 1, retain: true },
     });
     this.#client.on("connect", () => {
+      this.#client.options.reconnectPeriod = firstWaitMs;
       this.#said.clear();
       this.#retain(topics.engineStatus, { running: true, since: new Date().toISOString() });
     });
-    this.#client.on("error", (error) => log(`publishing to ${url}: ${error.message}`));
+    this.#client.on("reconnect", () => {
+      this.#client.options.reconnectPeriod = nextWaitMs(this.#client.options.reconnectPeriod ?? firstWaitMs);
+    });
+    this.#client.on("error", (error) => log(`publishing to ${url}: ${error.message}`, "warn"));
   }
 
   publish({ judged, now, events }: Told): void {
@@ -38,6 +43,8 @@ export class Outside {
       const message = { time: new Date(at).toISOString(), cursor, kind, says, ...(by ? { by } : {}), alarm };
       this.#client.publish(this.#topics.alarm(event.stream), JSON.stringify(message), { qos: 1 });
     }
+    // A status is of the moment, too: while nobody can hear it, it is not queued, and the next change after the break says it anew.
+    if (!this.#client.connected) return;
     for (const { stream, latest, alarms } of now) {
       const open = alarms.map(({ key, priority, state }) => ({ key, priority, state }));
       const status = { verdict: latest?.verdict ?? [], alarms: open };

@@ -24,7 +24,7 @@ function run(): void {
   const meter = new Meter(sqliteWriter(recordFile));
   const { store } = meter;
   const streams = new Map(config.streams.map((stream) => [stream.id, readyStream(stream, store, Date.now())]));
-  const outside = new Outside(brokerUrl, connectionOf(config, "results"), topics, log);
+  const outside = new Outside(connectionOf(config, brokerUrl, "results"), topics, log);
   let ready = false;
   const engine = new Engine({
     store,
@@ -41,8 +41,7 @@ function run(): void {
   const source = inboxFile
     ? new InboxSource(inboxFile, (n) => say({ kind: "drained", n }))
     : new MqttSource({
-        url: brokerUrl,
-        connection: connectionOf(config, "readings"),
+        connection: connectionOf(config, brokerUrl, "readings"),
         topics: [topics.readings, topics.states],
         wake: () => engine.wake(),
         log,
