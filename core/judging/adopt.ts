@@ -29,8 +29,9 @@ export function adopt(kept: StreamState, at: number, rules: StreamRules): [Strea
   );
   const adopted = { ...state, alarms, detectors: keep(state.detectors), drifts: keep(state.drifts) };
   const [timed, timeNotes] = advanceAll(adopted, { kind: "wall clock", at }, rules);
-  const [next, processNotes] = suppressedAsRuled(timed, at, rules);
-  return [next, [...notes, ...timeNotes, ...processNotes]];
+  const [ruled, processNotes] = suppressedAsRuled(timed, at, rules);
+  const [next, calls] = nowCalling(ruled, at, rules);
+  return [next, [...notes, ...timeNotes, ...processNotes, ...calls]];
 }
 
 function suppressedAsRuled(state: StreamState, at: number, rules: StreamRules): [StreamState, Note[]] {
@@ -41,6 +42,22 @@ function suppressedAsRuled(state: StreamState, at: number, rules: StreamRules): 
   for (const rule of rules.limitSet.alarms) {
     const event = suppressionEvent(rule, process);
     const step = advanceAlarm(next, rule, event.kind === "suppress" ? { ...event, at } : event, rules);
+    next = step.state;
+    notes.push(...step.notes);
+  }
+  return [next, notes];
+}
+
+/** An alarm that was for the record only until now, and holds: nobody was ever called for it, so somebody is called. */
+function nowCalling(state: StreamState, at: number, rules: StreamRules): [StreamState, Note[]] {
+  let next = state;
+  const notes: Note[] = [];
+  for (const rule of rules.limitSet.alarms) {
+    const alarm = state.alarms[rule.key];
+    const unseen = alarm?.standing === "acknowledged" && alarm.acknowledgedBy === undefined;
+    if (rule.priority === "record only" || !unseen || !alarm.activation) continue;
+    const { [rule.key]: _, ...others } = next.alarms;
+    const step = advanceAlarm({ ...next, alarms: others }, rule, { kind: "raise", ...alarm.activation, at }, rules);
     next = step.state;
     notes.push(...step.notes);
   }

@@ -38,6 +38,22 @@ test.each<[string, unknown[], RegExp]>([
     [{ ...high, purpose: { ...high.purpose, response: " " } }],
     /alarms\[0\]\.purpose\.response is empty.*record only/s,
   ],
+  ...(["cause", "consequence"] as const).map((name): [string, unknown[], RegExp] => [
+    `an alarm without a ${name}`,
+    [{ ...high, purpose: { ...high.purpose, [name]: "" } }],
+    new RegExp(`alarms\\[0\\]\\.purpose\\.${name} is empty.*record only`, "s"),
+  ]),
+  [
+    "an alarm that leaves no time to respond",
+    [{ ...high, purpose: { ...high.purpose, timeToRespondMinutes: 0 } }],
+    /alarms\[0\]\.purpose\.timeToRespondMinutes is 0, expected the minutes that are left to respond/,
+  ],
+  [
+    "a drift without its time constant",
+    [{ ...high, watches: { kind: "drifting", withinMinutes: 30, fromRatio: 0.5, deadband: 0 } }],
+    /alarms\[0\]\.watches/,
+  ],
+  ["a shelf without end", [{ ...high, mostShelvedMinutes: 100_000 }], /alarms\[0\]\.mostShelvedMinutes is 100000/],
   ["a missing title", [{ ...high, title: undefined }], /alarms\[0\]\.title is missing/],
 ])("%s is refused by name", (_, alarms, expected) => {
   expect(parse(alarms)).toThrow(LimitSetError);
