@@ -4,9 +4,9 @@ import { axisFromSpec } from "../../../core/spectrum/index.ts";
 import { normalOf } from "../../bench/invented-spectra.ts";
 
 interface Shape {
-  samples?: [number, number];
-  channels?: [number, number];
-  properties?: [number, number];
+  samples?: readonly [number, number];
+  channels?: readonly [number, number];
+  properties?: readonly [number, number];
 }
 
 /** A table of ordinary numbers: normal amounts of four ingredients, noise in spectra and laboratory. From a seed, so that none is degenerate. */

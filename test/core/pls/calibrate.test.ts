@@ -53,11 +53,15 @@ const steps = fc.constantFrom(
   "scale; center",
 );
 
+/** Room for six components after any of the steps. */
+const wide = { samples: [10, 25], channels: [10, 40] } as const;
+const upToSix = fc.integer({ min: 1, max: 6 });
+
 describe("for any table that can be calibrated", () => {
   test("both routes to a prediction agree to 1e-10, and reading changes no spectrum", () => {
     fc.assert(
-      fc.property(ordinaryTable(), steps, fc.boolean(), (set, text, scaleY) => {
-        const model = fitted(set, { steps: parseSteps(text), scaleY });
+      fc.property(ordinaryTable(wide), steps, upToSix, fc.boolean(), (set, text, components, scaleY) => {
+        const model = fitted(set, { steps: parseSteps(text), components, scaleY });
         const compiled = compileModel(model);
         for (const row of set.spectra.rows) {
           const before = Float64Array.from(row);
@@ -73,8 +77,8 @@ describe("for any table that can be calibrated", () => {
 
   test("contributions add up: T² and Q to the statistic, a prediction's to what it is above the mean", () => {
     fc.assert(
-      fc.property(ordinaryTable(), steps, (set, text) => {
-        const model = fitted(set, { steps: parseSteps(text) });
+      fc.property(ordinaryTable(wide), steps, upToSix, (set, text, components) => {
+        const model = fitted(set, { steps: parseSteps(text), components });
         const compiled = compileModel(model);
         for (const [i, row] of set.spectra.rows.entries()) {
           const found = explain(row, compiled);
