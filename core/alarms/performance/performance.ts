@@ -32,7 +32,8 @@ export function performanceOf(
   const frequent = mostFrequent(annunciations);
   const chattering = chatteringOf(annunciations);
   const fleeting = fleetingOf(annunciations);
-  const topTen = frequent.slice(0, 10).reduce((sum, { count }) => sum + count, 0);
+  // Of ten alarms or fewer the ten most frequent are all there are, which says nothing.
+  const topTen = frequent.length > 10 ? frequent.slice(0, 10).reduce((sum, { count }) => sum + count, 0) : null;
   return {
     from,
     to,
@@ -48,7 +49,7 @@ export function performanceOf(
       figureOf(recommendations.badHours, percentAbove(hours.count, 30)),
       figureOf(recommendations.mostInTenMinutes, mostWithin(times, tenMinutes)),
       figureOf(recommendations.inFlood, percent(floodTime(floods, to), span)),
-      figureOf(recommendations.topTen, percent(topTen, n)),
+      figureOf(recommendations.topTen, topTen === null ? null : percent(topTen, n)),
       figureOf(recommendations.chattering, chattering.length),
       figureOf(recommendations.fleeting, fleeting.length),
       figureOf(recommendations.stale, mostStaleOnADay(stretches, from, to)),

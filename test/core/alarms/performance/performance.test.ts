@@ -174,6 +174,13 @@ describe("the figures", () => {
     ]);
   });
 
+  test("the ten most frequent of more than ten carry a share of the load; of ten or fewer it would say nothing", () => {
+    const load = (alarms: number) =>
+      performanceOf(events(...every(4 * alarms, hour).map((at, i): Told => ({ at, key: `k${i % alarms}` }))), range);
+    expect(figure(load(40), "top-ten")).toMatchObject({ value: 25, rating: "beyond" });
+    expect(figure(load(10), "top-ten")).toMatchObject({ value: null, rating: null });
+  });
+
   test("only what called somebody counts: not what is for the record only, nor what came while set aside", () => {
     const performance = performanceOf(
       events(
