@@ -39,6 +39,7 @@ const StatisticWatchSchema = Type.Object({
   deadband: Type.Number({ minimum: 0, exclusiveMaximum: 1 }),
 });
 const UnusableShareWatchSchema = Type.Object({
+  /** frozen readings are not counted: they have an alarm of their own */
   kind: Type.Literal("unusable share"),
   share: Type.Number({ exclusiveMinimum: 0, maximum: 1 }),
   /** among this many last readings */
