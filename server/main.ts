@@ -1,6 +1,7 @@
 #!/usr/bin/env node
 import { Command, CommanderError } from "commander";
 import { MillraceError } from "../core/errors.ts";
+import { backupCommand } from "./commands/backup.ts";
 import { calibrateCommand } from "./commands/calibrate.ts";
 import { demoCommand } from "./commands/demo.ts";
 import { importModelCommand } from "./commands/import-model.ts";
@@ -28,6 +29,7 @@ for (const command of [
   loadCommand(),
   simulateCommand(),
   userCommand(),
+  backupCommand(),
   verifyRecordCommand(),
 ]) {
   program.addCommand(command);

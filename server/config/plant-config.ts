@@ -83,6 +83,8 @@ export const PlantConfigSchema = Type.Object({
   mqtt: Type.Object({ prefix: Type.String({ pattern: "^[^+#\\u0000]+$" }), broker: BrokerSchema }),
   /** who may put limits in force: "another person" asks for an approver beside the author */
   limits: Type.Optional(Type.Object({ approval: Type.Literal("another person") })),
+  /** how long spectra are kept, but those in excursions, which stay; without it all stay. Results stay in any case */
+  retention: Type.Optional(Type.Object({ spectraDays: Type.Number({ minimum: 1 }) })),
   /** an invented plant: the screens say so, and an invented person is signed in */
   demo: Type.Optional(Type.Boolean()),
   streams: Type.Array(StreamConfigSchema, { minItems: 1 }),

@@ -10,6 +10,7 @@ import { Meter } from "./meter.ts";
 import { MqttSource } from "./mqtt-source.ts";
 import { Outside } from "./outside.ts";
 import type { EngineSettings, FromEngine, ToEngine } from "./protocol.ts";
+import { retireOldSpectra } from "./retention.ts";
 import { readyStream } from "./streams.ts";
 import { topicsOf } from "./topics.ts";
 
@@ -47,6 +48,15 @@ function run(): void {
         log,
       });
   engine.start(source);
+  const stopRetiring = config.retention
+    ? retireOldSpectra({
+        store,
+        streams: config.streams.map(({ id }) => id),
+        days: config.retention.spectraDays,
+        isIdle: () => engine.health().waiting === 0,
+        trouble: (says) => log(says, "warn"),
+      })
+    : () => {};
   const beat = setInterval(() => {
     say({ kind: "health", health: engine.health() });
     say({ kind: "account", account: meter.account() });
@@ -60,6 +70,7 @@ function run(): void {
         return;
       case "stop":
         clearInterval(beat);
+        stopRetiring();
         await engine.stop();
         await outside.close();
         say({ kind: "stopped" });

@@ -66,6 +66,11 @@ export interface StoreWriter {
   addModel(model: { id: string; name: string; properties: string[]; text: string }): void;
   /** The text of a model that is on record. */
   modelText(id: string): string | undefined;
+  /**
+   * Removes spectra of readings from before `before` that lie in no excursion; their results stay. Goes through at most `most` readings of
+   * the stream and says whether there are more.
+   */
+  retireSpectra(stream: string, before: number, most: number): boolean;
   /** Time of the stream's first reading that came in live. */
   firstLive(stream: string): number | undefined;
   close(): void;

@@ -166,6 +166,41 @@ describe.each(makers)("the record by $name", ({ place }) => {
     expect(reader.modelText(modelId)).toBe('{"a":1}');
   });
 
+  test("retires old spectra step by step, but those in excursions, and loses no result", () => {
+    const times = Array.from({ length: 100 }, (_, i) => time + 1000 * i);
+    const values = (at: number) => Float64Array.of(at - time, 1);
+    writer.commit(
+      changes({
+        readings: times.map((at) => reading(at, {}, { values: values(at) })),
+        excursions: [
+          {
+            ...{ id: "x", stream, kind: "unfamiliar", start: times[10], end: times[19], ended: "returned" },
+            ...{ peak: 2, peakTime: times[12], mean: 2, unit: "× limit", readings: 10, says: "" },
+          },
+        ],
+      }),
+    );
+    const kept = () => times.filter((at) => reader.readingBefore(stream, at)!.values !== null);
+    expect(writer.retireSpectra(stream, times[50], 30)).toBe(true);
+    reopen();
+    expect(writer.retireSpectra(stream, times[50], 30)).toBe(false);
+    expect(writer.retireSpectra(stream, times[50], 30)).toBe(false);
+    expect(kept()).toEqual([...times.slice(10, 20), ...times.slice(50)]);
+    expect(reader.extent(stream).readings).toBe(100);
+    expect(reader.readingBefore(stream, times[0])!.judged).toEqual(reading(times[0]).judged);
+    // Older ones that are loaded later have their turn, too.
+    const loaded = [time - 5000, time - 4000].map((at) => reading(at, {}, { history: true }));
+    writer.commit(changes({ readings: loaded }));
+    while (writer.retireSpectra(stream, times[50], 30));
+    expect(reader.readingBefore(stream, time - 5000)!.values).toBeNull();
+    // With every old one gone, a new reading still gets a spectrum of its own.
+    while (writer.retireSpectra(stream, times[99] + 1, 30));
+    reopen();
+    writer.commit(changes({ readings: [reading(times[99] + 1000, {}, { values: Float64Array.of(7) })] }));
+    expect(reader.readingBefore(stream, times[99] + 1000)!.values).toEqual(Float64Array.of(7));
+    expect(reader.readingBefore(stream, times[60])!.values).toBeNull();
+  });
+
   test("knows the first reading that came in live", () => {
     writer.commit(
       changes({ readings: [reading(time, {}, { history: true }), reading(time + 10), reading(time + 20)] }),

@@ -171,7 +171,7 @@ describe.each(makers)("a trend by $name", ({ name, place }) => {
       reader.close();
       const db = new Database(at.file);
       db.exec("DROP TRIGGER event_stays; DROP TRIGGER event_is_kept; ALTER TABLE event DROP COLUMN hash");
-      db.exec("DROP TABLE rollup; DROP INDEX reading_after_gap; PRAGMA user_version = 1");
+      db.exec("DROP TABLE rollup; DROP INDEX reading_after_gap; DROP TABLE retired; PRAGMA user_version = 1");
       db.close();
       expect(() => at.reader()).toThrow(/is a record of form 1, expected form \d+\. Start the service once/);
       at.writer().close();

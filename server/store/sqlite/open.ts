@@ -1,9 +1,11 @@
-import { existsSync, mkdirSync } from "node:fs";
+import { existsSync, mkdirSync, statSync } from "node:fs";
 import { dirname } from "node:path";
 import Database from "better-sqlite3";
 import { MillraceError, type Mismatch, mismatchSentence } from "../../../core/errors.ts";
 import { chainEvents } from "./event-chain.ts";
+import { addRetirement } from "./retirement.ts";
 import { rollUpAll, rollupSchema } from "./rollup.ts";
+import { whatIsDamaged } from "./soundness.ts";
 
 export class StoreError extends MillraceError {
   readonly code = "store";
@@ -20,7 +22,11 @@ const steps: readonly ((db: Database.Database) => void)[] = [
     rollUpAll(db);
   },
   chainEvents,
+  addRetirement,
 ];
+
+/** A record up to this size is looked through as a whole at every start: less than a second. A larger one is by every backup. */
+const lookedThroughUpTo = 256 * 1024 * 1024;
 
 /*
  * A reading's row is small and clustered by stream and time, since every trend walks it so; its spectrum, a thousand times larger, stands
@@ -52,6 +58,16 @@ CREATE TABLE refusal_total (stream TEXT NOT NULL, reason TEXT NOT NULL, count IN
 export function openForWriting(file: string): Database.Database {
   mkdirSync(dirname(file), { recursive: true });
   const database = open(file, { timeout: 5000 });
+  try {
+    prepare(database, file);
+  } catch (cause) {
+    database.close();
+    throw isDamage(cause) ? damaged(file, cause) : cause;
+  }
+  return database;
+}
+
+function prepare(database: Database.Database, file: string): void {
   // FULL: a commit is on the disk when it returns, also after a power cut; the acknowledgement to the publisher rests on it.
   database.pragma("journal_mode = WAL");
   database.pragma("synchronous = FULL");
@@ -59,7 +75,9 @@ export function openForWriting(file: string): Database.Database {
   // The log is folded back every 4 MB or so, so that readers never wade through a long one.
   database.pragma("wal_autocheckpoint = 1000");
   bringUp(database, file);
-  return database;
+  const small = statSync(file).size <= lookedThroughUpTo;
+  const damage = whatIsDamaged(database, small ? "whole" : "small tables");
+  if (damage !== undefined) throw damaged(file, new Error(damage));
 }
 
 /** Opens the record for reading beside its writer. @throws StoreError when it is not there, damaged or newer. */
@@ -90,13 +108,21 @@ function open(file: string, options: Database.Options): Database.Database {
     database.pragma("schema_version"); // the first real look at the file: a damaged header shows here
     return database;
   } catch (cause) {
-    throw new StoreError(file, {
-      got: `not readable as a database (${(cause as Error).message})`,
-      expected: "the record of a plant",
-      todo: "Move it aside and restore the last backup; do not delete it.",
-      cause,
-    });
+    throw damaged(file, cause);
   }
+}
+
+function isDamage(cause: unknown): boolean {
+  return cause instanceof Database.SqliteError && /^SQLITE_(CORRUPT|NOTADB)/.test(cause.code);
+}
+
+function damaged(file: string, cause: unknown): StoreError {
+  return new StoreError(file, {
+    got: `not readable as a database (${(cause as Error).message})`,
+    expected: "the record of a plant",
+    todo: "Move it aside with its -wal and -shm files, put the last backup in its place, and start again; do not delete it.",
+    cause,
+  });
 }
 
 /** Brings an older record to the present form, all of it or (when the power fails meanwhile) nothing. */

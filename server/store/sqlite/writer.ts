@@ -5,6 +5,7 @@ import { type AxisSpec, type Excursion, type Judged, verdictMask } from "../../.
 import type { Changes, NewReading, NewRefusal, StoreWriter } from "../store.ts";
 import { chainHash, chainStart } from "./event-chain.ts";
 import { openForWriting } from "./open.ts";
+import { Retirement } from "./retirement.ts";
 import { RollupWriter } from "./rollup.ts";
 import { spectrumBytes } from "./spectrum-bytes.ts";
 
@@ -53,6 +54,7 @@ export function sqliteWriter(file: string): StoreWriter {
       .pluck(),
   };
   const rollups = new RollupWriter(db);
+  const retirement = new Retirement(db);
   let number = sql.lastNumber.get() as number;
   let lastHash: Buffer = sql.lastHash.get() ?? chainStart;
 
@@ -120,6 +122,7 @@ export function sqliteWriter(file: string): StoreWriter {
     const { width, data } = spectrumBytes(reading.values);
     sql.spectrum.run(number, axisKey(reading.axis), width, data);
     const { t2, q } = judged.ratios;
+    retirement.note(stream, judged.time);
     rollups.add(stream, model?.k ?? null, { time: judged.time, verdict, t2, q, numbers });
   }
   function addRefusal(refusal: NewRefusal): void {
@@ -159,6 +162,7 @@ export function sqliteWriter(file: string): StoreWriter {
         // Rolled back, and with it rows that these remember.
         for (const remembered of [streams, axes]) remembered.clear();
         rollups.forget();
+        retirement.forget();
         throw error;
       }
     },
@@ -179,6 +183,7 @@ export function sqliteWriter(file: string): StoreWriter {
     addLimitSet,
     addModel: ({ id, name, properties, text }) => void sql.addModel.run(id, name, JSON.stringify(properties), text),
     modelText: (id) => sql.modelText.get(id),
+    retireSpectra: (stream, before, most) => retirement.step(stream, streamKey(stream), before, most),
     firstLive: (stream) => sql.firstLive.get(streamKey(stream)),
     close: () => void db.close(),
   };
