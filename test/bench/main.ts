@@ -1,9 +1,10 @@
 import { cpus } from "node:os";
 import type { BenchResult } from "./bench-result.ts";
 import { benchScore } from "./score.ts";
+import { benchYear } from "./year.ts";
 
 /** Every bench, one after the other: first a table for people, then one line of JSON. Ratios within one run; times depend on the machine. */
-const benches: Record<string, () => BenchResult[] | Promise<BenchResult[]>> = { score: benchScore };
+const benches: Record<string, () => BenchResult[] | Promise<BenchResult[]>> = { score: benchScore, year: benchYear };
 
 const asked = process.argv.slice(2);
 const results: Record<string, BenchResult[]> = {};
