@@ -5,6 +5,7 @@ import type {
   LimitChangeOutcome,
   LimitSets,
   OpenAlarm,
+  Performance,
   Plant,
   Problem,
   ReadingView,
@@ -72,7 +73,7 @@ export const api = {
     ask<ReadingView>(`${stream(id)}/reading${query({ at })}`, { signal }),
   excursions: (values: { stream?: string; from?: number; to?: number; limit?: number }, signal?: AbortSignal) =>
     ask<{ excursions: Excursion[] }>(`/excursions${query(values)}`, { signal }),
-  events: (values: { stream?: string; before?: number; limit?: number }, signal?: AbortSignal) =>
+  events: (values: { stream?: string; about?: string; before?: number; limit?: number }, signal?: AbortSignal) =>
     ask<{ events: RecordedEvent[] }>(`/events${query(values)}`, { signal }),
   refusals: (limit: number, signal?: AbortSignal) => ask<Refusals>(`/refusals${query({ limit })}`, { signal }),
   /** what needs nothing but the word: see server's alarm routes */
@@ -83,6 +84,13 @@ export const api = {
     ask<unknown>(`${alarmPath(alarm)}/shelve`, asJson(wish)),
   labelExcursion: ({ stream: id, kind, start }: Pick<Excursion, "stream" | "kind" | "start">, label: ExcursionLabel) =>
     ask<unknown>(`${stream(id)}/excursions/${encodeURIComponent(kind)}/${start}/label`, asJson({ label })),
+  alarmPerformance: (values: { from: number; to: number; history: boolean }, signal?: AbortSignal) =>
+    ask<Performance>(
+      `/alarms/performance${query({ from: Math.floor(values.from), to: Math.ceil(values.to), history: String(values.history) })}`,
+      { signal },
+    ),
+  takeOutOfService: (alarm: AlarmName, reason: string) =>
+    ask<unknown>(`${alarmPath(alarm)}/out-of-service`, asJson({ reason })),
   limitSets: (id: string, signal?: AbortSignal) => ask<LimitSets>(`${stream(id)}/limit-sets`, { signal }),
   limitDifferences: (id: string, limitSet: LimitSet) =>
     ask<Pick<LimitSets["versions"][number], "differences">>(

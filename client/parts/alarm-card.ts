@@ -14,6 +14,7 @@ export class AlarmCard extends LitElement {
     now: { attribute: false },
     time: { attribute: false },
     full: { type: Boolean },
+    engineer: { type: Boolean },
     linkUp: { attribute: false },
     sending: { state: true },
     failed: { state: true },
@@ -23,6 +24,8 @@ export class AlarmCard extends LitElement {
   declare time: PlantTime;
   /** with cause, consequence and time to respond */
   declare full: boolean;
+  /** the person may take it out of service */
+  declare engineer: boolean;
   declare linkUp: boolean;
   declare sending: boolean;
   declare failed: string | undefined;
@@ -107,7 +110,7 @@ export class AlarmCard extends LitElement {
         ${waits ? this.#button("acknowledge", "Acknowledge") : nothing}
         ${alarm.state === "latched acknowledged" ? this.#button("reset", "Reset") : nothing}
       </div>
-      ${this.full ? this.#shelving() : nothing}
+      ${this.full ? this.#shelving() : nothing} ${this.full && this.engineer ? this.#outOfService() : nothing}
       ${this.failed ? html`<p class="failed" role="alert">Not done: ${this.failed}</p>` : nothing}
     </article>`;
   }
@@ -172,6 +175,23 @@ export class AlarmCard extends LitElement {
         <p class="quiet">It says nothing until then, and comes back by itself. It stays on the list below.</p>
       </form>
     </details>`;
+  }
+
+  #outOfService() {
+    return html`<details>
+      <summary>Take out of service</summary>
+      <form @submit=${this.#takeOut}>
+        <label>Reason <input name="reason" required maxlength="2000" /></label>
+        <button ?disabled=${this.sending || this.linkUp === false}>Take it out</button>
+        <p class="quiet">It says nothing until somebody returns it. What it would have said is on record.</p>
+      </form>
+    </details>`;
+  }
+
+  #takeOut(event: SubmitEvent): void {
+    event.preventDefault();
+    const reason = String(new FormData(event.target as HTMLFormElement).get("reason"));
+    void this.#send(() => api.takeOutOfService(this.alarm, reason));
   }
 
   #shelve(event: SubmitEvent): void {

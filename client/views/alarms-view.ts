@@ -7,6 +7,7 @@ import type { Feed } from "../data/feed.ts";
 import { Listening, ticking } from "../data/listening.ts";
 import { Loaded } from "../data/loaded.ts";
 import { centredOn } from "../data/time-window.ts";
+import "./alarm-figures.ts";
 import { baseStyle } from "../parts/base-style.ts";
 import type { PlantTime } from "../words/plant-time.ts";
 import { counted } from "../words/quantity.ts";
@@ -15,15 +16,32 @@ const listed = 100;
 
 /** What needs me now, and what happened lately? */
 export class AlarmsView extends LitElement {
-  static override properties = { plant: { attribute: false }, feed: { attribute: false }, time: { attribute: false } };
+  static override properties = {
+    plant: { attribute: false },
+    feed: { attribute: false },
+    time: { attribute: false },
+    chosen: { state: true },
+    filter: { state: true },
+    failed: { state: true },
+  };
   declare plant: Plant;
   declare feed: Feed;
   declare time: PlantTime;
+  /** alarms that are ticked to be acknowledged together, as "stream key" */
+  declare chosen: ReadonlySet<string>;
+  /** of the record */
+  declare filter: { stream: string; about: string };
+  declare failed: string | undefined;
   #cursor = -1;
-  readonly #recent = new Loaded(this, (_, signal) => api.events({ limit: listed }, signal));
+  readonly #recent = new Loaded(this, (key, signal) => {
+    const [stream, about] = key.split(" ");
+    return api.events({ limit: listed, stream: stream || undefined, about: about || undefined }, signal);
+  });
 
   constructor() {
     super();
+    this.chosen = new Set();
+    this.filter = { stream: "", about: "" };
     ticking(this);
     new Listening(this, (changed) =>
       this.feed?.watch(() => {
@@ -61,6 +79,34 @@ export class AlarmsView extends LitElement {
       .record h2 {
         margin-bottom: 8px;
       }
+      .head {
+        display: flex;
+        flex-wrap: wrap;
+        gap: 4px 16px;
+        align-items: baseline;
+      }
+      select {
+        font: inherit;
+        color: var(--ink);
+        background: var(--lane);
+        border: 1px solid var(--edge);
+        border-radius: 4px;
+        min-height: 28px;
+      }
+      .tick {
+        margin-left: auto;
+        min-width: 24px;
+        min-height: 24px;
+        display: grid;
+        place-items: center;
+      }
+      .tick input {
+        width: 18px;
+        height: 18px;
+      }
+      .together {
+        padding-bottom: 8px;
+      }
       td.words {
         min-width: 28ch;
       }
@@ -95,7 +141,7 @@ export class AlarmsView extends LitElement {
     const now = feed.now();
     const open = byUrgency(feed.alarms());
     const waiting = open.filter((alarm) => isWaiting(alarm) && alarm.priority !== "record only").length;
-    this.#recent.want("recent");
+    this.#recent.want(`${this.filter.stream} ${this.filter.about}`);
     return html`
       <h1>
         Alarms${
@@ -117,6 +163,7 @@ export class AlarmsView extends LitElement {
           </p>`
           : nothing
       }
+      ${this.#together(open)}
       <div class="columns">
         ${calling.map((priority) => {
           const held = open.filter((alarm) => alarm.priority === priority);
@@ -124,6 +171,7 @@ export class AlarmsView extends LitElement {
         })}
       </div>
       ${this.#setAside(now)} ${this.#record(now)}
+      <mill-alarm-figures class="record" .plant=${this.plant} .now=${now} .time=${this.time}></mill-alarm-figures>
     `;
   }
 
@@ -132,13 +180,49 @@ export class AlarmsView extends LitElement {
     const name = plant.streams.find(({ id }) => id === alarm.stream)?.name ?? alarm.stream;
     const window = centredOn({ kind: "live", spanMs: 3_600_000 }, alarm.since, now);
     return html`<section class="card">
-      <h2 class="of">${name} <small class="quiet">${alarm.stream}</small></h2>
-      <mill-alarm-card .alarm=${alarm} .now=${now} .time=${time} .linkUp=${feed.linkUp} full></mill-alarm-card>
+      <h2 class="of">${name} <small class="quiet">${alarm.stream}</small> ${isWaiting(alarm) ? this.#tick(alarm, name) : nothing}</h2>
+      <mill-alarm-card .alarm=${alarm} .now=${now} .time=${time} .linkUp=${feed.linkUp} full ?engineer=${mayTakeOut.has(plant.person.role)}></mill-alarm-card>
       <p>
         <a href=${href({ view: "watch", window, stream: alarm.stream })}>On Watch</a> ·
         <a href=${href({ view: "reading", stream: alarm.stream, at: alarm.raisedAt })}>Reading when it was raised</a>
       </p>
     </section>`;
+  }
+
+  #tick(alarm: OpenAlarm, name: string) {
+    const key = keyOf(alarm);
+    return html`<label class="tick"
+      ><input type="checkbox" aria-label="Choose ${name}: ${alarm.title}" .checked=${this.chosen.has(key)} @change=${() => this.#toggle(key)}
+    /></label>`;
+  }
+
+  #toggle(key: string): void {
+    const chosen = new Set(this.chosen);
+    if (!chosen.delete(key)) chosen.add(key);
+    this.chosen = chosen;
+  }
+
+  /** Several that were each looked at and ticked; there is no "all" without looking. */
+  #together(open: readonly OpenAlarm[]) {
+    const ticked = open.filter((alarm) => isWaiting(alarm) && this.chosen.has(keyOf(alarm)));
+    return html`${
+      ticked.length > 0
+        ? html`<p class="together">
+            <button ?disabled=${!this.feed.linkUp} @click=${() => this.#acknowledge(ticked)}>Acknowledge the ${ticked.length} chosen</button>
+          </p>`
+        : nothing
+    }
+    ${this.failed ? html`<p class="card" role="alert">Not done: ${this.failed}</p>` : nothing}`;
+  }
+
+  async #acknowledge(alarms: readonly OpenAlarm[]): Promise<void> {
+    this.failed = undefined;
+    const outcomes = await Promise.allSettled(alarms.map((alarm) => api.alarmCommand(alarm, "acknowledge")));
+    const failures = outcomes.flatMap((outcome) =>
+      outcome.status === "rejected" ? [(outcome.reason as Error).message] : [],
+    );
+    if (failures.length > 0) this.failed = failures.join(" ");
+    this.chosen = new Set();
   }
 
   #setAside(now: number) {
@@ -159,7 +243,10 @@ export class AlarmsView extends LitElement {
   #record(now: number) {
     const { value, error } = this.#recent;
     return html`<section class="card record">
-      <h2>What happened lately</h2>
+      <div class="head">
+        <h2>What happened lately</h2>
+        ${this.#filters()}
+      </div>
       ${error ? html`<p role="status">The record could not be read. ${error.message}</p>` : nothing}
       ${value && value.events.length === 0 ? html`<p class="quiet">Nothing is on record yet.</p>` : nothing}
       ${
@@ -185,6 +272,28 @@ export class AlarmsView extends LitElement {
     </section>`;
   }
 
+  #filters() {
+    const { stream, about } = this.filter;
+    const choose = (part: "stream" | "about") => (event: Event) => {
+      this.filter = { ...this.filter, [part]: (event.target as HTMLSelectElement).value };
+    };
+    return html`
+      <label
+        ><span class="unseen">Stream</span>
+        <select @change=${choose("stream")}>
+          <option value="" ?selected=${stream === ""}>all streams</option>
+          ${this.plant.streams.map(({ id, name }) => html`<option value=${id} ?selected=${id === stream}>${name}</option>`)}
+        </select></label
+      >
+      <label
+        ><span class="unseen">What</span>
+        <select @change=${choose("about")}>
+          ${Object.entries(subjects).map(([word, name]) => html`<option value=${word} ?selected=${word === about}>${name}</option>`)}
+        </select></label
+      >
+    `;
+  }
+
   #event({ at, stream, kind, says, by, history }: RecordedEvent, now: number) {
     return html`<tr class=${history ? "old" : ""}>
       <td class="whole" title=${this.time.full(at)}>${this.time.exact(at, now)}</td>
@@ -205,6 +314,23 @@ export class AlarmsView extends LitElement {
 /** The record is kept in the order in which things became known; recorded history becomes known late. People read by time. A copy. */
 function byTime(events: readonly RecordedEvent[]): RecordedEvent[] {
   return [...events].sort((a, b) => b.at - a.at || b.cursor - a.cursor);
+}
+
+const mayTakeOut = new Set(["engineer", "administrator"]);
+
+/** The first words of the kinds of events. */
+const subjects = {
+  "": "everything",
+  alarm: "alarms",
+  excursion: "excursions",
+  limits: "limits",
+  process: "process states",
+  service: "service",
+  signed: "sign-ins",
+};
+
+function keyOf({ stream, key }: OpenAlarm): string {
+  return `${stream} ${key}`;
 }
 
 customElements.define("mill-alarms-view", AlarmsView);

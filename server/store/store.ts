@@ -95,8 +95,8 @@ export interface StoreReader {
   /** The trend of `from` ≤ time < `to` in at most about `points` intervals; each reading whole where there are no more than that. */
   trend(stream: string, properties: readonly string[], from: number, to: number, points: number): Trend;
   refusals(stream: string | undefined, limit: number): Refusals;
-  /** Newest first; `after`: only those with a larger cursor. */
-  events(query: { stream?: string; after?: number; before?: number; limit: number }): RecordedEvent[];
+  /** Newest first; `about`: the first word of their kind; `after`: only those with a larger cursor. */
+  events(query: { stream?: string; about?: string; after?: number; before?: number; limit: number }): RecordedEvent[];
   /** What happened to alarms at `from` ≤ time < `to`, in the order of the record; without what recorded history brought in, unless asked for. */
   alarmEvents(query: { from: number; to: number; history: boolean }): RecordedEvent[];
   /** Newest first, those that touch `from`–`to`. */

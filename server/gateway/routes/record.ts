@@ -15,6 +15,8 @@ import { plantView } from "../plant-view.ts";
 
 const stream = Type.Optional(StreamIdSchema);
 const limit = Type.Integer({ minimum: 1, maximum: 1000, default: 100 });
+/** the first word of an event's kind: "alarm", "excursion", "limits", "service" */
+const about = Type.Optional(Type.String({ pattern: "^[a-z]{1,20}$" }));
 const time = Type.Optional(Type.Integer());
 
 /** The plant as a whole, and what is on record about it. */
@@ -37,11 +39,11 @@ export function recordRoutes(app: FastifyInstance, parts: GatewayParts): void {
     setAside: live.picture.now.flatMap(({ setAside }) => setAside),
   }));
 
-  app.get<{ Querystring: { stream?: string; after?: number; before?: number; limit: number } }>(
+  app.get<{ Querystring: { stream?: string; about?: string; after?: number; before?: number; limit: number } }>(
     "/events",
     {
       schema: {
-        querystring: Type.Object({ stream, after: time, before: time, limit }),
+        querystring: Type.Object({ stream, about, after: time, before: time, limit }),
         response: { 200: EventsSchema },
       },
     },

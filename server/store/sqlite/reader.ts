@@ -69,7 +69,7 @@ export function sqliteReader(file: string): StoreReader {
     ),
     events: db
       .prepare<Named, string>(
-        "SELECT json FROM event WHERE (@stream IS NULL OR stream = @stream) AND cursor > @after AND cursor < @before ORDER BY cursor DESC LIMIT @limit",
+        "SELECT json FROM event WHERE (@stream IS NULL OR stream = @stream) AND (@about IS NULL OR kind LIKE @about || ' %') AND cursor > @after AND cursor < @before ORDER BY cursor DESC LIMIT @limit",
       )
       .pluck(),
     alarmEvents: db
@@ -136,9 +136,9 @@ export function sqliteReader(file: string): StoreReader {
         })),
       };
     },
-    events({ stream, after = 0, before = Number.MAX_SAFE_INTEGER, limit }) {
+    events({ stream, about, after = 0, before = Number.MAX_SAFE_INTEGER, limit }) {
       return sql.events
-        .all({ stream: stream ?? null, after, before, limit })
+        .all({ stream: stream ?? null, about: about ?? null, after, before, limit })
         .map((json) => JSON.parse(json) as RecordedEvent);
     },
     alarmEvents({ from, to, history }) {
