@@ -1,4 +1,5 @@
 import { css, html, LitElement, nothing } from "lit";
+import { repeat } from "lit/directives/repeat.js";
 import type { OpenAlarm, Plant, RecordedEvent } from "../../core/messages/index.ts";
 import { href } from "../app/route.ts";
 import { byUrgency, calling, isWaiting } from "../data/alarm-order.ts";
@@ -167,7 +168,8 @@ export class AlarmsView extends LitElement {
       <div class="columns">
         ${calling.map((priority) => {
           const held = open.filter((alarm) => alarm.priority === priority);
-          return held.map((alarm) => this.#card(alarm, now));
+          // Keyed: when the order changes under a hand, what is ticked or half typed stays with its alarm.
+          return repeat(held, keyOf, (alarm) => this.#card(alarm, now));
         })}
       </div>
       ${this.#setAside(now)} ${this.#record(now)}
@@ -278,19 +280,13 @@ export class AlarmsView extends LitElement {
       this.filter = { ...this.filter, [part]: (event.target as HTMLSelectElement).value };
     };
     return html`
-      <label
-        ><span class="unseen">Stream</span>
-        <select @change=${choose("stream")}>
-          <option value="" ?selected=${stream === ""}>all streams</option>
-          ${this.plant.streams.map(({ id, name }) => html`<option value=${id} ?selected=${id === stream}>${name}</option>`)}
-        </select></label
-      >
-      <label
-        ><span class="unseen">What</span>
-        <select @change=${choose("about")}>
-          ${Object.entries(subjects).map(([word, name]) => html`<option value=${word} ?selected=${word === about}>${name}</option>`)}
-        </select></label
-      >
+      <select aria-label="Stream" @change=${choose("stream")}>
+        <option value="" ?selected=${stream === ""}>all streams</option>
+        ${this.plant.streams.map(({ id, name }) => html`<option value=${id} ?selected=${id === stream}>${name}</option>`)}
+      </select>
+      <select aria-label="What" @change=${choose("about")}>
+        ${Object.entries(subjects).map(([word, name]) => html`<option value=${word} ?selected=${word === about}>${name}</option>`)}
+      </select>
     `;
   }
 
