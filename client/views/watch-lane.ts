@@ -1,4 +1,5 @@
 import { css, html, LitElement, nothing } from "lit";
+import { repeat } from "lit/directives/repeat.js";
 import type { Excursion, PlantProperty, PlantStream } from "../../core/messages/index.ts";
 import type { LanePicture } from "../charts/lane-drawing.ts";
 import { byUrgency } from "../data/alarm-order.ts";
@@ -361,7 +362,9 @@ export class WatchLane extends LitElement {
           : nothing
       }
       ${alarms.length === 0 ? html`<p class="quiet">No open alarms.</p>` : nothing}
-      ${alarms.map(
+      ${repeat(
+        alarms,
+        ({ key }) => key,
         (alarm) =>
           html`<mill-alarm-card .alarm=${alarm} .now=${now} .time=${time} .linkUp=${feed.linkUp}></mill-alarm-card>`,
       )}
