@@ -351,7 +351,9 @@ function drawUnusable(
 
 function drawMarks(pen: Pen, picture: LanePicture): void {
   const { ctx, colours, ratio } = pen;
-  for (const mark of picture.marks) {
+  // Marks of one time lie over each other: their words stand side by side, as far as there is room over the mark.
+  let wordsEnd = Number.NEGATIVE_INFINITY;
+  for (const mark of [...picture.marks].sort((a, b) => a.from - b.from)) {
     const x = pen.x(Math.max(mark.from, picture.from));
     const wide = Math.max(3 * ratio, pen.x(Math.min(mark.to, picture.to)) - x);
     if (mark.to < picture.from || mark.from > picture.to) continue;
@@ -365,12 +367,13 @@ function drawMarks(pen: Pen, picture: LanePicture): void {
             : colours.ink;
     ctx.fillRect(x, pen.top, wide, 3 * ratio);
     ctx.font = scaledFont(ratio);
-    const words = mark.kind;
-    if (ctx.measureText(words).width + 6 * ratio < wide) {
-      ctx.textAlign = "left";
-      ctx.textBaseline = "top";
-      ctx.fillText(words, x + 2 * ratio, pen.top + 5 * ratio);
-    }
+    const begin = Math.max(x + 2 * ratio, wordsEnd + 8 * ratio);
+    const end = begin + ctx.measureText(mark.kind).width;
+    if (end + 4 * ratio > x + wide) continue;
+    ctx.textAlign = "left";
+    ctx.textBaseline = "top";
+    ctx.fillText(mark.kind, begin, pen.top + 5 * ratio);
+    wordsEnd = end;
   }
 }
 

@@ -54,11 +54,13 @@ export function calibrateCommand(): Command {
     )
     .requiredOption("--property <name...>", "columns to calibrate; several make one model")
     .option("--unit <name=unit>", "unit of a property; repeat for several", unitOption)
-    .option(
-      "--steps <steps>",
-      "preprocessing, in order: absorbance; savitzky-golay WINDOW ORDER DERIVATIVE; snv; msc; detrend [ORDER]; offset [FROM-TO]; normalise area|length; select FROM-TO …; center; scale",
-      stepsOption,
-      stepsOption("center"),
+    .addOption(
+      new Option(
+        "--steps <steps>",
+        "preprocessing, in order: absorbance; savitzky-golay WINDOW ORDER DERIVATIVE; snv; msc; detrend [ORDER]; offset [FROM-TO]; normalise area|length; select FROM-TO …; center; scale",
+      )
+        .argParser(stepsOption)
+        .default(stepsOption("center"), "center"),
     )
     .option(
       "--components <n|auto>",
@@ -67,13 +69,12 @@ export function calibrateCommand(): Command {
       "auto",
     )
     .option("--most-components <n>", "how many components to cross-validate", countOption, 15)
-    .option(
-      "--validate <how>",
-      "loo, group, or folds:N[:interleaved|contiguous|random[:SEED]]",
-      validationOption,
-      validationOption("loo"),
+    .addOption(
+      new Option("--validate <how>", "loo, group, or folds:N[:interleaved|contiguous|random[:SEED]]")
+        .argParser(validationOption)
+        .default(validationOption("loo"), "loo"),
     )
-    .option("--exclude <id...>", "samples to leave out; recorded in the model", [])
+    .addOption(new Option("--exclude <id...>", "samples to leave out; recorded in the model").default([], "none"))
     .option("--exclude-reason <text>", "why they are left out; recorded in the model")
     .addOption(new Option("--axis-unit <unit>", "unit of the channels").choices(["nm", "cm-1"]).default("nm"))
     .addOption(

@@ -4,7 +4,16 @@ import type { Changes, StoreWriter } from "../store/store.ts";
 import type { MessageBatch, Source } from "./source.ts";
 import { type EngineStream, rulesForHistory } from "./streams.ts";
 import type { Topics } from "./topics.ts";
-import { type Command, type CommandOutcome, type Input, type Load, streamNow, type Turn, takeTurn } from "./turn.ts";
+import {
+  type Command,
+  type CommandOutcome,
+  type Input,
+  type Load,
+  loadTopic,
+  streamNow,
+  type Turn,
+  takeTurn,
+} from "./turn.ts";
 
 /** What a turn of the engine tells the outside, once it is on record. */
 export interface Told {
@@ -231,8 +240,9 @@ export class Engine {
       const known = this.#loads.get(stream);
       if (known) this.#loads.set(stream, { ...load, share: known.share });
     }
-    for (const { stream } of turn.changes.refusals) {
-      if (stream !== null) this.#refused.set(stream, (this.#refused.get(stream) ?? 0) + 1);
+    for (const { stream, topic } of turn.changes.refusals) {
+      // What a load of history could not use is not the line's trouble of today.
+      if (stream !== null && topic !== loadTopic) this.#refused.set(stream, (this.#refused.get(stream) ?? 0) + 1);
     }
     batch?.acknowledge();
     for (const { id, outcome } of turn.replies) {

@@ -40,6 +40,9 @@ export type Input =
   | { kind: "history"; load: Load; readings: Reading[] }
   | { kind: "history ends"; load: Load; now: number };
 
+/** stands for the topic of what a load brought */
+export const loadTopic = "load";
+
 /** Recorded history of one stream on its way in: judged with a state of its own, beside the live one. */
 export interface Load {
   stream: string;
@@ -226,7 +229,7 @@ class TurnBuilder {
     let { state } = this.#loadNow(load);
     const refuse = (reading: Reading, reason: string, says: string) => {
       const payload = Buffer.from(`time ${reading.time}, sequence ${reading.sequence}`);
-      this.#refusals.push({ stream: load.stream, topic: "load", receivedAt: reading.time, reason, says, payload });
+      this.#refusals.push({ stream: load.stream, topic: loadTopic, receivedAt: reading.time, reason, says, payload });
     };
     for (const reading of readings) {
       if (reading.time >= load.until) {
