@@ -132,12 +132,6 @@ export class TopBar extends LitElement {
       }
       select {
         width: 11ch;
-        font: inherit;
-        color: var(--ink);
-        background: var(--lane);
-        border: 1px solid var(--edge);
-        border-radius: 4px;
-        min-height: 28px;
       }
       @media (max-width: 700px) {
         header {

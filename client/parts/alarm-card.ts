@@ -78,15 +78,6 @@ export class AlarmCard extends LitElement {
         justify-items: start;
         padding: 4px 0;
       }
-      input,
-      select {
-        font: inherit;
-        color: var(--ink);
-        background: var(--lane);
-        border: 1px solid var(--edge);
-        border-radius: 4px;
-        min-height: 28px;
-      }
       .failed {
         font-weight: 700;
       }

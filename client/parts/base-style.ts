@@ -73,6 +73,25 @@ export const baseStyle = css`
     border-style: dashed;
     cursor: default;
   }
+  select,
+  input:not([type="checkbox"]) {
+    font: inherit;
+    color: var(--ink);
+    background: var(--lane);
+    border: 1px solid var(--edge);
+    border-radius: 4px;
+    min-height: 28px;
+    padding: 2px 8px;
+  }
+  /* over a view: its title, what it is about, and what can be chosen */
+  .head {
+    display: flex;
+    flex-wrap: wrap;
+    gap: 8px 16px;
+    align-items: center;
+    padding: 8px 0;
+    min-height: 52px;
+  }
   :focus-visible {
     outline: 3px solid var(--focus);
     outline-offset: 2px;

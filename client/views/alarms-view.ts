@@ -86,14 +86,6 @@ export class AlarmsView extends LitElement {
         gap: 4px 16px;
         align-items: baseline;
       }
-      select {
-        font: inherit;
-        color: var(--ink);
-        background: var(--lane);
-        border: 1px solid var(--edge);
-        border-radius: 4px;
-        min-height: 28px;
-      }
       .tick {
         margin-left: auto;
         min-width: 24px;

@@ -44,22 +44,6 @@ export class ExcursionsView extends LitElement {
   static override styles = [
     baseStyle,
     css`
-      .head {
-        display: flex;
-        flex-wrap: wrap;
-        gap: 8px 16px;
-        align-items: center;
-        padding: 8px 0;
-        min-height: 52px;
-      }
-      select {
-        font: inherit;
-        color: var(--ink);
-        background: var(--lane);
-        border: 1px solid var(--edge);
-        border-radius: 4px;
-        min-height: 28px;
-      }
       .kind {
         display: flex;
         gap: 6px;

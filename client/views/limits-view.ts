@@ -50,24 +50,6 @@ export class LimitsView extends LitElement {
   static override styles = [
     baseStyle,
     css`
-      .head {
-        display: flex;
-        flex-wrap: wrap;
-        gap: 8px 16px;
-        align-items: center;
-        padding: 8px 0;
-        min-height: 52px;
-      }
-      select,
-      input {
-        font: inherit;
-        color: var(--ink);
-        background: var(--lane);
-        border: 1px solid var(--edge);
-        border-radius: 4px;
-        min-height: 28px;
-        padding: 2px 8px;
-      }
       section {
         margin-bottom: 12px;
       }

@@ -54,22 +54,6 @@ export class ReadingView extends LitElement {
   static override styles = [
     baseStyle,
     css`
-      .head {
-        display: flex;
-        flex-wrap: wrap;
-        align-items: center;
-        gap: 8px 12px;
-        padding: 8px 0;
-        min-height: 52px;
-      }
-      select {
-        font: inherit;
-        color: var(--ink);
-        background: var(--lane);
-        border: 1px solid var(--edge);
-        border-radius: 4px;
-        min-height: 28px;
-      }
       .body {
         display: grid;
         grid-template-columns: minmax(0, 1fr) 380px;

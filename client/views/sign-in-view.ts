@@ -21,13 +21,7 @@ export class SignInView extends LitElement {
         gap: 4px;
       }
       input {
-        font: inherit;
-        color: var(--ink);
-        background: var(--lane);
-        border: 1px solid var(--edge);
-        border-radius: 4px;
         min-height: 36px;
-        padding: 4px 8px;
       }
       button {
         justify-content: center;
