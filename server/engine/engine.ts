@@ -178,7 +178,13 @@ export class Engine {
     clearInterval(this.#ticking);
     await this.#source?.close();
     const events = [this.#event("service stopped", "The engine was stopped.")];
-    this.#store.commit({ readings: [], refusals: [], events, excursions: [], states: new Map() });
+    try {
+      this.#store.commit({ readings: [], refusals: [], events, excursions: [], states: new Map() });
+    } catch (error) {
+      this.#log(
+        `The stop could not be put on record (${(error as Error).message}); all that was acknowledged is there.`,
+      );
+    }
     this.#store.close();
   }
 

@@ -20,6 +20,7 @@ const slowAboveBytes = 256 * 1024;
 const mostHeldReadings = 500;
 /** Events are never left out. A client that takes none for so long is cut off, and resumes from its cursor. */
 const mostHeldEvents = 20_000;
+const farewellMs = 1000;
 const mostMessageBytes = 64 * 1024;
 const mostEventsOnResume = 20_000;
 
@@ -116,6 +117,10 @@ export class LiveHub {
     clearInterval(this.#beating);
     for (const { socket } of this.#clients) socket.close(1001, "the service is stopping");
     this.#server.close();
+    // Who does not answer the farewell must not hold up the stop.
+    setTimeout(() => {
+      for (const { socket } of this.#clients) socket.terminate();
+    }, farewellMs).unref();
   }
 
   #welcome(socket: WebSocket, headers: IncomingHttpHeaders): void {

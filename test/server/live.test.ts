@@ -1,3 +1,4 @@
+import { connect } from "node:net";
 import { afterAll, beforeAll, expect, test } from "vitest";
 import { WebSocket } from "ws";
 import { beatEveryMs, checker, type FromServer, FromServerSchema, type Judged } from "../../core/messages/index.ts";
@@ -128,4 +129,22 @@ test.each<[string, unknown, RegExp]>([
 
 test("a page from elsewhere gets no link", async () => {
   await expect(open({ origin: "http://elsewhere.example" })).rejects.toThrow("403");
+});
+
+test("a client that never answers the farewell does not hold up the stop", async () => {
+  const other = await startChain();
+  const { hostname, port } = new URL(other.url);
+  const raw = connect(Number(port), hostname);
+  raw.write(
+    `GET /live HTTP/1.1\r\nHost: ${hostname}:${port}\r\nUpgrade: websocket\r\nConnection: Upgrade\r\nSec-WebSocket-Version: 13\r\nSec-WebSocket-Key: ${Buffer.alloc(16, 7).toString("base64")}\r\n\r\n`,
+  );
+  await new Promise((resolve) => raw.once("data", resolve));
+  raw.pause(); // reads nothing any more, and never closes
+  const stopped = await Promise.race([
+    other.stop(),
+    new Promise((resolve) => setTimeout(resolve, 15_000, "still running")),
+  ]);
+  expect(stopped).toBe(0);
+  raw.destroy();
+  other.remove();
 });
