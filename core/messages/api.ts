@@ -81,6 +81,7 @@ export const TrendSchema = Type.Object({
   count: numbers,
   /** union of the verdict masks (core/messages/verdict.ts) */
   verdict: numbers,
+  /** mean: over the readings that were inside where there are any, else over all; min and max: over all */
   properties: Type.Record(
     Type.String(),
     Type.Object({

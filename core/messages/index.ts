@@ -98,6 +98,7 @@ export {
   resultOf,
 } from "./result.ts";
 export {
+  isInside,
   onlyInside,
   type Verdict,
   VerdictSchema,

@@ -36,6 +36,11 @@ export function worstOfMask(mask: number): Verdict | undefined {
   return verdicts.find((word) => (mask & bits[word]) !== 0);
 }
 
+/** True when a reading's mask says inside (it then says nothing else), or when one of the readings behind a mask was. */
+export function isInside(mask: number): boolean {
+  return (mask & bits.inside) !== 0;
+}
+
 /** True when every reading behind the mask was inside. */
 export function onlyInside(mask: number): boolean {
   return mask === bits.inside;

@@ -66,7 +66,13 @@ function trendOf(readings: readonly NewReading[], from: number, to: number, widt
       [...names, "acetate"].map((name) => [
         name,
         {
-          mean: column((judged) => scored(judged, name)?.value, mean),
+          mean: intervals.map((all) => {
+            // What was not inside stays out of a mean, unless it is all there is.
+            const values = (some: Judged[]) => some.flatMap((judged) => scored(judged, name)?.value ?? []);
+            const trusted = values(all.filter(({ verdict }) => verdict[0] === "inside"));
+            const found = trusted.length > 0 ? trusted : values(all);
+            return found.length > 0 ? mean(found) : null;
+          }),
           min: column(
             (judged) => scored(judged, name)?.value,
             (found) => Math.min(...found),
@@ -184,4 +190,15 @@ describe.each(makers)("a trend by $name", ({ name, place }) => {
       again.close();
     },
   );
+
+  test.runIf(name === "SQLite")("roll-ups of the form before are made anew, not read as the present ones", () => {
+    const db = new Database(at.file);
+    db.exec("UPDATE rollup SET numbers = zeroblob(96); PRAGMA user_version = 4");
+    db.close();
+    at.writer().close();
+    const reader = at.reader();
+    const trend = reader.trend(stream, [...names, "acetate"], begin, last, 100);
+    expectSame(trend, trendOf(readings, begin, last, trend.widthMs), "made anew");
+    reader.close();
+  });
 });

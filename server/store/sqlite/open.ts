@@ -23,6 +23,11 @@ const steps: readonly ((db: Database.Database) => void)[] = [
   },
   chainEvents,
   addRetirement,
+  // Roll-ups keep the readings that were inside apart: those of the form before are made anew.
+  (db) => {
+    db.exec("DELETE FROM rollup");
+    rollUpAll(db);
+  },
 ];
 
 /** A record up to this size is looked through as a whole at every start: less than a second. A larger one is by every backup. */

@@ -1,3 +1,5 @@
+import { isInside } from "../../../core/messages/index.ts";
+
 /** How often, how much, and between which bounds one quantity was. */
 export class Spread {
   n = 0;
@@ -45,9 +47,12 @@ export interface SummedStretch {
 }
 
 const bytes = 8;
-/** T² ratio and Q ratio: count, sum, largest. Then each property: count, sum, smallest, largest; its uncertainty: count, sum. */
+/**
+ * T² ratio and Q ratio: count, sum, largest. Then each property: count, sum, smallest, largest; its uncertainty: count, sum; count and sum
+ * over the readings that were inside.
+ */
 const head = 6;
-const perProperty = 6;
+const perProperty = 8;
 
 /**
  * Readings of a stretch of time, summed: what a trend shows of one interval, and what a roll-up keeps of one minute or hour. Summaries join
@@ -63,10 +68,21 @@ export class Summary {
   readonly q = new Spread();
   readonly values: Spread[];
   readonly uncertainties: Spread[];
+  /** the values of readings that were inside, and no others */
+  readonly trusted: Spread[];
 
   constructor(properties: number) {
     this.values = Array.from({ length: properties }, () => new Spread());
     this.uncertainties = Array.from({ length: properties }, () => new Spread());
+    this.trusted = Array.from({ length: properties }, () => new Spread());
+  }
+
+  /**
+   * The mean of a property: over the readings that were inside, as long as there are any. What the model cannot support stays out of an
+   * average (ASTM D6122); where it is all there is, its mean is given, and the verdict says what it is worth.
+   */
+  mean(property: number): number | null {
+    return this.trusted[property].mean ?? this.values[property].mean;
   }
 
   /** `places[i]` tells where property i of this summary stands among those of the reading's model; −1: it has none such. */
@@ -80,6 +96,7 @@ export class Summary {
       const value = numbers.readDoubleLE(at);
       const uncertainty = numbers.readDoubleLE(at + bytes);
       if (!Number.isNaN(value)) this.values[i].add(value);
+      if (!Number.isNaN(value) && isInside(verdict)) this.trusted[i].add(value);
       if (!Number.isNaN(uncertainty)) this.uncertainties[i].add(uncertainty);
     }
   }
@@ -95,16 +112,18 @@ export class Summary {
       const at = head + perProperty * places[i];
       this.values[i].join(read(at), read(at + 1), read(at + 2), read(at + 3));
       this.uncertainties[i].join(read(at + 4), read(at + 5), Number.POSITIVE_INFINITY, Number.NEGATIVE_INFINITY);
+      this.trusted[i].join(read(at + 6), read(at + 7), Number.POSITIVE_INFINITY, Number.NEGATIVE_INFINITY);
     }
   }
 
   /** Its sums and bounds as bytes, for the row of a roll-up. */
   get numbers(): Buffer {
-    const { t2, q, values, uncertainties } = this;
+    const { t2, q, values, uncertainties, trusted } = this;
     const numbers = new Float64Array(head + perProperty * values.length);
     numbers.set([t2.n, t2.sum, t2.max, q.n, q.sum, q.max]);
     values.forEach(({ n, sum, min, max }, i) => {
-      numbers.set([n, sum, min, max, uncertainties[i].n, uncertainties[i].sum], head + perProperty * i);
+      const others = [uncertainties[i].n, uncertainties[i].sum, trusted[i].n, trusted[i].sum];
+      numbers.set([n, sum, min, max, ...others], head + perProperty * i);
     });
     return Buffer.from(numbers.buffer);
   }

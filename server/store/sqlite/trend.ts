@@ -147,7 +147,7 @@ function close(out: Trend, names: readonly string[], interval: Summary): void {
   out.verdict.push(interval.verdict);
   names.forEach((name, i) => {
     const columns = out.properties[name];
-    columns.mean.push(interval.values[i].mean);
+    columns.mean.push(interval.mean(i));
     columns.min.push(interval.values[i].least);
     columns.max.push(interval.values[i].most);
     columns.uncertainty.push(interval.uncertainties[i].mean);
