@@ -4,7 +4,8 @@ import uplotStyle from "uplot/dist/uPlot.min.css?inline";
 import type { Verdict } from "../../core/messages/index.ts";
 import { verdictColour } from "../parts/verdict-mark.ts";
 import { chartFont, scaledFont } from "./canvas-text.ts";
-import { type Colours, coloursAt, onTheme } from "./colours.ts";
+import { type Colours, coloursAt } from "./colours.ts";
+import { Redraw } from "./redraw.ts";
 
 export interface PlacePicture {
   /** ratios to the limits: of the calibration samples, and of the reading */
@@ -26,8 +27,20 @@ export class PlaceMap extends LitElement {
   declare picture: PlacePicture;
   declare label: string;
   #plot: uPlot | undefined;
-  #stop: (() => void)[] = [];
   #size = "";
+  constructor() {
+    super();
+    new Redraw(
+      this,
+      (always) => this.#build(always),
+      () => {
+        this.#plot?.destroy();
+        this.#plot = undefined;
+        this.#size = "";
+      },
+    );
+  }
+
   static override styles = [
     unsafeCSS(uplotStyle),
     css`
@@ -50,22 +63,6 @@ export class PlaceMap extends LitElement {
 
   override render() {
     return html`<div class="plot" role="img" aria-label=${this.label ?? ""}></div>`;
-  }
-
-  override connectedCallback(): void {
-    super.connectedCallback();
-    const resized = new ResizeObserver(() => this.#build());
-    resized.observe(this);
-    this.#stop = [() => resized.disconnect(), onTheme(() => this.#build(true))];
-    void document.fonts.ready.then(() => this.#build(true));
-  }
-
-  override disconnectedCallback(): void {
-    super.disconnectedCallback();
-    for (const stop of this.#stop) stop();
-    this.#plot?.destroy();
-    this.#plot = undefined;
-    this.#size = "";
   }
 
   override updated(changed: PropertyValues<this>): void {

@@ -3,9 +3,10 @@ import uPlot from "uplot";
 import uplotStyle from "uplot/dist/uPlot.min.css?inline";
 import { figure, grouped } from "../words/quantity.ts";
 import { chartFont } from "./canvas-text.ts";
-import { coloursAt, onTheme } from "./colours.ts";
+import { coloursAt } from "./colours.ts";
 import { drawPanel, drawPanelGround, type PanelPen } from "./panel-drawing.ts";
 import { type PanelPicture, panelRange } from "./panel-picture.ts";
+import { Redraw } from "./redraw.ts";
 import { valueTicks } from "./value-ticks.ts";
 
 /** One panel over the wavelengths. Panels of a view share the cursor; "point-wavelength" tells where it is. */
@@ -27,7 +28,19 @@ export class SpectrumPanel extends LitElement {
   declare domain: [number, number];
   #plot: uPlot | undefined;
   #size = "";
-  #stop: (() => void)[] = [];
+  constructor() {
+    super();
+    new Redraw(
+      this,
+      (always) => this.#build(always),
+      () => {
+        this.#plot?.destroy();
+        this.#plot = undefined;
+        this.#size = "";
+      },
+    );
+  }
+
   static override styles = [
     unsafeCSS(uplotStyle),
     css`
@@ -59,22 +72,6 @@ export class SpectrumPanel extends LitElement {
 
   override render() {
     return html`<div class="plot" role="application" aria-roledescription="chart" tabindex="0" aria-label=${this.label ?? ""} @keydown=${this.#key}></div>`;
-  }
-
-  override connectedCallback(): void {
-    super.connectedCallback();
-    const resized = new ResizeObserver(() => this.#build());
-    resized.observe(this);
-    this.#stop = [() => resized.disconnect(), onTheme(() => this.#build(true))];
-    void document.fonts.ready.then(() => this.#build(true));
-  }
-
-  override disconnectedCallback(): void {
-    super.disconnectedCallback();
-    for (const stop of this.#stop) stop();
-    this.#plot?.destroy();
-    this.#plot = undefined;
-    this.#size = "";
   }
 
   override updated(changed: PropertyValues<this>): void {
