@@ -1,5 +1,6 @@
 import { css, html, LitElement } from "lit";
 import { repeat } from "lit/directives/repeat.js";
+import { html as staticHtml } from "lit/static-html.js";
 import type { Plant } from "../../core/messages/index.ts";
 import { isWaiting } from "../data/alarm-order.ts";
 import { ApiError, api } from "../data/api.ts";
@@ -8,21 +9,9 @@ import { baseStyle } from "../parts/base-style.ts";
 import { type PlantTime, plantTime } from "../words/plant-time.ts";
 import { type Notice, notices } from "./notices.ts";
 import { href, parseRoute, type Route } from "./route.ts";
+import { ViewLoader } from "./view-loader.ts";
+import { views } from "./views.ts";
 import "./top-bar.ts";
-import "../parts/verdict-mark.ts";
-import "../parts/priority-mark.ts";
-import "../parts/lane-number.ts";
-import "../parts/alarm-card.ts";
-import "../parts/set-aside-row.ts";
-import "../parts/range-bar.ts";
-import "../charts/lane-chart.ts";
-import "../views/watch-lane.ts";
-import "../views/watch-view.ts";
-import "../views/reading-view.ts";
-import "../views/excursions-view.ts";
-import "../views/alarms-view.ts";
-import "../views/limits-view.ts";
-import "../views/plant-view.ts";
 import "../views/sign-in-view.ts";
 
 const retryMs = 2000;
@@ -47,6 +36,7 @@ export class MillraceApp extends LitElement {
   #wasUp = false;
   /** cursor of the newest change of limits that the drawn limits know of */
   #limitsKnown = 0;
+  readonly #loader = new ViewLoader(this);
   readonly #stop = new AbortController();
 
   constructor() {
@@ -282,20 +272,15 @@ export class MillraceApp extends LitElement {
 
   #view(plant: Plant, feed: Feed, time: PlantTime) {
     const { route } = this;
-    switch (route.view) {
-      case "watch":
-        return html`<mill-watch-view .plant=${plant} .feed=${feed} .time=${time} .route=${route}></mill-watch-view>`;
-      case "reading":
-        return html`<mill-reading-view .plant=${plant} .feed=${feed} .time=${time} .route=${route}></mill-reading-view>`;
-      case "excursions":
-        return html`<mill-excursions-view .plant=${plant} .feed=${feed} .time=${time} .route=${route}></mill-excursions-view>`;
-      case "limits":
-        return html`<mill-limits-view .plant=${plant} .feed=${feed} .time=${time} .route=${route}></mill-limits-view>`;
-      case "alarms":
-        return html`<mill-alarms-view .plant=${plant} .feed=${feed} .time=${time}></mill-alarms-view>`;
-      case "plant":
-        return html`<mill-plant-view .plant=${plant} .feed=${feed} .time=${time}></mill-plant-view>`;
-    }
+    const { word, tag } = views[route.view];
+    const state = this.#loader.want(route.view);
+    if (state === "ready")
+      return staticHtml`<${tag} .plant=${plant} .feed=${feed} .time=${time} .route=${route}></${tag}>`;
+    if (state === "loading") return html`<p class="start" role="status">Fetching ${word} …</p>`;
+    return html`<div class="start" role="alert">
+      <p>${word} could not be fetched: the server does not answer, or was updated since this page was loaded.</p>
+      <button @click=${() => location.reload()}>Load the page again</button>
+    </div>`;
   }
 
   #go(route: Route, replace: boolean): void {
@@ -327,8 +312,8 @@ function needsSignIn(error: unknown): boolean {
 }
 
 function nameOf(route: Route): string {
-  const view = route.view[0].toUpperCase() + route.view.slice(1);
-  return "stream" in route && route.stream ? `${view} ${route.stream}` : view;
+  const { word } = views[route.view];
+  return "stream" in route && route.stream ? `${word} ${route.stream}` : word;
 }
 
 customElements.define("mill-app", MillraceApp);

@@ -3,24 +3,17 @@ import type { OpenAlarm, Plant } from "../../core/messages/index.ts";
 import { calling, countOf } from "../data/alarm-order.ts";
 import { api } from "../data/api.ts";
 import { baseStyle } from "../parts/base-style.ts";
+import "../parts/priority-mark.ts";
 import type { PlantTime } from "../words/plant-time.ts";
-import { defaultWindow, href, type Route, type ViewName } from "./route.ts";
+import type { Route } from "./route.ts";
 import { chooseTheme, chosenTheme, type ThemeChoice, themes } from "./theme-choice.ts";
+import "./view-nav.ts";
 
 const themeNames: Record<ThemeChoice, string> = {
   system: "as system",
   light: "light",
   dark: "dark",
 };
-const views: { view: ViewName; name: string }[] = [
-  { view: "watch", name: "Watch" },
-  { view: "reading", name: "Reading" },
-  { view: "excursions", name: "Excursions" },
-  { view: "alarms", name: "Alarms" },
-  { view: "limits", name: "Limits" },
-  { view: "plant", name: "Plant" },
-];
-
 /** Site, views, open alarms by priority, link, the plant's clock and zone, who is signed in, light or dark. */
 export class TopBar extends LitElement {
   static override properties = {
@@ -64,29 +57,6 @@ export class TopBar extends LitElement {
         border: 1px solid var(--edge);
         border-radius: 4px;
         padding: 0 6px;
-      }
-      nav ul {
-        display: flex;
-        flex-wrap: wrap;
-        gap: 2px;
-      }
-      nav a {
-        display: block;
-        padding: 12px 10px 9px;
-        border-bottom: 3px solid transparent;
-        color: var(--quiet);
-        text-decoration: none;
-      }
-      nav a:hover {
-        color: var(--ink);
-        border-color: var(--edge);
-      }
-      nav a[aria-current] {
-        color: var(--ink);
-        border-color: var(--ink);
-      }
-      nav a:focus-visible {
-        outline-offset: -3px;
       }
       .right {
         margin-left: auto;
@@ -133,17 +103,21 @@ export class TopBar extends LitElement {
       select {
         width: 11ch;
       }
+      /* Ten views and the state of things do not fit one line of a laptop. */
+      @media (max-width: 1750px) {
+        mill-view-nav {
+          order: 3;
+          width: 100%;
+        }
+        .site,
+        .right {
+          min-height: 36px;
+        }
+      }
       @media (max-width: 700px) {
         header {
           padding: 4px 8px;
           gap: 0 12px;
-        }
-        nav {
-          order: 3;
-          width: 100%;
-        }
-        nav a {
-          padding: 9px 8px 6px;
         }
         .right {
           gap: 2px 12px;
@@ -158,14 +132,7 @@ export class TopBar extends LitElement {
     const { name, role, signedIn } = plant.person;
     return html`<header>
       <div class="site">${plant.name} ${plant.demo ? html`<small title="Nothing on these screens is measured.">demo: invented plant</small>` : nothing}</div>
-      <nav aria-label="Views">
-        <ul>
-          ${views.map(
-            ({ view, name: word }) =>
-              html`<li><a href=${this.#hrefOf(view)} aria-current=${this.route.view === view ? "page" : nothing}>${word}</a></li>`,
-          )}
-        </ul>
-      </nav>
+      <mill-view-nav .route=${this.route}></mill-view-nav>
       <div class="right">
         ${this.#counts()}
         <span class="link ${linkUp ? "" : "lost"}">${linkUp ? "link up" : "link lost"}</span>
@@ -182,12 +149,6 @@ export class TopBar extends LitElement {
         </label>
       </div>
     </header>`;
-  }
-
-  #hrefOf(view: ViewName): string {
-    if (view === "watch")
-      return href({ view, window: this.route.view === "watch" ? this.route.window : defaultWindow });
-    return href({ view } as Route);
   }
 
   #counts() {

@@ -4,6 +4,7 @@ import { api } from "../data/api.ts";
 import { duration } from "../words/duration.ts";
 import type { PlantTime } from "../words/plant-time.ts";
 import { baseStyle } from "./base-style.ts";
+import "./priority-mark.ts";
 
 /** One alarm that annunciates nothing at present: why, until when, by whom, whether its condition holds all the same, and the way back. */
 export class SetAsideRow extends LitElement {

@@ -9,6 +9,8 @@ import { Listening, ticking } from "../data/listening.ts";
 import { Loaded } from "../data/loaded.ts";
 import { centredOn } from "../data/time-window.ts";
 import "./alarm-figures.ts";
+import "../parts/alarm-card.ts";
+import "../parts/set-aside-row.ts";
 import { baseStyle } from "../parts/base-style.ts";
 import type { PlantTime } from "../words/plant-time.ts";
 import { counted } from "../words/quantity.ts";

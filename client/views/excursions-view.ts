@@ -7,6 +7,7 @@ import { Listening, ticking } from "../data/listening.ts";
 import { Loaded } from "../data/loaded.ts";
 import { centredOn } from "../data/time-window.ts";
 import { baseStyle } from "../parts/base-style.ts";
+import "../parts/verdict-mark.ts";
 import { verdictColour } from "../parts/verdict-mark.ts";
 import { duration } from "../words/duration.ts";
 import type { PlantTime } from "../words/plant-time.ts";

@@ -13,6 +13,9 @@ import { entryAt, type HeldTrend } from "../data/trend-columns.ts";
 import { TrendLoader } from "../data/trend-loader.ts";
 import { type TrendSight, trendRow, trendRows, trendSentence } from "../data/trend-words.ts";
 import { baseStyle } from "../parts/base-style.ts";
+import "../charts/lane-chart.ts";
+import "../parts/alarm-card.ts";
+import "../parts/lane-number.ts";
 import type { PlantTime } from "../words/plant-time.ts";
 import { counted, named } from "../words/quantity.ts";
 

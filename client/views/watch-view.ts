@@ -10,6 +10,8 @@ import { remembered } from "../data/remembered.ts";
 import { edges, pan, span, stopAt, type TimeWindow, zoom } from "../data/time-window.ts";
 import { baseStyle } from "../parts/base-style.ts";
 import type { RangeWish } from "../parts/range-bar.ts";
+import "../parts/range-bar.ts";
+import "./watch-lane.ts";
 import type { PlantTime } from "../words/plant-time.ts";
 
 /** excursions that are marked on the time axis, at most */
