@@ -97,6 +97,7 @@ export {
   ResultSchema,
   resultOf,
 } from "./result.ts";
+export { type Shift, ShiftSchema, type Shifts, ShiftsSchema } from "./shift.ts";
 export {
   isInside,
   onlyInside,

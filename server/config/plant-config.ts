@@ -2,6 +2,7 @@ import { readFileSync } from "node:fs";
 import { dirname, resolve } from "node:path";
 import { type Static, Type } from "typebox";
 import { MillraceError, type Mismatch, mismatchSentence } from "../../core/errors.ts";
+import { calendarDays, ShiftPlanError, ShiftPlanSchema, shiftCalendar } from "../../core/handover/index.ts";
 import { AxisSpecSchema, checker, StreamIdSchema } from "../../core/messages/index.ts";
 
 const pair = Type.Tuple([Type.Number(), Type.Number()]);
@@ -85,6 +86,8 @@ export const PlantConfigSchema = Type.Object({
   limits: Type.Optional(Type.Object({ approval: Type.Literal("another person") })),
   /** how long spectra are kept, but those in excursions, which stay; without it all stay. Results stay in any case */
   retention: Type.Optional(Type.Object({ spectraDays: Type.Number({ minimum: 1 }) })),
+  /** when the shifts begin and end, and whose they are; without it every calendar day is one */
+  shifts: Type.Optional(ShiftPlanSchema),
   /** an invented plant: the screens say so, and an invented person is signed in */
   demo: Type.Optional(Type.Boolean()),
   streams: Type.Array(StreamConfigSchema, { minItems: 1 }),
@@ -134,6 +137,7 @@ export function parsePlantConfig(text: string, file: string): PlantConfig {
   if (wrong) throw new ConfigError(wrong.field ? `${file}: ${wrong.field}` : file, { ...wrong, todo: "Correct it." });
   const config = value as PlantConfig;
   checkTimeZone(config.timeZone, file);
+  checkShifts(config, file);
   checkStreams(config.streams, file);
   checkHttp(config.http, `${file}: http`);
   if ("embedded" in config.mqtt.broker) {
@@ -174,6 +178,15 @@ function checkTimeZone(timeZone: string, file: string): void {
       todo: "Correct it.",
       cause,
     });
+  }
+}
+
+function checkShifts({ shifts = calendarDays, timeZone }: PlantConfig, file: string): void {
+  try {
+    shiftCalendar(shifts, timeZone);
+  } catch (cause) {
+    if (!(cause instanceof ShiftPlanError)) throw cause;
+    throw new ShiftPlanError(`${file}: shifts: ${cause.message}`, { cause });
   }
 }
 

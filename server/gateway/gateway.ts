@@ -22,6 +22,7 @@ import { limitSetRoutes } from "./routes/limit-sets.ts";
 import { loadRoutes } from "./routes/load.ts";
 import { peopleRoutes } from "./routes/people.ts";
 import { recordRoutes } from "./routes/record.ts";
+import { shiftRoutes } from "./routes/shifts.ts";
 import { streamRoutes } from "./routes/streams.ts";
 import { type Who, whoOf } from "./who.ts";
 
@@ -135,6 +136,7 @@ export async function startGateway(options: {
       excursionRoutes(api, parts);
       loadRoutes(api, parts);
       limitSetRoutes(api, parts);
+      shiftRoutes(api, parts);
       api.get("/openapi.json", { schema: { hide: true } }, () => app.swagger());
       api.setNotFoundHandler((request) => {
         throw new RequestError(
