@@ -1,25 +1,15 @@
-import { spawn } from "node:child_process";
-import { join } from "node:path";
-import { fileURLToPath } from "node:url";
 import { type Browser, chromium, type Page } from "playwright-core";
 import { afterAll, beforeAll, expect, test } from "vitest";
 import { makePlant, type PlantStreamId, spectrumAt } from "../../simulator/plant/index.ts";
 import { type Chain, eventually, startChain } from "../chain.ts";
 import { findChromium } from "../chromium.ts";
+import { signInAs, user } from "../people.ts";
 
-const program = fileURLToPath(new URL("../../dist/server/main.js", import.meta.url));
-const password = "a long enough secret";
 const plant = makePlant(1);
 let chain: Chain;
 let browser: Browser;
 let page: Page;
 let time = Date.now() - 60_000;
-
-async function user(...args: string[]): Promise<void> {
-  const child = spawn(process.execPath, [program, "user", ...args, "--config", join(chain.folder, "plant.json")]);
-  child.stdin.end(`${password}\n`);
-  await new Promise((resolve) => child.once("exit", resolve));
-}
 
 /** Readings that the model never saw: three of them raise the alarm, three healthy ones clear it. */
 async function publish(stream: PlantStreamId, odd: boolean, count = 3): Promise<void> {
@@ -41,13 +31,11 @@ const card = (stream: string, title: string) =>
 
 beforeAll(async () => {
   chain = await startChain();
-  await user("add", "E. Penn", "--role", "engineer");
+  await user(chain, ["add", "E. Penn", "--role", "engineer"]);
   browser = await chromium.launch({ executablePath: findChromium(), args: ["--no-sandbox", "--disable-gpu"] });
   page = await browser.newPage();
   await page.goto(`${chain.url}/alarms`);
-  await page.getByLabel("Name").fill("E. Penn");
-  await page.getByLabel("Password").fill(password);
-  await page.getByRole("button", { name: "Sign in" }).click();
+  await signInAs(page, "E. Penn");
 });
 afterAll(async () => {
   await browser?.close();

@@ -1,30 +1,19 @@
-import { spawn } from "node:child_process";
 import { readFileSync, writeFileSync } from "node:fs";
 import { join } from "node:path";
-import { fileURLToPath } from "node:url";
 import { type Browser, chromium, type Page } from "playwright-core";
 import { afterAll, beforeAll, expect, test } from "vitest";
 import { type Chain, startChain } from "../chain.ts";
 import { findChromium } from "../chromium.ts";
+import { signInAs, user } from "../people.ts";
 
-const program = fileURLToPath(new URL("../../dist/server/main.js", import.meta.url));
-const password = "a long enough secret";
 let chain: Chain;
 let browser: Browser;
-
-async function user(...args: string[]): Promise<void> {
-  const child = spawn(process.execPath, [program, "user", ...args, "--config", join(chain.folder, "plant.json")]);
-  child.stdin.end(`${password}\n`);
-  await new Promise((resolve) => child.once("exit", resolve));
-}
 
 /** A browser of their own, with somebody signed in and the limits of the recycled blend open. */
 async function as(name: string): Promise<Page> {
   const page = await (await browser.newContext()).newPage();
   await page.goto(`${chain.url}/limits/bq-305`);
-  await page.getByLabel("Name").fill(name);
-  await page.getByLabel("Password").fill(password);
-  await page.getByRole("button", { name: "Sign in" }).click();
+  await signInAs(page, name);
   await page.getByRole("heading", { name: "Versions" }).waitFor();
   return page;
 }
@@ -38,9 +27,9 @@ beforeAll(async () => {
     JSON.stringify({ ...JSON.parse(readFileSync(config, "utf8")), limits: { approval: "another person" } }),
   );
   chain = await chain.again();
-  await user("add", "E. Penn", "--role", "engineer");
-  await user("add", "O. Rook", "--role", "engineer");
-  await user("add", "V. Iew", "--role", "viewer");
+  await user(chain, ["add", "E. Penn", "--role", "engineer"]);
+  await user(chain, ["add", "O. Rook", "--role", "engineer"]);
+  await user(chain, ["add", "V. Iew", "--role", "viewer"]);
   browser = await chromium.launch({ executablePath: findChromium(), args: ["--no-sandbox", "--disable-gpu"] });
 });
 afterAll(async () => {

@@ -1,26 +1,16 @@
-import { spawn } from "node:child_process";
-import { join } from "node:path";
-import { fileURLToPath } from "node:url";
 import { type Browser, chromium, type Page } from "playwright-core";
 import { afterAll, beforeAll, expect, test } from "vitest";
 import { type Chain, startChain } from "../chain.ts";
 import { findChromium } from "../chromium.ts";
+import { password, signInAs, user } from "../people.ts";
 
-const program = fileURLToPath(new URL("../../dist/server/main.js", import.meta.url));
-const password = "a long enough secret";
 let chain: Chain;
 let browser: Browser;
 let page: Page;
 
-function user(...args: string[]): Promise<number | null> {
-  const child = spawn(process.execPath, [program, "user", ...args, "--config", join(chain.folder, "plant.json")]);
-  child.stdin.end(`${password}\n`);
-  return new Promise((resolve) => child.once("exit", resolve));
-}
-
 beforeAll(async () => {
   chain = await startChain({ simulate: "calm" });
-  expect(await user("add", "O. Penn", "--role", "operator")).toBe(0);
+  expect(await user(chain, ["add", "O. Penn", "--role", "operator"])).toMatchObject({ code: 0 });
   browser = await chromium.launch({ executablePath: findChromium(), args: ["--no-sandbox", "--disable-gpu"] });
   page = await browser.newPage();
 });
@@ -53,17 +43,15 @@ test("the right one opens the view that the address asked for, under that name, 
 });
 
 test("who leaves sees no more of the plant within seconds", async () => {
-  expect(await user("leave", "O. Penn")).toBe(0);
+  expect(await user(chain, ["leave", "O. Penn"])).toMatchObject({ code: 0 });
   await page.getByLabel("Name").waitFor();
   expect(await page.getByText("Column overhead").count()).toBe(0);
 });
 
 test("signing out brings the door back", async () => {
-  expect(await user("add", "S. Ecca", "--role", "viewer")).toBe(0);
+  expect(await user(chain, ["add", "S. Ecca", "--role", "viewer"])).toMatchObject({ code: 0 });
   await page.goto(chain.url);
-  await page.getByLabel("Name").fill("S. Ecca");
-  await page.getByLabel("Password").fill(password);
-  await page.getByRole("button", { name: "Sign in" }).click();
+  await signInAs(page, "S. Ecca");
   await page.getByRole("button", { name: "Sign out" }).click();
   await page.getByLabel("Name").waitFor();
 });

@@ -1,27 +1,17 @@
-import { spawn } from "node:child_process";
 import { readFileSync, writeFileSync } from "node:fs";
 import { join } from "node:path";
-import { fileURLToPath } from "node:url";
 import { afterAll, beforeAll, expect, test } from "vitest";
 import type { LimitSet } from "../../core/limit-set/index.ts";
 import type { Judged, LimitSets, ReadingView, RecordedEvent } from "../../core/messages/index.ts";
 import { makePlant, spectrumAt } from "../../simulator/plant/index.ts";
 import { type Chain, eventually, startChain } from "../chain.ts";
+import { user } from "../people.ts";
 
-const program = fileURLToPath(new URL("../../dist/server/main.js", import.meta.url));
 const plant = makePlant(1);
 const names = ["E. Penn", "O. Rook", "Op. Erator"] as const;
 const tokens = new Map<string, string>();
 let chain: Chain;
 let time = Date.now() - 60_000;
-
-function user(...args: string[]): Promise<string> {
-  const child = spawn(process.execPath, [program, "user", ...args, "--config", join(chain.folder, "plant.json")]);
-  let out = "";
-  child.stdout.on("data", (chunk) => (out += String(chunk)));
-  child.stdin.end("a long enough secret\n");
-  return new Promise((resolve) => child.once("exit", () => resolve(out.trim())));
-}
 
 async function ask<T>(who: string, path: string, body?: unknown): Promise<{ status: number; body: T }> {
   const headers = { authorization: `Bearer ${tokens.get(who)}`, "content-type": "application/json" };
@@ -54,9 +44,11 @@ beforeAll(async () => {
   for (const name of names)
     tokens.set(
       name,
-      await user("token", name, "--role", name === "Op. Erator" ? "operator" : "engineer", "--days", "1"),
+      (
+        await user(chain, ["token", name, "--role", name === "Op. Erator" ? "operator" : "engineer", "--days", "1"])
+      ).out.trim(),
     );
-  await user("add", "A. Dmin", "--role", "administrator");
+  await user(chain, ["add", "A. Dmin", "--role", "administrator"]);
 });
 afterAll(async () => {
   await chain.stop();
