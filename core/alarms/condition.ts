@@ -1,4 +1,4 @@
-import type { AlarmRule, PropertyWatch } from "../limit-set/index.ts";
+import type { AlarmRule, PropertyWatch, UnusableShareWatch } from "../limit-set/index.ts";
 import type { Judged } from "../messages/index.ts";
 import type { Condition } from "./detector.ts";
 import { type Drift, driftCondition } from "./drift.ts";
@@ -18,18 +18,20 @@ export function conditionOf(rule: AlarmRule, judged: Judged, surroundings: Surro
   const { watches } = rule;
   switch (watches.kind) {
     case "property":
-      return propertyCondition(rule, watches, judged);
+      return propertyCondition(
+        judged.properties[watches.property]?.value ?? Number.NaN,
+        judged.verdict.includes("inside"),
+        watches,
+        rule.untrusted,
+      );
     case "extrapolated":
-      return ratioCondition(judged.ratios.t2, watches.deadband);
+      return ratioCondition(judged.ratios.t2 ?? Number.NaN, watches.deadband);
     case "unfamiliar":
-      return ratioCondition(judged.ratios.q, watches.deadband);
+      return ratioCondition(judged.ratios.q ?? Number.NaN, watches.deadband);
     case "sparse":
-      return ratioCondition(judged.ratios.nearest, watches.deadband);
-    case "unusable share": {
-      const seen = surroundings.unusable.slice(-watches.among);
-      if (seen.length < watches.among) return "clear"; // too few to speak of a share
-      return seen.reduce((n, flag) => n + flag, 0) / seen.length >= watches.share ? "beyond" : "clear";
-    }
+      return ratioCondition(judged.ratios.nearest ?? Number.NaN, watches.deadband);
+    case "unusable share":
+      return unusableShareCondition(surroundings.unusable, watches);
     case "silent":
       return "clear"; // a reading is here; that there is none, the clock says
     case "frozen":
@@ -41,22 +43,34 @@ export function conditionOf(rule: AlarmRule, judged: Judged, surroundings: Surro
   }
 }
 
-/** An unusable reading has no statistics, so it says nothing about them. */
-function ratioCondition(ratio: number | null, deadband: number): Condition {
-  if (ratio === null) return "none";
+/** An unusable reading has no statistics (NaN), so it says nothing about them. */
+export function ratioCondition(ratio: number, deadband: number): Condition {
+  if (Number.isNaN(ratio)) return "none";
   if (ratio > 1) return "beyond";
   return ratio <= 1 - deadband ? "clear" : "between";
 }
 
-function propertyCondition(rule: AlarmRule, watch: PropertyWatch, judged: Judged): Condition {
-  const value = judged.properties[watch.property]?.value ?? null;
-  if (value === null) return "none";
-  if (!judged.verdict.includes("inside") && rule.untrusted !== "evaluate") {
-    return rule.untrusted === "hold" ? "none" : "clear";
-  }
+/** @param value of the property, NaN where there is none */
+export function propertyCondition(
+  value: number,
+  inside: boolean,
+  watch: PropertyWatch,
+  untrusted: AlarmRule["untrusted"],
+): Condition {
+  if (Number.isNaN(value)) return "none";
+  if (!inside && untrusted !== "evaluate") return untrusted === "hold" ? "none" : "clear";
   const over = isUpper(watch) ? value - watch.limit : watch.limit - value;
   if (over > 0) return "beyond";
   return over <= -watch.deadband ? "clear" : "between";
+}
+
+/** @param unusable of the last readings, this one included, which were: 1 or 0, oldest first */
+export function unusableShareCondition(unusable: readonly number[], watch: UnusableShareWatch): Condition {
+  const { length } = unusable;
+  if (length < watch.among) return "clear"; // too few to speak of a share
+  let count = 0;
+  for (let i = length - watch.among; i < length; i++) count += unusable[i];
+  return count / watch.among >= watch.share ? "beyond" : "clear";
 }
 
 export function isUpper(watch: PropertyWatch): boolean {

@@ -40,32 +40,55 @@ export function detect(
   state: DetectorState,
   condition: Condition,
   at: number,
-  delays: { onDelay: Delay; offDelay: Delay },
+  delays: Delays,
 ): [DetectorState, Signal] {
   if (condition === "none") return [state, { kind: "none" }];
-  const { onDelay, offDelay } = delays;
+  const next = { ...state, recent: [...state.recent] };
+  const kind = detectInPlace(next, condition, at, delays);
+  return [next, kind === "raise" ? { kind, since: next.beyondSince ?? at } : { kind }];
+}
+
+export interface Delays {
+  onDelay: Delay;
+  offDelay: Delay;
+}
+
+/** The same on a detector that is the caller's own, and is changed: a rehearsal takes millions of these steps. */
+export function detectInPlace(
+  state: DetectorState,
+  condition: Condition,
+  at: number,
+  { onDelay, offDelay }: Delays,
+): Signal["kind"] {
+  if (condition === "none") return "none";
   const beyond = condition === "beyond";
-  const clear = condition === "clear";
-  const span = onDelay.of ?? onDelay.readings;
-  const recent = [...state.recent, beyond ? 1 : 0].slice(-span);
-  const next: DetectorState = {
-    active: state.active,
-    recent,
-    clearRun: clear ? state.clearRun + 1 : 0,
-    beyondSince: beyond ? (state.beyondSince ?? at) : clear ? null : state.beyondSince,
-    clearSince: clear ? (state.clearSince ?? at) : null,
-  };
-  const beyondSince = next.beyondSince ?? at;
-  if (!state.active && beyond && sum(recent) >= onDelay.readings && lasted(beyondSince, at, onDelay)) {
-    return [
-      { ...next, active: true },
-      { kind: "raise", since: beyondSince },
-    ];
+  const { recent } = state;
+  recent.push(beyond ? 1 : 0);
+  while (recent.length > (onDelay.of ?? onDelay.readings)) recent.shift();
+  if (condition === "clear") {
+    state.clearRun++;
+    state.clearSince ??= at;
+    state.beyondSince = null;
+  } else {
+    state.clearRun = 0;
+    state.clearSince = null;
+    if (beyond) state.beyondSince ??= at;
   }
-  if (state.active && clear && next.clearRun >= offDelay.readings && lasted(next.clearSince ?? at, at, offDelay)) {
-    return [{ ...next, active: false, recent: [] }, { kind: "clear" }];
+  if (!state.active && beyond && sum(recent) >= onDelay.readings && lasted(state.beyondSince ?? at, at, onDelay)) {
+    state.active = true;
+    return "raise";
   }
-  return [next, { kind: "none" }];
+  if (
+    state.active &&
+    condition === "clear" &&
+    state.clearRun >= offDelay.readings &&
+    lasted(state.clearSince ?? at, at, offDelay)
+  ) {
+    state.active = false;
+    state.recent = [];
+    return "clear";
+  }
+  return "none";
 }
 
 /** After a gap in the data nobody knows what happened in it: runs that were under way begin anew; a decided alarm stays. */
@@ -78,5 +101,7 @@ function lasted(since: number, at: number, delay: Delay): boolean {
 }
 
 function sum(flags: readonly number[]): number {
-  return flags.reduce((total, flag) => total + flag, 0);
+  let total = 0;
+  for (let i = 0; i < flags.length; i++) total += flags[i];
+  return total;
 }

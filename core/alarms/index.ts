@@ -11,12 +11,21 @@ export {
   stateWord,
   waits,
 } from "./alarm-state.ts";
-export { conditionOf, isUpper, type Surroundings } from "./condition.ts";
+export {
+  conditionOf,
+  isUpper,
+  propertyCondition,
+  ratioCondition,
+  type Surroundings,
+  unusableShareCondition,
+} from "./condition.ts";
 export {
   afterGap,
   type Condition,
+  type Delays,
   type DetectorState,
   detect,
+  detectInPlace,
   restingDetector,
   type Signal,
 } from "./detector.ts";

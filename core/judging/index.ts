@@ -1,4 +1,5 @@
 export { adopt } from "./adopt.ts";
+export { lifecycleRules } from "./advance-alarm.ts";
 export { commandAlarm } from "./alarm-command.ts";
 export { openAlarms, setAsideAlarms } from "./alarms.ts";
 export { endExcursions, openExcursions } from "./excursions.ts";
@@ -13,7 +14,7 @@ export {
 } from "./judge.ts";
 export { type ExcursionCommand, labelExcursion } from "./label-excursion.ts";
 export type { Note } from "./notes.ts";
-export { hearProcessState, type ProcessJudgement } from "./process-state.ts";
+export { hearProcessState, type ProcessJudgement, suppressionEvent } from "./process-state.ts";
 export { explainedOf, Scorer } from "./scorer.ts";
 export { freshState, type StreamState } from "./state.ts";
 export type { ValidityRules } from "./validity.ts";

@@ -1,4 +1,4 @@
-import type { LimitSet } from "../limit-set/index.ts";
+import { type LimitSet, mostAmong } from "../limit-set/index.ts";
 import type { Excursion, Judged, Prediction, Reading, Verdict } from "../messages/index.ts";
 import { AxisError } from "../spectrum/index.ts";
 import { advanceAll } from "./advance-alarm.ts";
@@ -88,7 +88,7 @@ export function judge(state: StreamState, arrival: Arrival, rules: StreamRules):
   const invalid = invalidityOf(reading, same, rules);
   const judged =
     invalid || !rules.scorer
-      ? unusable(reading, invalid?.says ?? "no model", rules)
+      ? unusable(reading, invalid ?? { reason: "no model", says: "no model" }, rules)
       : scored(reading, rules.scorer, rules);
   const refusal = invalid ? { refusal: invalid } : {};
   if (late) {
@@ -178,7 +178,11 @@ function invalidityOf(
   }
 }
 
-function unusable(reading: Reading, says: string, rules: StreamRules): Judged {
+function unusable(
+  reading: Reading,
+  { reason, says }: { reason: RefusalReason; says: string },
+  rules: StreamRules,
+): Judged {
   const names = rules.scorer?.compiled.properties.map((property) => property.name) ?? [];
   return {
     stream: rules.stream,
@@ -192,6 +196,7 @@ function unusable(reading: Reading, says: string, rules: StreamRules): Judged {
     ratios: { t2: null, q: null, nearest: null },
     verdict: ["unusable"],
     unusable: says,
+    unusableReason: reason,
     model: rules.scorer?.compiled.id ?? null,
     limitSet: rules.limitSet.version,
   };
@@ -258,12 +263,9 @@ function remember(
     fingerprint: print,
     same,
     // A frozen analyzer has an alarm of its own: one cause, one alarm.
-    unusable: [...state.unusable, verdict === "unusable" && !frozen ? 1 : 0].slice(-mostRemembered),
+    unusable: [...state.unusable, verdict === "unusable" && !frozen ? 1 : 0].slice(-mostAmong),
   };
 }
-
-/** The longest "among" that a rule may ask for is 1 000, but the memory is written with every commit: a hundred is plenty. */
-const mostRemembered = 100;
 
 function seconds(ms: number): string {
   return ms < 10_000 ? `${(ms / 1000).toFixed(1)} s` : `${Math.round(ms / 1000)} s`;

@@ -52,10 +52,11 @@ export function suppressionEvent(rule: AlarmRule, { state, since }: ProcessState
   return { kind: "leave suppressing state", at: since, until: since + suppressedForMinutesAfter * 60_000 };
 }
 
-function changeNote(before: ProcessState | null, { state, grade, since }: ProcessState, stream: string): Note {
+function changeNote(before: ProcessState | null, process: ProcessState, stream: string): Note {
+  const { state, grade, since } = process;
   const from = before && before.state !== state ? `, before: ${before.state}` : "";
   const made = grade === undefined ? "" : `, grade ${grade}`;
-  return { at: since, stream, kind: "process state", says: `The process is ${state}${made}${from}.` };
+  return { at: since, stream, kind: "process state", says: `The process is ${state}${made}${from}.`, process };
 }
 
 /**

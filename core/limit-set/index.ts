@@ -19,11 +19,13 @@ export {
   type DriftingWatch,
   type LimitSet,
   LimitSetSchema,
+  mostAmong,
   mostShelvedMinutes,
   type PropertyWatch,
   type Side,
   type StatisticLimit,
   sides,
+  type UnusableShareWatch,
   type Watch,
 } from "./limit-set.ts";
 export { LimitSetError, parseAlarmRules, parseLimitSet } from "./parse.ts";

@@ -38,12 +38,14 @@ const StatisticWatchSchema = Type.Object({
   /** share of the limit: the ratio must fall below 1 − deadband before the alarm clears */
   deadband: Type.Number({ minimum: 0, exclusiveMaximum: 1 }),
 });
+/** What is remembered of the last readings is written with every commit: a hundred is plenty. */
+export const mostAmong = 100;
 const UnusableShareWatchSchema = Type.Object({
   /** frozen readings are not counted: they have an alarm of their own */
   kind: Type.Literal("unusable share"),
   share: Type.Number({ exclusiveMinimum: 0, maximum: 1 }),
   /** among this many last readings */
-  among: Type.Integer({ minimum: 2, maximum: 1000 }),
+  among: Type.Integer({ minimum: 2, maximum: mostAmong }),
 });
 const SilentWatchSchema = Type.Object({
   kind: Type.Literal("silent"),
@@ -72,6 +74,7 @@ export const WatchSchema = Type.Union([
 ]);
 export type Watch = Static<typeof WatchSchema>;
 export type PropertyWatch = Static<typeof PropertyWatchSchema>;
+export type UnusableShareWatch = Static<typeof UnusableShareWatchSchema>;
 export type DriftingWatch = Static<typeof DriftingWatchSchema>;
 
 /** Engineering judgement, not a standard: no alarm stays shelved into the shift after the next. */

@@ -1,4 +1,5 @@
 import { type Static, Type } from "typebox";
+import { ProcessStateSchema } from "./process-state.ts";
 import { AxisUnitSchema } from "./reading.ts";
 
 export const priorities = ["high", "medium", "low", "record only"] as const;
@@ -168,6 +169,8 @@ export const RecordedEventSchema = Type.Object({
   /** for what happened to an alarm that annunciates nothing */
   setAside: Type.Optional(SetAsideAlarmSchema),
   excursion: Type.Optional(ExcursionSchema),
+  /** what the plant said of the line, where it did */
+  process: Type.Optional(ProcessStateSchema),
   /** true for what the recorded history brought in: it never annunciates */
   history: Type.Optional(Type.Boolean()),
 });

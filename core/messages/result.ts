@@ -31,6 +31,8 @@ export const JudgedSchema = Type.Object({
   verdict: Type.Array(VerdictSchema),
   /** why it is unusable, in words */
   unusable: Type.Optional(Type.String()),
+  /** the same in a word, for programs: "frozen", "saturated", "wrong length" … */
+  unusableReason: Type.Optional(Type.String()),
   /** SHA-256 of the model that scored it; null when it could not be scored */
   model: orNull(Type.String()),
   limitSet: Type.Integer(),

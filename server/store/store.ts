@@ -9,6 +9,7 @@ import type {
   Refusals,
   Trend,
 } from "../../core/messages/index.ts";
+import type { RecordedStretch } from "../../core/rehearsal/index.ts";
 
 /** One judged reading as it goes on record, with the spectrum as it was received. */
 export interface NewReading {
@@ -95,6 +96,8 @@ export interface StoreReader {
   /** The trend of `from` ≤ time < `to` in at most about `points` intervals; each reading whole where there are no more than that. */
   trend(stream: string, properties: readonly string[], from: number, to: number, points: number): Trend;
   refusals(stream: string | undefined, limit: number): Refusals;
+  /** The statistics of `from` ≤ time < `to` as columns, for a rehearsal; late readings, which alarms take no notice of, are left out. */
+  stretch(stream: string, from: number, to: number): RecordedStretch;
   /** Newest first; `about`: the first word of their kind; `after`: only those with a larger cursor. */
   events(query: { stream?: string; about?: string; after?: number; before?: number; limit: number }): RecordedEvent[];
   /** What happened to alarms at `from` ≤ time < `to`, in the order of the record; without what recorded history brought in, unless asked for. */

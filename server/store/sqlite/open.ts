@@ -28,6 +28,7 @@ const steps: readonly ((db: Database.Database) => void)[] = [
     db.exec("DELETE FROM rollup");
     rollUpAll(db);
   },
+  (db) => db.exec(forRehearsal),
 ];
 
 /** A record up to this size is looked through as a whole at every start: less than a second. A larger one is by every backup. */
@@ -57,6 +58,13 @@ CREATE INDEX excursion_by_start ON excursion (start);
 CREATE TABLE refusal (id INTEGER PRIMARY KEY, digest BLOB NOT NULL UNIQUE, stream TEXT NOT NULL, topic TEXT NOT NULL,
   received INTEGER NOT NULL, last INTEGER NOT NULL, count INTEGER NOT NULL, reason TEXT NOT NULL, says TEXT NOT NULL, payload BLOB NOT NULL) STRICT;
 CREATE TABLE refusal_total (stream TEXT NOT NULL, reason TEXT NOT NULL, count INTEGER NOT NULL, PRIMARY KEY (stream, reason)) STRICT, WITHOUT ROWID;
+`;
+
+/** What a rehearsal asks for. Until then the reason stood in words only; of these it must know one. */
+const forRehearsal = `
+ALTER TABLE reading ADD COLUMN unusable_reason TEXT;
+UPDATE reading SET unusable_reason = 'frozen' WHERE unusable LIKE 'exactly the same spectrum %';
+CREATE INDEX process_state ON event (stream, at) WHERE kind = 'process state';
 `;
 
 /** Opens the record for its single writer; makes it when there is none, brings an older form up to date. @throws StoreError for a damaged or newer file. */

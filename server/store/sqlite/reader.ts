@@ -12,6 +12,7 @@ import {
 import type { StoredReading, StoreReader } from "../store.ts";
 import { openForReading } from "./open.ts";
 import { spectrumValues } from "./spectrum-bytes.ts";
+import { stretchQuery } from "./stretch.ts";
 import { trendQuery } from "./trend.ts";
 
 interface ReadingRow {
@@ -33,6 +34,7 @@ interface ReadingRow {
   unusable: string | null;
   model: number | null;
   limit_set: number;
+  unusable_reason: string | null;
 }
 
 /** The SQLite record's reader: its own connection, read only, beside the running writer. @throws StoreError */
@@ -87,6 +89,7 @@ export function sqliteReader(file: string): StoreReader {
     ),
   };
   const trend = trendQuery(db, modelOf);
+  const stretch = stretchQuery(db, modelOf);
 
   function streamKey(id: string): number {
     const known = streams.get(id);
@@ -160,6 +163,7 @@ export function sqliteReader(file: string): StoreReader {
       return json ? ((JSON.parse(json) as Partial<StreamState>).proposals?.waiting ?? []) : [];
     },
     modelText: (id) => sql.modelText.get(id),
+    stretch: (stream, from, to) => stretch(streamKey(stream), stream, from, to),
     extent: (stream) => sql.extent.get(streamKey(stream))!,
     close: () => void db.close(),
   };
@@ -200,6 +204,7 @@ function judgedOf(stream: string, row: ReadingRow, model: { id: string; properti
     ratios: { t2: row.t2_ratio, q: row.q_ratio, nearest: row.nearest_ratio },
     verdict: verdictsOfMask(row.verdict),
     ...(row.unusable === null ? {} : { unusable: row.unusable }),
+    ...(row.unusable_reason === null ? {} : { unusableReason: row.unusable_reason }),
     model: model?.id ?? null,
     limitSet: row.limit_set,
   };

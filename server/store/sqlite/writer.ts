@@ -28,7 +28,7 @@ export function sqliteWriter(file: string): StoreWriter {
     stream: db.prepare("INSERT INTO stream (id) VALUES (?) ON CONFLICT DO UPDATE SET id = id RETURNING k").pluck(),
     state: db.prepare("SELECT state FROM stream WHERE id = ?").pluck(),
     setState: db.prepare("UPDATE stream SET state = ? WHERE k = ?"),
-    reading: db.prepare(`INSERT INTO reading VALUES (${Array(22).fill("?").join(", ")}) ON CONFLICT DO NOTHING`),
+    reading: db.prepare(`INSERT INTO reading VALUES (${Array(23).fill("?").join(", ")}) ON CONFLICT DO NOTHING`),
     spectrum: db.prepare("INSERT INTO spectrum VALUES (?, ?, ?, ?)"),
     event: db.prepare("INSERT INTO event VALUES (?, ?, ?, ?, ?, ?)"),
     excursion: db.prepare(upsertExcursion),
@@ -117,6 +117,7 @@ export function sqliteWriter(file: string): StoreWriter {
       judged.limitSet,
       quality ?? null,
       context ? JSON.stringify(context) : null,
+      judged.unusableReason ?? null,
     );
     if (changes === 0) return; // a repeat within one batch: identity is (stream, time, sequence)
     const { width, data } = spectrumBytes(reading.values);
