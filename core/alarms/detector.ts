@@ -62,9 +62,12 @@ export function detectInPlace(
 ): Signal["kind"] {
   if (condition === "none") return "none";
   const beyond = condition === "beyond";
+  const span = onDelay.of ?? onDelay.readings;
+  // At rest, and nothing of what is remembered was beyond: one more that is clear tells nothing new.
+  if (!state.active && condition === "clear" && state.clearRun >= span) return "none";
   const { recent } = state;
   recent.push(beyond ? 1 : 0);
-  while (recent.length > (onDelay.of ?? onDelay.readings)) recent.shift();
+  while (recent.length > span) recent.shift();
   if (condition === "clear") {
     state.clearRun++;
     state.clearSince ??= at;
@@ -93,7 +96,7 @@ export function detectInPlace(
 
 /** After a gap in the data nobody knows what happened in it: runs that were under way begin anew; a decided alarm stays. */
 export function afterGap(state: DetectorState): DetectorState {
-  return { ...restingDetector, active: state.active };
+  return { ...restingDetector, recent: [], active: state.active };
 }
 
 function lasted(since: number, at: number, delay: Delay): boolean {

@@ -6,7 +6,7 @@ export {
   type Outcome,
   outcomeOf,
 } from "./outcome.ts";
-export { periodsOf, Rehearsal, type Rehearsed } from "./rehearse.ts";
+export { periodsOf, Rehearsal, type Rehearsed, type RehearsedAlarm } from "./rehearse.ts";
 export { type Activation, type Periods, replayAlarm } from "./replay-alarm.ts";
 export {
   alarmSettings,
@@ -18,6 +18,7 @@ export {
   statisticNames,
   withSetting,
 } from "./setting.ts";
+export { pictureOf, type StatisticPicture, type Theory, theoryOf } from "./statistics.ts";
 export {
   cutOut,
   dataGap,

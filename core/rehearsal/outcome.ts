@@ -1,9 +1,10 @@
 import { type Annunciation, chatteringOf, fleetingOf } from "../alarms/index.ts";
-import type { AlarmRule, LimitSet } from "../limit-set/index.ts";
+import type { AlarmRule } from "../limit-set/index.ts";
 import type { Excursion, Priority } from "../messages/index.ts";
+import type { Coverage } from "./coverage.ts";
 import type { Rehearsed } from "./rehearse.ts";
 import type { Activation } from "./replay-alarm.ts";
-import type { RecordedStretch, Span } from "./stretch.ts";
+import type { Span } from "./stretch.ts";
 
 const day = 86_400_000;
 /** An alarm of a trouble may come a little after it has ended: the delays are still counting. */
@@ -68,17 +69,12 @@ export function labelledEvents(excursions: readonly Excursion[], { from, to }: S
  * Counts what a rehearsal came to. Silent and frozen analyzers have no excursion to be labelled, so an alarm on them counts as one with a
  * cause: nobody would wish it away. Pure.
  */
-export function outcomeOf(
-  stretch: RecordedStretch,
-  { activations, readings }: Rehearsed,
-  { alarms }: Pick<LimitSet, "alarms">,
-  truth: readonly LabelledEvent[],
-): Outcome {
-  const rules = new Map(alarms.map((rule) => [rule.key, rule]));
-  const calls = activations
-    .filter(({ key, annunciatedAt }) => annunciatedAt !== undefined && rules.get(key)?.priority !== "record only")
+export function outcomeOf({ alarms, covered, readings }: Rehearsed, truth: readonly LabelledEvent[]): Outcome {
+  const calls = alarms
+    .flatMap(({ rule, activations }) => (rule.priority === "record only" ? [] : activations))
+    .filter(({ annunciatedAt }) => annunciatedAt !== undefined)
     .sort((a, b) => a.annunciatedAt! - b.annunciatedAt!);
-  const covered = coverage(stretch);
+  const needCause = new Set(alarms.filter(({ rule }) => needsCause(rule)).map(({ rule }) => rule.key));
   const days = covered.totalMs / day;
   const events = truth.map((event) => found(event, calls));
   const missed = events.filter(({ foundBy }) => foundBy === undefined).length;
@@ -86,11 +82,11 @@ export function outcomeOf(
     days,
     annunciations: calls.length,
     perDay: perDay(calls.length, days),
-    alarms: alarms.map((rule) => alarmOutcome(stretch.stream, rule, activations, covered)),
+    alarms: alarms.map(({ outcome }) => outcome),
     events,
     found: events.length - missed,
     missed,
-    causeless: calls.filter((call) => needsCause(rules.get(call.key)!) && !truth.some((event) => meets(call, event))),
+    causeless: calls.filter((call) => needCause.has(call.key) && !truth.some((event) => meets(call, event))),
     longestQuietMs: longestQuiet(covered, calls),
     readings,
   };
@@ -100,19 +96,18 @@ function perDay(count: number, days: number): number {
   return days > 0 ? count / days : 0;
 }
 
-function alarmOutcome(
+export function alarmOutcome(
   stream: string,
   { key, title, priority }: AlarmRule,
   activations: readonly Activation[],
   { end, totalMs }: Coverage,
 ): AlarmOutcome {
-  const own = activations.filter((each) => each.key === key);
-  const called: Annunciation[] = own.flatMap(({ annunciatedAt, clearedAt }) => {
+  const called: Annunciation[] = activations.flatMap(({ annunciatedAt, clearedAt }) => {
     if (annunciatedAt === undefined || priority === "record only") return [];
     const cleared = clearedAt === undefined ? {} : { clearedAt };
     return [{ stream, key, title, priority, at: annunciatedAt, ...cleared }];
   });
-  const heldMs = own.reduce((sum, { raisedAt, clearedAt }) => sum + (clearedAt ?? end) - raisedAt, 0);
+  const heldMs = activations.reduce((sum, { raisedAt, clearedAt }) => sum + (clearedAt ?? end) - raisedAt, 0);
   const all = (counts: readonly { annunciations: number }[]) => counts[0]?.annunciations ?? 0;
   return {
     ...{ key, title, priority },
@@ -135,29 +130,6 @@ function found(event: LabelledEvent, calls: readonly Activation[]): EventOutcome
 
 function needsCause({ watches }: AlarmRule): boolean {
   return watches.kind !== "silent" && watches.kind !== "frozen" && watches.kind !== "unusable share";
-}
-
-/** The times in which there were data, one after the other, and their sum. */
-interface Coverage {
-  spans: Span[];
-  end: number;
-  totalMs: number;
-}
-
-function coverage({ time, gap }: RecordedStretch): Coverage {
-  const spans: Span[] = [];
-  let from = time[0];
-  for (let i = 1; i < time.length; i++) {
-    if (gap[i] === 0) continue;
-    spans.push({ from, to: time[i - 1] });
-    from = time[i];
-  }
-  if (time.length > 0) spans.push({ from, to: time[time.length - 1] });
-  return {
-    spans,
-    end: time[time.length - 1] ?? 0,
-    totalMs: spans.reduce((sum, span) => sum + span.to - span.from, 0),
-  };
 }
 
 /** Within one unbroken time with data: what happened in a gap nobody knows. */

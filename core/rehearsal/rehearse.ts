@@ -1,12 +1,22 @@
 import type { AlarmRule, LimitSet } from "../limit-set/index.ts";
+import { type Coverage, coverage } from "./coverage.ts";
+import { type AlarmOutcome, alarmOutcome } from "./outcome.ts";
 import { type Activation, type Periods, replayAlarm } from "./replay-alarm.ts";
 import type { RecordedStretch } from "./stretch.ts";
 import { type Trust, trustOf } from "./trust.ts";
 
-/** What the alarms of a limit set would have done over a stretch. */
+/** One alarm of a limit set over a stretch. */
+export interface RehearsedAlarm {
+  rule: AlarmRule;
+  /** in the order of time */
+  activations: readonly Activation[];
+  outcome: AlarmOutcome;
+}
+
+/** What a limit set would have done over a stretch. */
 export interface Rehearsed {
-  /** in the order of the limit set's alarms, and of time within each */
-  activations: Activation[];
+  alarms: RehearsedAlarm[];
+  covered: Coverage;
   /** of each statistic, how many usable readings lay beyond its limit; `inside`: how many passed all tests */
   readings: { usable: number; inside: number; t2: number; q: number; nearest: number };
 }
@@ -35,25 +45,28 @@ function restsOn({ watches, untrusted }: AlarmRule): (keyof LimitSet["statistics
 export class Rehearsal {
   readonly stretch: RecordedStretch;
   readonly #periods: Periods;
-  readonly #replayed = new Map<string, Activation[]>();
+  readonly #covered: Coverage;
+  readonly #replayed = new Map<string, RehearsedAlarm>();
   #trust: { key: string; trust: Trust; readings: Rehearsed["readings"] } | undefined;
 
   constructor(stretch: RecordedStretch, periods: Periods) {
     this.stretch = stretch;
     this.#periods = periods;
+    this.#covered = coverage(stretch);
   }
 
   run({ statistics, alarms }: Pick<LimitSet, "statistics" | "alarms">): Rehearsed {
     const { trust, readings } = this.#trustBy(statistics);
-    const activations = alarms.flatMap((rule) => {
+    const replayed = alarms.map((rule) => {
       const key = JSON.stringify([rule, restsOn(rule).map((name) => statistics[name].limit)]);
       const known = this.#replayed.get(key);
       if (known) return known;
-      const replayed = replayAlarm(this.stretch, rule, trust, this.#periods);
-      this.#replayed.set(key, replayed);
-      return replayed;
+      const activations = replayAlarm(this.stretch, rule, trust, this.#periods);
+      const alarm = { rule, activations, outcome: alarmOutcome(this.stretch.stream, rule, activations, this.#covered) };
+      this.#replayed.set(key, alarm);
+      return alarm;
     });
-    return { activations, readings };
+    return { alarms: replayed, covered: this.#covered, readings };
   }
 
   #trustBy(statistics: LimitSet["statistics"]) {

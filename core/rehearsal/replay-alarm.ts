@@ -65,22 +65,35 @@ class Replay {
     const rule = this.#rule;
     const over = conditionOver(rule, this.#stretch, trust);
     const silentPeriods = rule.watches.kind === "silent" ? rule.watches.periods : undefined;
-    for (let i = 0; i < time.length; i++) {
+    // Loads come before the live record: there is one border at most.
+    const border = history.lastIndexOf(1) + 1;
+    const hasStates = processStates.length > 0;
+    const { length } = time;
+    for (let i = 0; i < length; i++) {
       const at = time[i];
-      const afterHistory = i > 0 && history[i] === 0 && history[i - 1] === 1;
-      if (afterHistory) this.#endOfHistory(time[i - 1]);
-      while (this.#nextState < processStates.length && processStates[this.#nextState].since <= at) this.#hearState();
-      if (silentPeriods !== undefined && i > 0 && !afterHistory) this.#silence(i, silentPeriods);
-      if (gap[i] !== noGap || afterHistory) {
+      const begins = i === border && i > 0;
+      if (begins) this.#endOfHistory(time[i - 1]);
+      if (hasStates) this.#processUntil(at);
+      if (silentPeriods !== undefined && i > 0 && !begins) this.#silence(i, silentPeriods);
+      if (gap[i] !== noGap || begins) {
         this.#detector = afterGap(this.#detector);
         over.reset();
       }
-      if (this.#alarm?.suppressed?.until !== undefined) this.#event({ kind: "process time", at });
       const signal = detectInPlace(this.#detector, over.at(i), at, rule);
+      if (signal === "none") continue;
       if (signal === "raise") this.#raise(this.#detector.beyondSince ?? at, at);
-      else if (signal === "clear") this.#event({ kind: "clear", at });
+      else this.#event({ kind: "clear", at });
     }
     return this.#activations;
+  }
+
+  /** What the plant said of the line up to then, and what comes of the time that has passed since. */
+  #processUntil(at: number): void {
+    const { processStates } = this.#stretch;
+    while (this.#nextState < processStates.length && processStates[this.#nextState].since <= at) {
+      this.#event(suppressionEvent(this.#rule, processStates[this.#nextState++]));
+    }
+    if (this.#alarm?.suppressed?.until !== undefined) this.#event({ kind: "process time", at });
   }
 
   /** What the history left open ends with it; the live record began with a state of its own. */
@@ -101,10 +114,6 @@ class Replay {
     if (received[i] < dueAt) return;
     this.#detector = { ...fresh(), active: true };
     this.#raise(lastHeard, dueAt);
-  }
-
-  #hearState(): void {
-    this.#event(suppressionEvent(this.#rule, this.#stretch.processStates[this.#nextState++]));
   }
 
   #raise(since: number, at: number): void {

@@ -33,7 +33,7 @@ export function* sweep(
     const column = withSetting(base, first.setting, first.values[x], limitOf);
     for (let y = 0; y < (second?.values.length ?? 1); y++) {
       const limits = second ? withSetting(column, second.setting, second.values[y], limitOf) : column;
-      const { perDay, missed, causeless, events } = outcomeOf(rehearsal.stretch, rehearsal.run(limits), limits, truth);
+      const { perDay, missed, causeless, events } = outcomeOf(rehearsal.run(limits), truth);
       yield {
         x,
         y,

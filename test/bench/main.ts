@@ -1,10 +1,15 @@
 import { cpus } from "node:os";
 import type { BenchResult } from "./bench-result.ts";
+import { benchRehearse } from "./rehearse.ts";
 import { benchScore } from "./score.ts";
 import { benchYear } from "./year.ts";
 
 /** Every bench, one after the other: first a table for people, then one line of JSON. Ratios within one run; times depend on the machine. */
-const benches: Record<string, () => BenchResult[] | Promise<BenchResult[]>> = { score: benchScore, year: benchYear };
+const benches: Record<string, () => BenchResult[] | Promise<BenchResult[]>> = {
+  score: benchScore,
+  year: benchYear,
+  rehearse: benchRehearse,
+};
 
 const asked = process.argv.slice(2);
 const results: Record<string, BenchResult[]> = {};
