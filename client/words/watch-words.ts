@@ -23,6 +23,10 @@ export function watchWords(watch: Watch, unitOf: (property: string) => string): 
       return `no reading for ${watch.periods} periods`;
     case "frozen":
       return "the same spectrum again and again";
+    case "lab bias": {
+      const unit = thin + unitOf(watch.property);
+      return `${watch.property} biased against the laboratory by more than ${watch.bias}${unit} over ${watch.pairs} pairs`;
+    }
     case "drifting":
       return `Q on its way to its limit within ${duration(watch.withinMinutes * 60_000)}`;
     default:

@@ -38,6 +38,8 @@ export function conditionOf(rule: AlarmRule, judged: Judged, surroundings: Surro
       return surroundings.frozen ? "beyond" : "clear";
     case "drifting":
       return driftCondition(surroundings.drift, judged.ratios.q, watches);
+    case "lab bias":
+      return "none"; // a reading says nothing of it: the laboratory does
     default:
       return watches satisfies never;
   }

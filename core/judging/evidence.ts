@@ -26,6 +26,8 @@ export function evidence(rule: AlarmRule, judged: Judged, state: StreamState, ru
       return `${judged.unusable ?? "the same spectrum again"}.`;
     case "silent":
       return "No readings.";
+    case "lab bias":
+      return "Biased against the laboratory."; // in full where it is judged: laboratory.ts
     case "drifting": {
       const drift = state.drifts[rule.key];
       if (!drift) return "Q rises.";

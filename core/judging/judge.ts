@@ -23,11 +23,25 @@ export interface StreamRules {
   futureToleranceMs: number;
   validity: ValidityRules;
   limitSet: LimitSet;
+  /** how laboratory results are matched to readings; absent: {@link defaultLaboratory} */
+  laboratory?: LaboratoryRules;
   /** undefined while the stream has no usable model */
   scorer: Scorer | undefined;
   /** why the stream's model file cannot be used, and what to do */
   modelTrouble?: string;
 }
+
+export interface LaboratoryRules {
+  /** sample time − lag is the time of the readings that saw the same material, ms */
+  lagMs: number;
+  /** readings within it are averaged, ms */
+  windowMs: number;
+  /** by property, where the plant says it: results outside are refused */
+  plausible: Record<string, readonly [number, number]>;
+}
+
+/** Two minutes: drawing a sample takes one or so, and a process that stands still does so for longer. */
+export const defaultLaboratory: LaboratoryRules = { lagMs: 0, windowMs: 120_000, plausible: {} };
 
 export interface Arrival {
   reading: Reading;

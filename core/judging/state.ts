@@ -1,3 +1,4 @@
+import type { RememberedPair } from "../agreement/index.ts";
 import type { AlarmState, DetectorState, Drift, OpenExcursion } from "../alarms/index.ts";
 import type { Proposals } from "../limit-set/index.ts";
 import type { Judged, ProcessState, Verdict } from "../messages/index.ts";
@@ -29,6 +30,8 @@ export interface StreamState {
   detectors: Record<string, DetectorState>;
   alarms: Record<string, AlarmState>;
   excursions: Record<string, OpenExcursion>;
+  /** by property: the newest pairs with the laboratory that count, in order of sample time */
+  laboratory: Record<string, RememberedPair[]>;
   /** limit sets that wait for another person's approval */
   proposals: Proposals;
 }
@@ -47,5 +50,6 @@ export const freshState: StreamState = {
   detectors: {},
   alarms: {},
   excursions: {},
+  laboratory: {},
   proposals: { waiting: [], last: 0 },
 };

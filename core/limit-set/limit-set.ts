@@ -64,6 +64,19 @@ const DriftingWatchSchema = Type.Object({
   /** share of `withinMinutes`: the limit must be further away than `withinMinutes` · (1 + deadband) before the alarm clears */
   deadband: Type.Number({ minimum: 0 }),
 });
+const LabBiasWatchSchema = Type.Object({
+  /** judged when a laboratory result comes in; its delays count pairs, not readings */
+  kind: Type.Literal("lab bias"),
+  property: Type.String(),
+  /** unit of the property: a bias that matters. Say it beforehand: many pairs make a trifle significant */
+  bias: Type.Number({ exclusiveMinimum: 0 }),
+  /** unit of the property: the bias must fall to bias − deadband before the alarm clears */
+  deadband: Type.Number({ minimum: 0 }),
+  /** over how many of the newest pairs */
+  pairs: Type.Integer({ minimum: 3, maximum: 40 }),
+  /** of the t-test of bias, two-sided */
+  confidence: Type.Number({ minimum: 0.5, exclusiveMaximum: 1 }),
+});
 export const WatchSchema = Type.Union([
   PropertyWatchSchema,
   StatisticWatchSchema,
@@ -71,11 +84,18 @@ export const WatchSchema = Type.Union([
   SilentWatchSchema,
   FrozenWatchSchema,
   DriftingWatchSchema,
+  LabBiasWatchSchema,
 ]);
 export type Watch = Static<typeof WatchSchema>;
 export type PropertyWatch = Static<typeof PropertyWatchSchema>;
 export type UnusableShareWatch = Static<typeof UnusableShareWatchSchema>;
 export type DriftingWatch = Static<typeof DriftingWatchSchema>;
+export type LabBiasWatch = Static<typeof LabBiasWatchSchema>;
+
+/** The property that a watch is about; undefined when it is about the reading as a whole. */
+export function propertyOf(watch: Watch): string | undefined {
+  return watch.kind === "property" || watch.kind === "lab bias" ? watch.property : undefined;
+}
 
 /** Engineering judgement, not a standard: no alarm stays shelved into the shift after the next. */
 export const mostShelvedMinutes = 480;

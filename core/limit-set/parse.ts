@@ -6,6 +6,7 @@ import {
   AlarmRulesFileSchema,
   type LimitSet,
   LimitSetSchema,
+  propertyOf,
 } from "./limit-set.ts";
 
 export class LimitSetError extends MillraceError {
@@ -80,9 +81,10 @@ function checkAlarms(alarms: readonly AlarmRule[], file: string, properties: rea
       });
     }
     seen.add(rule.key);
-    if (rule.watches.kind === "property" && !properties.includes(rule.watches.property)) {
+    const property = propertyOf(rule.watches);
+    if (property !== undefined && !properties.includes(property)) {
       fail("watches.property", {
-        got: `"${rule.watches.property}"`,
+        got: `"${property}"`,
         expected: `one of ${properties.map((name) => `"${name}"`).join(", ")}`,
         todo: "An alarm can watch only what the stream's model predicts.",
       });

@@ -11,3 +11,4 @@ export { defaultStatisticChoice, type StatisticChoice, StatisticChoiceSchema } f
 export { nearestLimit, qLimit, type StatisticLimits, statisticLimits, t2Limit } from "./statistic-limits.ts";
 export { symmetricEigen } from "./symmetric-eigen.ts";
 export { t2LimitBeta, t2LimitChiSquared, t2LimitF } from "./t2-limits.ts";
+export { fUpperTail, tTails } from "./tails.ts";

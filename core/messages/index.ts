@@ -1,4 +1,19 @@
 export {
+  type Agreement,
+  AgreementSchema,
+  type AgreementStatistics,
+  AgreementStatisticsSchema,
+  type ControlCharts,
+  type Estimate,
+  type Finding,
+  FindingSchema,
+  type InnerPlace,
+  type OddPair,
+  type Stage,
+  type Stretch,
+  type Test,
+} from "./agreement.ts";
+export {
   type AlarmStateWord,
   alarmStates,
   type Excursion,
@@ -54,6 +69,27 @@ export {
   TrendSchema,
 } from "./api.ts";
 export { type Checker, checker, type SchemaMismatch, shown } from "./check.ts";
+export {
+  type ApartReason,
+  apartReasons,
+  CorrectLabSchema,
+  type LabIdentity,
+  LabIdentitySchema,
+  type LabImport,
+  LabImportSchema,
+  type LabMessage,
+  LabMessageSchema,
+  type LabOrigin,
+  type LabPair,
+  LabPairSchema,
+  type LabResult,
+  LabResultSchema,
+  type LabResults,
+  LabResultsSchema,
+  type LabRow,
+  LabRowSchema,
+  WithdrawLabSchema,
+} from "./lab.ts";
 export {
   type Batch,
   BatchSchema,

@@ -6,7 +6,7 @@ export { type CalibrationSet, type CrossValidation, crossValidate } from "./cros
 export { type Diagnostics, diagnose } from "./diagnostics/diagnose.ts";
 export type { ExplainedVariance } from "./diagnostics/explained-variance.ts";
 export type { SampleInfluence } from "./diagnostics/influence.ts";
-export { type InnerRelation, innerRelation } from "./diagnostics/inner-relation.ts";
+export { type InnerRelation, innerRelation, quadraticTerm } from "./diagnostics/inner-relation.ts";
 export { jackKnifeError } from "./diagnostics/jack-knife.ts";
 export { vip } from "./diagnostics/vip.ts";
 export { type ErrorStatistics, errorStatistics } from "./error-statistics.ts";

@@ -43,6 +43,8 @@ export function conditionOver(rule: AlarmRule, stretch: RecordedStretch, trust: 
       return { at: () => "clear", reset: nothing };
     case "frozen":
       return { at: (i) => (stretch.usability[i] === frozen ? "beyond" : "clear"), reset: nothing };
+    case "lab bias":
+      return { at: () => "none", reset: nothing }; // a reading says nothing of it
     case "drifting":
       return driftOver(stretch, trust, watches);
     default:

@@ -1,7 +1,13 @@
 import { readFileSync } from "node:fs";
 import { MillraceError } from "../../core/errors.ts";
 import { freshState, Scorer, type StreamRules, type StreamState } from "../../core/judging/index.ts";
-import { defaultAlarms, type LimitSet, parseAlarmRules, type StatisticLimit } from "../../core/limit-set/index.ts";
+import {
+  defaultAlarms,
+  type LimitSet,
+  parseAlarmRules,
+  propertyOf,
+  type StatisticLimit,
+} from "../../core/limit-set/index.ts";
 import { defaultStatisticChoice, statisticLimits } from "../../core/limits/index.ts";
 import { type Model, ModelFileError, parseModel } from "../../core/model/index.ts";
 import { type CompiledModel, compileModel } from "../../core/pls/index.ts";
@@ -176,7 +182,10 @@ function firstLimitSet(config: StreamConfig, compiled: CompiledModel | undefined
 
 function forAnotherModel(newest: LimitSet, compiled: CompiledModel, now: number): LimitSet {
   const known = new Set(compiled.properties.map(({ name }) => name));
-  const alarms = newest.alarms.filter(({ watches }) => watches.kind !== "property" || known.has(watches.property));
+  const alarms = newest.alarms.filter(({ watches }) => {
+    const property = propertyOf(watches);
+    return property === undefined || known.has(property);
+  });
   return {
     ...newest,
     version: newest.version + 1,

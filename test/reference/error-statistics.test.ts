@@ -1,4 +1,4 @@
-// Source: R 4.2.2 on 25 invented pairs; the formulas stand in data/error-statistics.json.
+// Source: R 4.2.2 on 25 invented pairs; the formulas stand in data/lab-agreement.json.
 import { test } from "vitest";
 import { errorStatistics } from "../../core/pls/index.ts";
 import { expectEachClose } from "./agreement.ts";
@@ -13,7 +13,7 @@ const r = referenceJson<{
   reference_on_predicted: { slope: number; intercept: number };
   r2_about_1_to_1_line: number;
   rpd: number;
-}>("error-statistics.json");
+}>("lab-agreement.json");
 
 test("bias, RMS, SEP, slope, R² and RPD are R's", () => {
   const { rms, bias, sep, slope, intercept, r2, rpd } = errorStatistics(r.predicted, r.reference);

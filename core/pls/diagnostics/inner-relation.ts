@@ -65,7 +65,7 @@ function correlation({ t, u }: Pairs): number {
 }
 
 /** t statistic of c₂; 0 when t takes too few values for a parabola, or the parabola fits without rest. */
-function quadraticTerm({ t, u }: Pairs): number {
+export function quadraticTerm({ t, u }: Pairs): number {
   const n = t.length;
   const size = Math.sqrt(mean(t.map((value) => value * value)));
   if (!(size > 0) || n < 5) return 0;

@@ -5,6 +5,7 @@ import {
   adopt,
   commandAlarm,
   freshState,
+  hearLaboratory,
   hearProcessState,
   judge,
   type Note,
@@ -15,8 +16,9 @@ import {
   tick,
 } from "../../../core/judging/index.ts";
 import type { AlarmRule } from "../../../core/limit-set/index.ts";
+import type { LabResult } from "../../../core/messages/index.ts";
 import { seededRandom } from "../../../core/pls/index.ts";
-import { smallRules, spectrum, unfamiliarAlarm } from "./small-stream.ts";
+import { labBiasAlarm, labResult, smallRules, spectrum, unfamiliarAlarm } from "./small-stream.ts";
 
 const full = process.env.MILLRACE_FULL === "1";
 /** 100 000 sequences take some minutes of a processor by itself, and more on a busy one. */
@@ -40,6 +42,7 @@ const alarms = [
   alarm("range", { ...one, watches: { kind: "extrapolated", deadband: 0.05 }, remindAfterMinutes: 20 }),
   alarm("silent", { ...one, watches: { kind: "silent", periods: 6 }, suppressedIn: ["stopped"] }),
   alarm("share", { ...one, watches: { kind: "unusable share", share: 0.5, among: 4 } }),
+  labBiasAlarm({ key: "bias", title: "bias", ...cleaning }),
   alarm("recorded", { ...one, priority: "record only", ...cleaning }),
 ];
 /** The first as they are; then without one of them and another suppressed in other states; and with one that asks nobody any more. */
@@ -59,6 +62,7 @@ type Action =
   | { do: "time passes"; ms: number }
   | { do: "command"; key: string; command: Distributed }
   | { do: "process"; state: string }
+  | { do: "laboratory"; what: "agrees" | "above" | "below" | "apart" | "withdrawn" }
   | { do: "restart"; rules: number; downMs: number };
 type WithoutStamp<C> = C extends AlarmCommand ? Omit<C, "at" | "by"> : never;
 type Distributed = WithoutStamp<AlarmCommand>;
@@ -108,6 +112,13 @@ const actions: fc.Arbitrary<Action> = fc.oneof(
     }),
   },
   {
+    weight: 3,
+    arbitrary: fc.record({
+      do: fc.constant("laboratory" as const),
+      what: fc.constantFrom("agrees", "above", "above", "above", "below", "apart", "withdrawn"),
+    }),
+  },
+  {
     weight: 1,
     arbitrary: fc.record({
       do: fc.constant("restart" as const),
@@ -126,6 +137,8 @@ class Plant {
   #listeningSince = start;
   #sequence = 0;
   readonly #random = seededRandom(11);
+  readonly #laboratoryRandom = seededRandom(12);
+  readonly #results: LabResult[] = [];
   #last = spectrum(this.#random);
   /** by key: does the condition hold, and was somebody called for it since it last began to be annunciated? */
   readonly told = new Map<string, { active: boolean; called: boolean }>();
@@ -166,6 +179,9 @@ class Plant {
         if (heard.kind === "heard") this.#hear(heard.notes);
         break;
       }
+      case "laboratory":
+        this.#laboratory(action.what);
+        break;
       case "restart": {
         this.wall += action.downMs;
         this.process += action.downMs;
@@ -195,6 +211,22 @@ class Plant {
     if (judgement.kind !== "judged") throw new Error(JSON.stringify(judgement));
     this.state = state;
     this.#hear(judgement.notes);
+  }
+
+  #laboratory(what: Extract<Action, { do: "laboratory" }>["what"]): void {
+    const last = this.#results.at(-1);
+    const withdrawn = what === "withdrawn";
+    if (withdrawn && !last) return;
+    const value =
+      { agrees: 0.5, above: 0.3, below: 0.7, apart: 0.3, withdrawn: 0 }[what] + 0.002 * this.#laboratoryRandom();
+    const entered = labResult(this.process + this.#results.length, value);
+    const apart = what === "apart" ? { pair: { ...entered.pair, apart: "not inside" as const } } : {};
+    const result = withdrawn ? { ...last!, version: last!.version + 1, withdrawn } : { ...entered, ...apart };
+    if (withdrawn) this.#results.pop();
+    else this.#results.push(result);
+    const [state, notes] = hearLaboratory(this.state, result, this.rules);
+    this.state = state;
+    this.#hear(notes);
   }
 
   #tick(): void {
@@ -306,6 +338,7 @@ function settle(plant: Plant): void {
   plant.process = plant.wall;
   plant.act({ do: "time passes", ms: 9 * hour });
   for (let i = 0; i < 6; i++) plant.act({ do: "reading", what: "inside", afterMs: 10 * second });
+  for (let i = 0; i < 4; i++) plant.act({ do: "laboratory", what: "agrees" });
   const each = (command: Distributed) => {
     for (const { key } of alarms) plant.act({ do: "command", key, command });
   };
@@ -315,8 +348,9 @@ function settle(plant: Plant): void {
   check(plant);
   expect(plant.state.alarms).toEqual({});
   for (let i = 0; i < 2; i++) plant.act({ do: "reading", what: "foreign", afterMs: 10 * second });
+  for (let i = 0; i < 3; i++) plant.act({ do: "laboratory", what: "above" });
   expect(openAlarms(plant.state, plant.rules).map(({ key, state }) => `${key} ${state}`)).toEqual(
-    expect.arrayContaining(["unfamiliar unacknowledged", "latching unacknowledged"]),
+    expect.arrayContaining(["unfamiliar unacknowledged", "latching unacknowledged", "bias unacknowledged"]),
   );
 }
 

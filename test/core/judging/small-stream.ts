@@ -9,6 +9,7 @@ import {
 } from "../../../core/judging/index.ts";
 import type { AlarmRule } from "../../../core/limit-set/index.ts";
 import { statisticLimits } from "../../../core/limits/index.ts";
+import type { LabResult } from "../../../core/messages/index.ts";
 import { calibrate, compileModel, interleaved, seededRandom } from "../../../core/pls/index.ts";
 import { axisFromSpec, parseSteps } from "../../../core/spectrum/index.ts";
 
@@ -96,6 +97,51 @@ export function unfamiliarAlarm(more: Partial<AlarmRule> = {}): AlarmRule {
     priority: "medium",
     untrusted: "evaluate",
     purpose,
+    ...more,
+  };
+}
+
+/** An alarm on the bias of `a` against the laboratory, over three pairs. */
+export function labBiasAlarm(more: Partial<AlarmRule> = {}): AlarmRule {
+  return unfamiliarAlarm({
+    key: "lab-bias",
+    title: "Biased against the laboratory",
+    watches: { kind: "lab bias", property: "a", bias: 0.05, deadband: 0.02, pairs: 3, confidence: 0.95 },
+    onDelay: { readings: 1 },
+    offDelay: { readings: 1 },
+    ...more,
+  });
+}
+
+/** The laboratory's value of `a` beside a prediction of 0.5. */
+export function labResult(time: number, value: number, more: Partial<LabResult> = {}): LabResult {
+  return {
+    stream: "small",
+    property: "a",
+    time,
+    method: "titration",
+    sample: "",
+    value,
+    unit: "",
+    by: "R. Quill",
+    receivedAt: time,
+    origin: "message",
+    version: 1,
+    withdrawn: false,
+    changes: [],
+    pair: {
+      predicted: 0.5,
+      from: time,
+      to: time,
+      readings: 1,
+      interpolated: false,
+      verdict: "inside",
+      apart: null,
+      says: "",
+      model: compiled.id,
+      limitSet: 1,
+      scores: null,
+    },
     ...more,
   };
 }

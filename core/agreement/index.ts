@@ -1,0 +1,15 @@
+export { type BiasTest, biasTest } from "./bias-test.ts";
+export { type CheckedProperty, plausibleRange, whyNotTaken } from "./check-result.ts";
+export { type Comparison, compare, comparedOf, promisedOf, type ScoredPair } from "./compare.ts";
+export { controlCharts, ewmaChart, leastBase, movingRanges, shortTermSigma } from "./control-charts.ts";
+export { type Compared, type CountedPair, findingOf } from "./finding.ts";
+export { findingInShort, findingWords, pWords, type Writing } from "./finding-words.ts";
+export { innerPlaces, type PlacedPair, yScoresOf } from "./inner-place.ts";
+export { type LabBias, labBias, labBiasCondition, type RememberedPair } from "./lab-bias.ts";
+export { type Line, lineThrough } from "./line.ts";
+export { furthest, grubbsCritical, oddPair } from "./odd-pair.ts";
+export { type Pairing, type PairingRules, pairOf, searchedFor } from "./pairing.ts";
+export { firstJudgement, fullJudgement, stageOf } from "./stage.ts";
+export { agreementStatistics, type Promised, sepTest } from "./statistics.ts";
+export { type Run, runsOf } from "./stretches.ts";
+export { writingFor } from "./writing.ts";
