@@ -5,6 +5,7 @@ import type { Plant } from "../../core/messages/index.ts";
 import { isWaiting } from "../data/alarm-order.ts";
 import { ApiError, api } from "../data/api.ts";
 import { Feed } from "../data/feed.ts";
+import { ownSettings } from "../data/own-settings.ts";
 import { baseStyle } from "../parts/base-style.ts";
 import { type PlantTime, plantTime } from "../words/plant-time.ts";
 import { type Notice, notices } from "./notices.ts";
@@ -165,6 +166,7 @@ export class MillraceApp extends LitElement {
       this.#feed.clockOffsetMs = plant.serverTime - Date.now();
       this.#feed.watch(() => this.#heard());
       this.#feed.open();
+      void ownSettings.of(plant.person);
       this.plant = plant;
       this.trouble = undefined;
     } catch (error) {

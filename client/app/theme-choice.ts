@@ -1,18 +1,17 @@
+import { type ThemeChoice, themes } from "../../core/messages/index.ts";
+import { ownSettings } from "../data/own-settings.ts";
 import { remembered } from "../data/remembered.ts";
 
-export const themes = ["system", "light", "dark"] as const;
-export type ThemeChoice = (typeof themes)[number];
-
-const choice = remembered<ThemeChoice>("theme", "system");
+/** What this browser showed last: it holds until somebody's own settings are known, and at the door. */
+const last = remembered<ThemeChoice>("theme", "system");
 const systemIsDark = matchMedia("(prefers-color-scheme: dark)");
 
 export function chosenTheme(): ThemeChoice {
-  return themes.find((theme) => theme === choice.get()) ?? "system";
+  return themes.find((theme) => theme === last.get()) ?? "system";
 }
 
 export function chooseTheme(theme: ThemeChoice): void {
-  choice.set(theme);
-  showTheme();
+  ownSettings.change({ theme });
 }
 
 /** Puts the theme on the page; `system` follows the computer's, also when that changes later. */
@@ -22,3 +21,7 @@ export function showTheme(): void {
 }
 
 systemIsDark.addEventListener("change", showTheme);
+ownSettings.watch(() => {
+  last.set(ownSettings.value.theme);
+  showTheme();
+});

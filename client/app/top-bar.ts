@@ -1,12 +1,12 @@
 import { css, html, LitElement, nothing } from "lit";
-import type { OpenAlarm, Plant } from "../../core/messages/index.ts";
+import { type OpenAlarm, type Plant, type ThemeChoice, themes } from "../../core/messages/index.ts";
 import { calling, countOf } from "../data/alarm-order.ts";
 import { api } from "../data/api.ts";
 import { baseStyle } from "../parts/base-style.ts";
 import "../parts/priority-mark.ts";
 import type { PlantTime } from "../words/plant-time.ts";
 import type { Route } from "./route.ts";
-import { chooseTheme, chosenTheme, type ThemeChoice, themes } from "./theme-choice.ts";
+import { chooseTheme, chosenTheme } from "./theme-choice.ts";
 import "./view-nav.ts";
 
 const themeNames: Record<ThemeChoice, string> = {

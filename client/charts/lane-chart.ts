@@ -49,6 +49,9 @@ export class LaneChart extends LitElement {
         min-height: 180px;
         overflow: hidden;
       }
+      :host([upper]) {
+        min-height: 104px;
+      }
       .plot {
         position: absolute;
         inset: 0;
@@ -130,7 +133,7 @@ export class LaneChart extends LitElement {
     ].join(" ");
     this.#stale = this.#stale || always || key !== this.#drawn;
     if (!this.#stale || !this.#visible) return;
-    const rebuilt = `${picture.property.name} ${box.width} ${box.height}`;
+    const rebuilt = `${picture.property.name} ${picture.foot} ${box.width} ${box.height}`;
     if (this.#built !== rebuilt || !this.#plot) {
       this.#build(box.width, box.height);
       this.#built = rebuilt;
@@ -150,6 +153,7 @@ export class LaneChart extends LitElement {
       width: Math.floor(width),
       height: Math.floor(height),
       scale: this.picture.property.scale,
+      foot: this.picture.foot,
       window: () => ({ from: this.picture.from, to: this.picture.to }),
       time: this.time,
       colour: (name) => this.#palette()[name],
@@ -187,7 +191,7 @@ export class LaneChart extends LitElement {
       width,
       x: (at) => left + (at - from) * perMs,
       y: (value) => y0 + value * perUnit,
-      layout: laneLayout(u.height),
+      layout: laneLayout(u.height, this.picture.foot),
       colours: this.#palette(),
     };
   }

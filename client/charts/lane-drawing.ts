@@ -19,6 +19,8 @@ export interface LanePicture {
   from: number;
   to: number;
   live: boolean;
+  /** with ribbon and time axis under it; of trends above one another only the lowest has them */
+  foot: boolean;
   /** what is shown is old: everything after the newest reading is unknown, however short */
   old: boolean;
   /** stretches during which something stayed beyond its limit, for the marks on top */
@@ -109,11 +111,11 @@ export function drawLane(pen: Pen, picture: LanePicture): void {
     const runs = trendRuns(trend, picture.property.name).filter((run) => run.last >= first && run.first <= last);
     for (const run of runs) drawBands(pen, picture, trend, run);
     for (const run of runs) drawRun(pen, picture, trend, run);
-    drawRibbon(pen, picture, trend, first, last);
+    if (picture.foot) drawRibbon(pen, picture, trend, first, last);
     drawMarks(pen, picture);
     ctx.restore();
   }
-  drawRibbonScale(pen);
+  if (picture.foot) drawRibbonScale(pen);
   drawEdge(pen, picture);
   drawLimitLabels(pen, picture.property);
 }
@@ -435,6 +437,7 @@ function drawEdge(pen: Pen, picture: LanePicture): void {
   ctx.lineTo(left + width, pen.top + layout.height * ratio);
   ctx.stroke();
   ctx.setLineDash([]);
+  if (!picture.foot) return;
   ctx.fillStyle = picture.live ? colours.quiet : colours.ink;
   ctx.font = scaledFont(ratio);
   ctx.textAlign = "left";

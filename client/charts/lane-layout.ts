@@ -13,8 +13,15 @@ export const padTop = 6;
 /** a strip of this height has room for three words beside it */
 export const wordyStrip = 38;
 
-/** @param height of the whole chart, px. The strips take a third of it: room enough for the words of their scale on a tall lane. */
-export function laneLayout(height: number): LaneLayout {
+/**
+ * @param height of the whole chart, px. The strips take a third of it: room enough for the words of their scale on a tall lane.
+ * @param foot whether ribbon and time axis stand under the trend; of trends above one another only the lowest has them
+ */
+export function laneLayout(height: number, foot = true): LaneLayout {
+  if (!foot) {
+    const plot = Math.max(60, height - padTop);
+    return { trendTop: 4, trendBottom: plot - 8, t2Top: plot, qTop: plot, strip: 0, height: plot };
+  }
   const plot = Math.max(120, height - axisHeight - padTop);
   const strip = Math.round(Math.min(44, Math.max(26, plot * 0.18)));
   const between = strip >= wordyStrip ? 14 : 6;

@@ -10,6 +10,8 @@ export interface LaneOptions {
   width: number;
   height: number;
   scale: readonly [number, number];
+  /** with ribbon and time axis under it */
+  foot: boolean;
   window: () => { from: number; to: number };
   time: PlantTime;
   colour: (name: "quiet" | "rule") => string;
@@ -23,8 +25,8 @@ export const rightGutter = 104;
 
 /** uPlot's options for one lane: scales and axes; the line and the ribbon are drawn by the two hooks. */
 export function laneOptions(options: LaneOptions): uPlot.Options {
-  const { width, height, scale, time } = options;
-  const layout = laneLayout(height);
+  const { width, height, scale, time, foot } = options;
+  const layout = laneLayout(height, foot);
   const [low, high] = scale;
   const step = valueStep(low, high, Math.max(3, Math.floor((layout.trendBottom - layout.trendTop) / 30)));
   const most = Math.max(2, Math.floor((width - leftGutter - rightGutter) / 84));
@@ -63,6 +65,7 @@ export function laneOptions(options: LaneOptions): uPlot.Options {
     series: [{}, { scale: "y", paths: () => null, points: { show: false } }],
     axes: [
       {
+        show: foot,
         size: axisHeight,
         font: chartFont,
         gap: 4,

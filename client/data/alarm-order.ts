@@ -9,6 +9,11 @@ export function isWaiting({ state }: Pick<OpenAlarm, "state">): boolean {
   return state === "unacknowledged" || state === "returned unacknowledged" || state === "latched unacknowledged";
 }
 
+/** Has its condition gone, so that only a person keeps it open? */
+export function isGone({ state }: Pick<OpenAlarm, "state">): boolean {
+  return state === "returned unacknowledged" || state.startsWith("latched");
+}
+
 /** Most urgent first; among equals the ones that wait for a person before the acknowledged, then the newest. A copy. */
 export function byUrgency(alarms: readonly OpenAlarm[]): OpenAlarm[] {
   const waits = (alarm: OpenAlarm) => (isWaiting(alarm) ? 0 : 1);

@@ -2,6 +2,7 @@ import type { LimitSet } from "../../core/limit-set/index.ts";
 import type {
   Excursion,
   ExcursionLabel,
+  KeptSettings,
   LimitChangeOutcome,
   LimitSets,
   OpenAlarm,
@@ -11,6 +12,7 @@ import type {
   ReadingView,
   RecordedEvent,
   Refusals,
+  Settings,
   Trend,
 } from "../../core/messages/index.ts";
 
@@ -105,6 +107,8 @@ export const api = {
     ask<LimitChangeOutcome>(`${stream(id)}/limit-proposals/${proposal}/approve`, { method: "POST" }),
   withdrawLimits: (id: string, proposal: number, reason: string) =>
     ask<LimitChangeOutcome>(`${stream(id)}/limit-proposals/${proposal}/withdraw`, asJson({ reason })),
+  settings: () => ask<KeptSettings>("/me/settings"),
+  keepSettings: (settings: Settings) => ask<void>("/me/settings", { ...asJson(settings), method: "PUT" }),
   signIn: (name: string, password: string) => ask<Plant["person"]>("/sign-in", asJson({ name, password })),
   /** is somebody signed in, or nobody needed? A link that was refused does not say why. */
   isWelcome: () =>

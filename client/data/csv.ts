@@ -19,18 +19,19 @@ export function csvOf(rows: readonly (readonly Cell[])[]): string {
  */
 export function trendCsv(
   trend: HeldTrend,
-  { name, unit }: Pick<PlantProperty, "name" | "unit">,
+  properties: readonly Pick<PlantProperty, "name" | "unit">[],
   { from, to, time }: { from: number; to: number; time: PlantTime },
 ): string {
-  const { mean, min, max, uncertainty } = trend.properties[name];
   const header = [
     "time (UTC)",
     `time (${time.zone})`,
     "readings",
-    `${name} (${unit})`,
-    `uncertainty (${unit})`,
-    `lowest (${unit})`,
-    `highest (${unit})`,
+    ...properties.flatMap(({ name, unit }) => [
+      `${name} (${unit})`,
+      `${name} uncertainty (${unit})`,
+      `${name} lowest (${unit})`,
+      `${name} highest (${unit})`,
+    ]),
     "verdict",
     "largest T2 ratio",
     "largest Q ratio",
@@ -42,10 +43,10 @@ export function trendCsv(
       new Date(at).toISOString(),
       time.full(at),
       trend.count[index],
-      mean[index],
-      onlyInside(trend.verdict[index]) ? uncertainty[index] : null,
-      min[index],
-      max[index],
+      ...properties.flatMap(({ name }) => {
+        const { mean, min, max, uncertainty } = trend.properties[name];
+        return [mean[index], onlyInside(trend.verdict[index]) ? uncertainty[index] : null, min[index], max[index]];
+      }),
       verdictsOfMask(trend.verdict[index]).join(" "),
       trend.t2.max[index],
       trend.q.max[index],

@@ -14,6 +14,7 @@ export class AlarmCard extends LitElement {
     now: { attribute: false },
     time: { attribute: false },
     full: { type: Boolean },
+    brief: { type: Boolean },
     engineer: { type: Boolean },
     linkUp: { attribute: false },
     sending: { state: true },
@@ -24,6 +25,8 @@ export class AlarmCard extends LitElement {
   declare time: PlantTime;
   /** with cause, consequence and time to respond */
   declare full: boolean;
+  /** evidence and response folded away: one that is gone, or one of many */
+  declare brief: boolean;
   /** the person may take it out of service */
   declare engineer: boolean;
   declare linkUp: boolean;
@@ -94,8 +97,14 @@ export class AlarmCard extends LitElement {
         <small style="color:var(${priorityColour[alarm.priority]})">${alarm.priority}</small>
       </h3>
       <p class="quiet">${this.#standing()}</p>
-      <p>${alarm.says}</p>
-      <p>${alarm.response}</p>
+      ${
+        this.brief
+          ? html`<details>
+              <summary>What it was, what to do</summary>
+              ${this.#evidence()}
+            </details>`
+          : this.#evidence()
+      }
       ${this.full ? this.#purpose() : nothing}
       <div class="commands">
         ${waits ? this.#button("acknowledge", "Acknowledge") : nothing}
@@ -104,6 +113,11 @@ export class AlarmCard extends LitElement {
       ${this.full ? this.#shelving() : nothing} ${this.full && this.engineer ? this.#outOfService() : nothing}
       ${this.failed ? html`<p class="failed" role="alert">Not done: ${this.failed}</p>` : nothing}
     </article>`;
+  }
+
+  #evidence() {
+    return html`<p>${this.alarm.says}</p>
+      <p>${this.alarm.response}</p>`;
   }
 
   #standing() {

@@ -14,14 +14,17 @@ export class LaneNumber extends LitElement {
     stream: { attribute: false },
     state: { attribute: false },
     chosen: { attribute: false },
+    drawn: { attribute: false },
     freshness: { attribute: false },
     now: { attribute: false },
     time: { attribute: false },
   };
   declare stream: PlantStream;
   declare state: StreamNow | undefined;
-  /** the property that is drawn and stands big */
+  /** the property that stands big; its trend is drawn */
   declare chosen: PlantProperty;
+  /** names of all whose trends are drawn */
+  declare drawn: readonly string[];
   declare freshness: Freshness;
   declare now: number;
   declare time: PlantTime;
@@ -88,20 +91,35 @@ export class LaneNumber extends LitElement {
       .others {
         margin-top: 8px;
       }
-      .others button {
-        width: 100%;
+      .others li {
+        display: flex;
+        align-items: center;
+        gap: 4px;
+        margin: 0 -6px;
+      }
+      .others .also {
+        flex: none;
+        padding: 2px 6px;
+        min-height: 24px;
+        font-size: 13px;
+        color: var(--quiet);
+        border-color: var(--rule);
+      }
+      .others .also[aria-pressed="true"] {
+        color: var(--lane);
+      }
+      .others .large {
+        flex: 1;
         display: flex;
         flex-wrap: wrap;
         justify-content: space-between;
         gap: 0 8px;
         border-color: transparent;
         padding: 2px 6px;
-        margin: 0 -6px;
-        width: calc(100% + 12px);
         min-height: 26px;
         text-align: left;
       }
-      .others button:hover {
+      .others .large:hover {
         border-color: var(--edge);
       }
       .doubtful .others .whole,
@@ -206,16 +224,25 @@ export class LaneNumber extends LitElement {
           words = `${fixed(prediction.value, decimals)}${around}${thin}${property.unit}`;
         }
         return html`<li>
-          <button title="Draw ${property.name}" @click=${() => this.#choose(property.name)}>
+          <button class="large" title="Write ${property.name} large and draw it" @click=${() => this.#tell("choose-property", property.name)}>
             <span>${named(property.name)}</span><span class="whole">${words}</span>
+          </button>
+          <button
+            class="also"
+            title="Draw ${property.name}, too"
+            aria-label="Trend of ${property.name}, too"
+            aria-pressed=${this.drawn.includes(property.name)}
+            @click=${() => this.#tell("draw-too", property.name)}
+          >
+            trend
           </button>
         </li>`;
       })}
     </ul>`;
   }
 
-  #choose(name: string): void {
-    this.dispatchEvent(new CustomEvent("choose-property", { detail: name, bubbles: true, composed: true }));
+  #tell(what: "choose-property" | "draw-too", name: string): void {
+    this.dispatchEvent(new CustomEvent(what, { detail: name, bubbles: true, composed: true }));
   }
 }
 customElements.define("mill-lane-number", LaneNumber);

@@ -2,7 +2,7 @@ import { css, html, LitElement, nothing } from "lit";
 import { repeat } from "lit/directives/repeat.js";
 import type { Excursion, PlantProperty, PlantStream } from "../../core/messages/index.ts";
 import type { LanePicture } from "../charts/lane-drawing.ts";
-import { byUrgency } from "../data/alarm-order.ts";
+import { byUrgency, isGone } from "../data/alarm-order.ts";
 import { trendCsv } from "../data/csv.ts";
 import type { Feed } from "../data/feed.ts";
 import { freshness } from "../data/freshness.ts";
@@ -22,6 +22,8 @@ import { counted, named } from "../words/quantity.ts";
 /** Lanes that come into sight when the page is scrolled by this much are kept ready. */
 const nearPx = 300;
 const farEveryMs = 1000;
+/** open alarms of a lane that stand with evidence and response; the others fold them, so that a lane stays a lane */
+const wholeCards = 2;
 
 /** One stream: the number, the trend with its ribbon, and what is open at its end. */
 export class WatchLane extends LitElement {
@@ -45,15 +47,16 @@ export class WatchLane extends LitElement {
   declare cursor: number | undefined;
   /** of all streams, in and about the window */
   declare excursions: readonly Excursion[];
-  /** name of the property that is drawn */
-  declare chosen: string | undefined;
+  /** names of the properties that are drawn; the first stands big */
+  declare chosen: readonly string[] | undefined;
   declare tabled: boolean;
   readonly #trend = new TrendLoader(
     this,
     () => this.feed,
     () => this.stream,
   );
-  #sentence = { made: 0, text: "" };
+  /** by property */
+  readonly #sentences = new Map<string, { made: number; text: string }>();
   #near = true;
   #renderedAt = 0;
   #stopWatching: (() => void) | undefined;
@@ -88,9 +91,24 @@ export class WatchLane extends LitElement {
       }
       .chart {
         display: grid;
-        grid-template-rows: auto minmax(0, 1fr) auto;
+        grid-template-rows: minmax(0, 1fr) auto;
         padding: 2px 0 0 0;
         min-width: 0;
+        min-height: calc(100px + var(--trends) * 114px);
+      }
+      .stack {
+        display: flex;
+        flex-direction: column;
+        min-width: 0;
+        grid-row: 1;
+        grid-column: 1;
+      }
+      .stack mill-lane-chart {
+        height: auto;
+        flex: 2;
+      }
+      .stack mill-lane-chart[upper] {
+        flex: 1;
       }
       .caption {
         display: flex;
@@ -125,12 +143,9 @@ export class WatchLane extends LitElement {
         max-width: 48ch;
         text-align: center;
         padding: 16px;
-        grid-row: 2;
+        grid-row: 1;
         grid-column: 1;
-      }
-      mill-lane-chart {
-        grid-row: 2;
-        grid-column: 1;
+        z-index: 1;
       }
       .table button {
         float: right;
@@ -159,7 +174,7 @@ export class WatchLane extends LitElement {
           border-bottom: 1px solid var(--rule);
         }
         .chart {
-          height: 280px;
+          height: calc(150px + var(--trends) * 130px);
         }
         .chart:has(.table) {
           height: auto;
@@ -206,7 +221,8 @@ export class WatchLane extends LitElement {
     this.#renderedAt = performance.now();
     const { stream, feed, now, time } = this;
     const state = feed.of(stream.id);
-    const property = stream.properties.find(({ name }) => name === this.chosen) ?? stream.properties[0];
+    const drawn = this.#drawn();
+    const [property] = drawn;
     if (!property)
       return html`<div class="now"><h2>${stream.name}</h2><p>${stream.trouble ?? "No model gives this stream a property yet."}</p></div>`;
     const fresh = freshness({
@@ -224,21 +240,42 @@ export class WatchLane extends LitElement {
           .stream=${stream}
           .state=${state}
           .chosen=${property}
+          .drawn=${drawn.map(({ name }) => name)}
           .freshness=${fresh}
           .now=${now}
           .time=${time}
         ></mill-lane-number>
       </div>
-      ${this.#chart(property, fresh.kind === "old")}
+      ${this.#charts(drawn, fresh.kind === "old")}
       <div class="open">${this.#open()}</div>
     `;
   }
 
-  #chart(property: PlantProperty, old: boolean) {
+  /** The properties whose trends are drawn: as chosen, else the first. */
+  #drawn(): PlantProperty[] {
+    const { properties } = this.stream;
+    const chosen = (this.chosen ?? []).flatMap((name) => properties.find((each) => each.name === name) ?? []);
+    return chosen.length > 0 ? chosen : properties.slice(0, 1);
+  }
+
+  #charts(drawn: readonly PlantProperty[], old: boolean) {
     const { from, to } = edges(this.window, this.now);
     const width = this.clientWidth > 1100 ? this.clientWidth - 640 : Math.max(240, this.clientWidth - 360);
     if (this.#near) this.#trend.want({ from, to, points: Math.round(Math.min(1200, width)) });
-    const { trend, version, error, loading } = this.#trend;
+    const { trend, error, loading } = this.#trend;
+    const empty = trend && !trend.time.some((at) => at >= from && at <= to);
+    return html`<div class="chart" style="--trends:${drawn.length}">
+      <div class="stack">${drawn.map((property, i) => this.#chart(property, { first: i === 0, foot: i === drawn.length - 1, old }))}</div>
+      ${error ? html`<p class="wait" role="status">The trend could not be read. ${error.message}</p>` : nothing}
+      ${!trend && loading && !error ? html`<p class="wait">Reading the trend …</p>` : nothing}
+      ${empty && !error ? html`<p class="wait">No readings in this stretch.</p>` : nothing}
+      ${this.tabled && trend ? this.#table(drawn, from, to) : nothing}
+    </div>`;
+  }
+
+  #chart(property: PlantProperty, { first, foot, old }: { first: boolean; foot: boolean; old: boolean }) {
+    const { from, to } = edges(this.window, this.now);
+    const { trend, version } = this.#trend;
     const picture: LanePicture = {
       trend,
       property,
@@ -247,35 +284,34 @@ export class WatchLane extends LitElement {
       from,
       to,
       live: this.window.kind === "live",
+      foot,
       old,
-      marks: this.#marks(),
+      marks: first ? this.#marks() : [],
     };
-    const empty = trend && !trend.time.some((at) => at >= from && at <= to);
-    return html`<div class="chart">
-      <div class="caption">
-        <span class="at">${this.#caption(property)}</span>
-        <button
-          aria-expanded=${this.tabled}
-          aria-label="Table of ${this.stream.name}"
-          @click=${() => {
-            this.tabled = !this.tabled;
-          }}
-        >
-          Table
-        </button>
+    return html`<div class="caption">
+        <span class="at">${this.#caption(property, first)}</span>
+        ${
+          first
+            ? html`<button
+                aria-expanded=${this.tabled}
+                aria-label="Table of ${this.stream.name}"
+                @click=${() => {
+                  this.tabled = !this.tabled;
+                }}
+              >
+                Table
+              </button>`
+            : nothing
+        }
       </div>
       <mill-lane-chart
+        ?upper=${!foot}
         .picture=${picture}
         .version=${version}
         .cursor=${this.cursor}
         .time=${this.time}
         .label=${trend ? this.#label(property, from, to) : `${this.stream.name}: the trend is loading`}
-      ></mill-lane-chart>
-      ${error ? html`<p class="wait" role="status">The trend could not be read. ${error.message}</p>` : nothing}
-      ${!trend && loading && !error ? html`<p class="wait">Reading the trend …</p>` : nothing}
-      ${empty && !error ? html`<p class="wait">No readings in this stretch.</p>` : nothing}
-      ${this.tabled && trend ? this.#table(property, from, to) : nothing}
-    </div>`;
+      ></mill-lane-chart>`;
   }
 
   #marks(): LanePicture["marks"] {
@@ -286,14 +322,15 @@ export class WatchLane extends LitElement {
   }
 
   /** At rest what the axis shows; with the cursor on, the values at it. */
-  #caption(property: PlantProperty) {
+  #caption(property: PlantProperty, withTrust: boolean) {
     const { trend } = this.#trend;
     const title = `${named(property.name)}, ${property.unit}`;
     if (this.cursor === undefined || !trend) return title;
     const index = entryAt(trend, this.cursor, this.stream.gapMs);
     const at = this.time.exact(this.cursor, this.now);
-    if (index === undefined) return html`<b>${at}</b> no reading`;
+    if (index === undefined) return withTrust ? html`<b>${at}</b> no reading` : title;
     const row = trendRow(trend, property, index);
+    if (!withTrust) return html`${named(property.name)} ${row.value}`;
     return html`<b>${this.time.exact(row.at, this.now)}</b> ${row.value} · ${row.verdict} · T² ${row.t2} · Q ${row.q} × limit`;
   }
 
@@ -301,13 +338,11 @@ export class WatchLane extends LitElement {
   #label(property: PlantProperty, from: number, to: number): string {
     const { trend } = this.#trend;
     const at = performance.now();
-    if (trend && (at - this.#sentence.made > 5000 || !this.#sentence.text)) {
-      this.#sentence = {
-        made: at,
-        text: `${this.stream.name}. ${trendSentence(this.#sight(trend, property, from, to))} Arrow keys move the cursor, Page Up and Page Down pan, plus and minus zoom, Enter opens the reading.`,
-      };
-    }
-    return this.#sentence.text;
+    const before = this.#sentences.get(property.name);
+    if (!trend || (before && at - before.made <= 5000)) return before?.text ?? "";
+    const text = `${this.stream.name}. ${trendSentence(this.#sight(trend, property, from, to))} Arrow keys move the cursor, Page Up and Page Down pan, plus and minus zoom, Enter opens the reading.`;
+    this.#sentences.set(property.name, { made: at, text });
+    return text;
   }
 
   #sight(trend: HeldTrend, property: PlantProperty, from: number, to: number): TrendSight {
@@ -315,32 +350,33 @@ export class WatchLane extends LitElement {
     return { trend, property, from, to, now, time, gapMs: stream.gapMs, live: window.kind === "live" };
   }
 
-  #table(property: PlantProperty, from: number, to: number) {
-    const { now, time } = this;
+  #table(drawn: readonly PlantProperty[], from: number, to: number) {
+    const { now, time, stream } = this;
     const { trend } = this.#trend;
     if (!trend) return nothing;
-    const sight = this.#sight(trend, property, from, to);
-    const save = () => saveFile(fileName(this.stream.id, from), trendCsv(trend, property, sight));
-    return html`<div class="table" tabindex="0" role="region" aria-label="Table of ${this.stream.name}">
+    const sights = drawn.map((property) => this.#sight(trend, property, from, to));
+    const columns = sights.map((sight) => trendRows(sight));
+    const save = () => saveFile(fileName(stream.id, from), trendCsv(trend, stream.properties, sights[0]));
+    return html`<div class="table" tabindex="0" role="region" aria-label="Table of ${stream.name}">
       <button @click=${save}>Save all of it as CSV</button>
       <table>
         <caption>
-          ${trendSentence(sight)}
+          ${sights.map((sight) => html`<div>${trendSentence(sight)}</div>`)}
         </caption>
         <thead>
           <tr>
             <th scope="col">Time, ${time.zoneName(now)}</th>
-            <th scope="col">${named(property.name)}</th>
+            ${drawn.map(({ name }) => html`<th scope="col">${named(name)}</th>`)}
             <th scope="col">Verdict</th>
             <th scope="col" class="number">T² ratio</th>
             <th scope="col" class="number">Q ratio</th>
           </tr>
         </thead>
         <tbody>
-          ${trendRows(sight).map(
-            (row) => html`<tr>
+          ${columns[0].map(
+            (row, i) => html`<tr>
               <td>${time.exact(row.at, now)}</td>
-              <td>${row.value}</td>
+              ${columns.map((rows) => html`<td>${rows[i].value}</td>`)}
               <td>${row.verdict}</td>
               <td class="number">${row.t2}</td>
               <td class="number">${row.q}</td>
@@ -368,8 +404,14 @@ export class WatchLane extends LitElement {
       ${repeat(
         alarms,
         ({ key }) => key,
-        (alarm) =>
-          html`<mill-alarm-card .alarm=${alarm} .now=${now} .time=${time} .linkUp=${feed.linkUp}></mill-alarm-card>`,
+        (alarm, i) =>
+          html`<mill-alarm-card
+            .alarm=${alarm}
+            .now=${now}
+            .time=${time}
+            .linkUp=${feed.linkUp}
+            ?brief=${isGone(alarm) || i >= wholeCards}
+          ></mill-alarm-card>`,
       )}
       ${
         aside.length > 0

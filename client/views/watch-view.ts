@@ -1,22 +1,24 @@
 import { css, html, LitElement, nothing } from "lit";
-import type { Plant } from "../../core/messages/index.ts";
+import { repeat } from "lit/directives/repeat.js";
+import type { Plant, PlantStream } from "../../core/messages/index.ts";
 import { href, type Route } from "../app/route.ts";
 import type { ChartGesture } from "../charts/lane-chart.ts";
 import { api } from "../data/api.ts";
 import type { Feed } from "../data/feed.ts";
+import { groupsOf, type LanePlaces, placesOf } from "../data/lane-order.ts";
 import { Listening, ticking } from "../data/listening.ts";
 import { Loaded } from "../data/loaded.ts";
-import { remembered } from "../data/remembered.ts";
+import { ownSettings } from "../data/own-settings.ts";
 import { edges, pan, span, stopAt, type TimeWindow, zoom } from "../data/time-window.ts";
 import { baseStyle } from "../parts/base-style.ts";
 import type { RangeWish } from "../parts/range-bar.ts";
+import "../parts/lane-arranger.ts";
 import "../parts/range-bar.ts";
 import "./watch-lane.ts";
 import type { PlantTime } from "../words/plant-time.ts";
 
 /** excursions that are marked on the time axis, at most */
 const mostMarks = 500;
-const chosenProperties = remembered<Record<string, string>>("properties", {});
 
 /** All streams over one stretch of time, with one cursor. It owns the window; the URL follows it. */
 export class WatchView extends LitElement {
@@ -26,14 +28,14 @@ export class WatchView extends LitElement {
     time: { attribute: false },
     route: { attribute: false },
     cursor: { state: true },
-    chosen: { state: true },
+    arranging: { state: true },
   };
   declare plant: Plant;
   declare feed: Feed;
   declare time: PlantTime;
   declare route: Extract<Route, { view: "watch" }>;
   declare cursor: number | undefined;
-  declare chosen: Record<string, string>;
+  declare arranging: boolean;
 
   readonly #excursions = new Loaded(this, (key, signal) => {
     const [from, to] = key.split(" ").map(Number);
@@ -43,8 +45,9 @@ export class WatchView extends LitElement {
 
   constructor() {
     super();
-    this.chosen = chosenProperties.get();
+    this.arranging = false;
     ticking(this);
+    new Listening(this, (changed) => ownSettings.watch(changed));
     new Listening(this, (changed) =>
       this.feed?.watch(() => {
         this.#heardEvents();
@@ -70,8 +73,18 @@ export class WatchView extends LitElement {
       .one {
         margin-bottom: 8px;
       }
-      .keys {
+      h2.group {
+        margin: 4px 0 -2px;
+      }
+      .under {
+        display: flex;
+        flex-wrap: wrap;
+        justify-content: space-between;
+        align-items: center;
+        gap: 4px 24px;
         margin-top: 8px;
+      }
+      .keys {
         font-size: 13px;
         color: var(--quiet);
       }
@@ -108,28 +121,67 @@ export class WatchView extends LitElement {
           : nothing
       }
       ${streams.length === 0 ? this.#empty() : nothing}
+      ${this.arranging ? this.#arranger() : nothing}
       <div class="lanes" @chart-gesture=${({ detail }: CustomEvent<ChartGesture>) => this.#pointAt(detail)}>
-        ${streams.map(
-          (stream) =>
-            html`<mill-watch-lane
-              .stream=${stream}
-              .feed=${feed}
-              .time=${time}
-              .window=${route.window}
-              .now=${now}
-              .cursor=${this.cursor}
-              .excursions=${this.#excursions.value?.excursions ?? []}
-              .chosen=${this.chosen[stream.id]}
-              @chart-gesture=${(event: CustomEvent<ChartGesture>) => this.#answer(event.detail, stream.id)}
-              @choose-property=${({ detail }: CustomEvent<string>) => this.#choose(stream.id, detail)}
-            ></mill-watch-lane>`,
+        ${repeat(
+          groupsOf(
+            placesOf(
+              streams.map(({ id }) => id),
+              ownSettings.value.lanes,
+            ),
+          ),
+          ({ name }) => name,
+          (group) => html`
+            ${group.name ? html`<h2 class="group">${group.name}</h2>` : nothing}
+            ${repeat(
+              group.streams,
+              (id) => id,
+              (id) => this.#lane(streams.find((each) => each.id === id) as PlantStream, now),
+            )}
+          `,
         )}
       </div>
-      <p class="keys">
+      <div class="under"><p class="keys">
         Drag a trend to move through time, turn the wheel to see more or less of it, click to open a reading. With the keyboard: arrows
         move the cursor, Page Up and Page Down pan, + and − zoom, Enter opens the reading.
       </p>
+      ${streams.length > 1 && !this.arranging ? html`<button @click=${this.#arrange}>Arrange the lanes</button>` : nothing}</div>
     `;
+  }
+
+  #lane(stream: PlantStream, now: number) {
+    const { feed, time, route } = this;
+    return html`<mill-watch-lane
+      .stream=${stream}
+      .feed=${feed}
+      .time=${time}
+      .window=${route.window}
+      .now=${now}
+      .cursor=${this.cursor}
+      .excursions=${this.#excursions.value?.excursions ?? []}
+      .chosen=${ownSettings.value.properties[stream.id]}
+      @chart-gesture=${(event: CustomEvent<ChartGesture>) => this.#answer(event.detail, stream.id)}
+      @choose-property=${({ detail }: CustomEvent<string>) => this.#drawFirst(stream, detail)}
+      @draw-too=${({ detail }: CustomEvent<string>) => this.#drawToo(stream, detail)}
+    ></mill-watch-lane>`;
+  }
+
+  #arranger() {
+    const { streams } = this.plant;
+    const ids = streams.map(({ id }) => id);
+    return html`<mill-lane-arranger
+      .places=${placesOf(ids, ownSettings.value.lanes)}
+      .streams=${streams}
+      @lanes-arranged=${({ detail }: CustomEvent<LanePlaces>) => ownSettings.change({ lanes: placesOf(ids, detail) })}
+      @arranging-done=${() => {
+        this.arranging = false;
+      }}
+    ></mill-lane-arranger>`;
+  }
+
+  #arrange(): void {
+    this.arranging = true;
+    scrollTo(0, 0);
   }
 
   /** Asked for in steps of a quarter of the window, so that a live window does not ask at every tick. */
@@ -212,9 +264,24 @@ export class WatchView extends LitElement {
     this.dispatchEvent(new CustomEvent("go", { detail: { route, replace }, bubbles: true, composed: true }));
   }
 
-  #choose(stream: string, property: string): void {
-    this.chosen = { ...this.chosen, [stream]: property };
-    chosenProperties.set(this.chosen);
+  /** Names of the properties that a lane draws: as kept, else the first that the model gives. */
+  #drawnOf({ id, properties }: PlantStream): string[] {
+    return ownSettings.value.properties[id] ?? properties.slice(0, 1).map(({ name }) => name);
+  }
+
+  /** The property takes the first place; the others that are drawn stay, but for the one it takes it from. */
+  #drawFirst(stream: PlantStream, name: string): void {
+    const [, ...others] = this.#drawnOf(stream);
+    this.#keepDrawn(stream, [name, ...others.filter((each) => each !== name)]);
+  }
+
+  #drawToo(stream: PlantStream, name: string): void {
+    const drawn = this.#drawnOf(stream);
+    this.#keepDrawn(stream, drawn.includes(name) ? drawn.filter((each) => each !== name) : [...drawn, name]);
+  }
+
+  #keepDrawn({ id }: PlantStream, drawn: string[]): void {
+    ownSettings.change({ properties: { ...ownSettings.value.properties, [id]: drawn } });
   }
 }
 

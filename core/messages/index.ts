@@ -133,6 +133,15 @@ export {
   ResultSchema,
   resultOf,
 } from "./result.ts";
+export {
+  type KeptSettings,
+  KeptSettingsSchema,
+  type Settings,
+  SettingsSchema,
+  standardSettings,
+  type ThemeChoice,
+  themes,
+} from "./settings.ts";
 export { type Shift, ShiftSchema, type Shifts, ShiftsSchema } from "./shift.ts";
 export {
   isInside,

@@ -22,6 +22,7 @@ import { limitSetRoutes } from "./routes/limit-sets.ts";
 import { loadRoutes } from "./routes/load.ts";
 import { peopleRoutes } from "./routes/people.ts";
 import { recordRoutes } from "./routes/record.ts";
+import { settingsRoutes } from "./routes/settings.ts";
 import { shiftRoutes } from "./routes/shifts.ts";
 import { streamRoutes } from "./routes/streams.ts";
 import { type Who, whoOf } from "./who.ts";
@@ -130,6 +131,7 @@ export async function startGateway(options: {
         if (!request.url.startsWith("/api/v1/sign-")) personOf(request);
       });
       peopleRoutes(api, parts);
+      settingsRoutes(api, parts);
       recordRoutes(api, parts);
       streamRoutes(api, parts);
       alarmRoutes(api, parts);

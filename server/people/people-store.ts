@@ -12,6 +12,7 @@ const schema = `
 CREATE TABLE IF NOT EXISTS person (name TEXT PRIMARY KEY, role TEXT NOT NULL, salt BLOB NOT NULL, hash BLOB NOT NULL, active INTEGER NOT NULL) STRICT;
 CREATE TABLE IF NOT EXISTS session (id BLOB PRIMARY KEY, name TEXT NOT NULL REFERENCES person ON DELETE CASCADE, expires INTEGER NOT NULL) STRICT, WITHOUT ROWID;
 CREATE TABLE IF NOT EXISTS token (id BLOB PRIMARY KEY, label TEXT NOT NULL UNIQUE, role TEXT NOT NULL, expires INTEGER NOT NULL) STRICT, WITHOUT ROWID;
+CREATE TABLE IF NOT EXISTS setting (name TEXT PRIMARY KEY REFERENCES person ON DELETE CASCADE, value TEXT NOT NULL) STRICT;
 `;
 
 /** A shift and its handover: nobody signs in twice in a shift, and nobody's session outlives the next. */
@@ -138,6 +139,15 @@ export class PeopleStore {
         "SELECT 'token ' || label AS name, role FROM token WHERE id = ? AND expires > ?",
       )
       .get(digest(secret), now);
+  }
+
+  /** How a person has arranged their screens, as it was kept; undefined before the first time. */
+  settings(name: string): string | undefined {
+    return this.#db.prepare<[string], { value: string }>("SELECT value FROM setting WHERE name = ?").get(name)?.value;
+  }
+
+  keepSettings(name: string, value: string): void {
+    this.#db.prepare("INSERT OR REPLACE INTO setting VALUES (?, ?)").run(name, value);
   }
 
   close(): void {

@@ -29,13 +29,13 @@ describe("a trend as CSV", () => {
     q: { max: [0.4, 3, null], mean: [0.4, 3, null] },
   });
   const rows = (from: number, to: number) =>
-    trendCsv(trend, { name: "ethanol", unit: "wt%" }, { from, to, time: plantTime("Europe/London") })
+    trendCsv(trend, [{ name: "ethanol", unit: "wt%" }], { from, to, time: plantTime("Europe/London") })
       .trimEnd()
       .split("\r\n");
 
   test("carries both times, and an uncertainty only where the reading was inside", () => {
     expect(rows(at, at + 4000)).toEqual([
-      "time (UTC),time (Europe/London),readings,ethanol (wt%),uncertainty (wt%),lowest (wt%),highest (wt%),verdict,largest T2 ratio,largest Q ratio",
+      "time (UTC),time (Europe/London),readings,ethanol (wt%),ethanol uncertainty (wt%),ethanol lowest (wt%),ethanol highest (wt%),verdict,largest T2 ratio,largest Q ratio",
       "2026-07-01T12:00:00.000Z,2026-07-01 13:00:00 UTC+1,1,91,0.3,91,91,inside,0.2,0.4",
       "2026-07-01T12:00:02.000Z,2026-07-01 13:00:02 UTC+1,1,92,,92,92,unfamiliar extrapolated,1.5,3",
       "2026-07-01T12:00:04.000Z,2026-07-01 13:00:04 UTC+1,1,,,,,unusable,,",

@@ -20,6 +20,7 @@ const reason = "a trial";
 const table = (): Record<string, Row> => ({
   "POST /sign-in": { least: "door", body: { name: "N. Obody", password: "not the password" } },
   "POST /sign-out": { least: "door" },
+  "PUT /me/settings": { least: "anybody", body: { theme: "dark", lanes: [], properties: {} } },
   "POST /streams/{id}/alarms/{key}/acknowledge": { least: "operator", body: {} },
   "POST /streams/{id}/alarms/{key}/reset": { least: "operator", body: {} },
   "POST /streams/{id}/alarms/{key}/unshelve": { least: "operator", body: {} },
