@@ -25,6 +25,8 @@ function windowOf(query: URLSearchParams): TimeWindow {
   if (from !== undefined && to !== undefined && to - from >= shortestMs && to - from <= longestMs) {
     return { kind: "stopped", from, to };
   }
+  const since = timeOf(query.get("since"));
+  if (since !== undefined) return { kind: "since", from: since };
   const seconds = Number(query.get("last"));
   if (seconds * 1000 >= shortestMs && seconds * 1000 <= longestMs) return { kind: "live", spanMs: seconds * 1000 };
   return defaultWindow;
@@ -51,17 +53,24 @@ export function parseRoute(path: string, search: string): Route {
 
 const iso = (at: number) => new Date(Math.round(at)).toISOString();
 
+function queryOf(window: TimeWindow): string {
+  switch (window.kind) {
+    case "live":
+      return `last=${Math.round(window.spanMs / 1000)}`;
+    case "since":
+      return `since=${iso(window.from)}`;
+    case "stopped":
+      return `from=${iso(window.from)}&to=${iso(window.to)}`;
+  }
+}
+
 /** The URL of a route; `parseRoute` gives the route back. */
 export function href(route: Route): string {
   const stream = "stream" in route && route.stream ? `/${encodeURIComponent(route.stream)}` : "";
   switch (route.view) {
     case "watch": {
       const { window } = route;
-      const query =
-        window.kind === "live"
-          ? `last=${Math.round(window.spanMs / 1000)}`
-          : `from=${iso(window.from)}&to=${iso(window.to)}`;
-      return `/watch${stream}?${query}`;
+      return `/watch${stream}?${queryOf(window)}`;
     }
     case "reading":
       return `/reading${stream}${route.at === undefined ? "" : `?at=${iso(route.at)}`}`;

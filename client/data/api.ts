@@ -13,6 +13,7 @@ import type {
   RecordedEvent,
   Refusals,
   Settings,
+  Shifts,
   Trend,
 } from "../../core/messages/index.ts";
 
@@ -107,6 +108,7 @@ export const api = {
     ask<LimitChangeOutcome>(`${stream(id)}/limit-proposals/${proposal}/approve`, { method: "POST" }),
   withdrawLimits: (id: string, proposal: number, reason: string) =>
     ask<LimitChangeOutcome>(`${stream(id)}/limit-proposals/${proposal}/withdraw`, asJson({ reason })),
+  shifts: (signal?: AbortSignal) => ask<Shifts>("/shifts", { signal }),
   settings: () => ask<KeptSettings>("/me/settings"),
   keepSettings: (settings: Settings) => ask<void>("/me/settings", { ...asJson(settings), method: "PUT" }),
   signIn: (name: string, password: string) => ask<Plant["person"]>("/sign-in", asJson({ name, password })),

@@ -1,13 +1,17 @@
 import { css, html, LitElement, nothing } from "lit";
-import { presets, span, type TimeWindow } from "../data/time-window.ts";
+import type { Shift } from "../../core/messages/index.ts";
+import { edges, isLive, presets, span, type TimeWindow } from "../data/time-window.ts";
 import { duration } from "../words/duration.ts";
 import type { PlantTime } from "../words/plant-time.ts";
 import { baseStyle } from "./base-style.ts";
+import "./range-entry.ts";
 
 export type RangeWish =
   | { kind: "span"; spanMs: number }
   | { kind: "pan"; share: number }
   | { kind: "zoom"; factor: number }
+  | { kind: "since"; from: number }
+  | { kind: "between"; from: number; to: number }
   | { kind: "live" }
   | { kind: "stop" };
 
@@ -19,6 +23,7 @@ export class RangeBar extends LitElement {
     time: { attribute: false },
     linkUp: { attribute: false },
     lastReadingAt: { attribute: false },
+    shift: { attribute: false },
   };
   declare window: TimeWindow;
   declare now: number;
@@ -26,6 +31,8 @@ export class RangeBar extends LitElement {
   declare linkUp: boolean;
   /** when the newest reading of any stream came */
   declare lastReadingAt: number | undefined;
+  /** that is on now, once it is known */
+  declare shift: Shift | undefined;
   static override styles = [
     baseStyle,
     css`
@@ -78,25 +85,45 @@ export class RangeBar extends LitElement {
   ];
 
   override render() {
-    const spanMs = span(this.window);
-    const wish = (detail: RangeWish) => () =>
-      this.dispatchEvent(new CustomEvent<RangeWish>("range-wish", { detail, bubbles: true, composed: true }));
-    const preset = presets.some((each) => each.spanMs === spanMs);
+    const { window, now, time, shift } = this;
+    const spanMs = span(window, now);
+    const { from, to } = edges(window, now);
+    const wish = (detail: RangeWish) => () => this.#wish(detail);
+    const ofShift = window.kind === "since" && window.from === shift?.from;
+    const preset = ofShift || (window.kind !== "since" && presets.some((each) => each.spanMs === spanMs));
     return html`<div class="bar">
       <div class="group" role="group" aria-label="Time on the screen">
         ${presets.map(
           (each) =>
-            html`<button aria-pressed=${each.spanMs === spanMs} @click=${wish({ kind: "span", spanMs: each.spanMs })}>
+            html`<button aria-pressed=${window.kind !== "since" && each.spanMs === spanMs} @click=${wish({ kind: "span", spanMs: each.spanMs })}>
               ${each.name}
             </button>`,
         )}
+        ${
+          shift?.staffed
+            ? html`<button
+                aria-pressed=${ofShift}
+                title="${shift.name}, since ${time.brief(shift.from, now)}"
+                @click=${wish({ kind: "since", from: shift.from })}
+              >
+                this shift
+              </button>`
+            : nothing
+        }
         ${preset ? nothing : html`<span class="here">${duration(spanMs)}</span>`}
+        <mill-range-entry
+          .from=${from}
+          .to=${to}
+          .now=${now}
+          .time=${time}
+          @range-typed=${({ detail }: CustomEvent<{ from: number; to: number }>) => this.#wish({ kind: "between", ...detail })}
+        ></mill-range-entry>
       </div>
       <div class="group" role="group" aria-label="Move through time">
         <button @click=${wish({ kind: "pan", share: -0.5 })} title="Half a screen earlier">◂ earlier</button>
         <button
           @click=${wish({ kind: "pan", share: 0.5 })}
-          ?disabled=${this.window.kind === "live"}
+          ?disabled=${isLive(window)}
           title="Half a screen later"
         >
           later ▸
@@ -104,8 +131,12 @@ export class RangeBar extends LitElement {
         <button @click=${wish({ kind: "zoom", factor: 0.5 })} title="Show half the time">closer</button>
         <button @click=${wish({ kind: "zoom", factor: 2 })} title="Show twice the time">wider</button>
       </div>
-      ${this.window.kind === "live" ? this.#live(wish) : this.#stopped(this.window.to, wish)}
+      ${isLive(window) ? this.#live(wish) : this.#stopped(to, wish)}
     </div>`;
+  }
+
+  #wish(detail: RangeWish): void {
+    this.dispatchEvent(new CustomEvent<RangeWish>("range-wish", { detail, bubbles: true, composed: true }));
   }
 
   #live(wish: (detail: RangeWish) => () => void) {

@@ -8,7 +8,7 @@ import type { Feed } from "../data/feed.ts";
 import { freshness } from "../data/freshness.ts";
 import { Listening } from "../data/listening.ts";
 import { fileName, saveFile } from "../data/save-file.ts";
-import { edges, type TimeWindow } from "../data/time-window.ts";
+import { edges, isLive, type TimeWindow } from "../data/time-window.ts";
 import { entryAt, type HeldTrend } from "../data/trend-columns.ts";
 import { TrendLoader } from "../data/trend-loader.ts";
 import { type TrendSight, trendRow, trendRows, trendSentence } from "../data/trend-words.ts";
@@ -283,7 +283,7 @@ export class WatchLane extends LitElement {
       gapMs: this.stream.gapMs,
       from,
       to,
-      live: this.window.kind === "live",
+      live: isLive(this.window),
       foot,
       old,
       marks: first ? this.#marks() : [],
@@ -347,7 +347,7 @@ export class WatchLane extends LitElement {
 
   #sight(trend: HeldTrend, property: PlantProperty, from: number, to: number): TrendSight {
     const { now, time, window, stream } = this;
-    return { trend, property, from, to, now, time, gapMs: stream.gapMs, live: window.kind === "live" };
+    return { trend, property, from, to, now, time, gapMs: stream.gapMs, live: isLive(window) };
   }
 
   #table(drawn: readonly PlantProperty[], from: number, to: number) {

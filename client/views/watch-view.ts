@@ -1,6 +1,6 @@
 import { css, html, LitElement, nothing } from "lit";
 import { repeat } from "lit/directives/repeat.js";
-import type { Plant, PlantStream } from "../../core/messages/index.ts";
+import type { Plant, PlantStream, Shift } from "../../core/messages/index.ts";
 import { href, type Route } from "../app/route.ts";
 import type { ChartGesture } from "../charts/lane-chart.ts";
 import { api } from "../data/api.ts";
@@ -9,7 +9,7 @@ import { groupsOf, type LanePlaces, placesOf } from "../data/lane-order.ts";
 import { Listening, ticking } from "../data/listening.ts";
 import { Loaded } from "../data/loaded.ts";
 import { ownSettings } from "../data/own-settings.ts";
-import { edges, pan, span, stopAt, type TimeWindow, zoom } from "../data/time-window.ts";
+import { between, edges, pan, span, spanning, stopAt, type TimeWindow, zoom } from "../data/time-window.ts";
 import { baseStyle } from "../parts/base-style.ts";
 import type { RangeWish } from "../parts/range-bar.ts";
 import "../parts/lane-arranger.ts";
@@ -41,6 +41,8 @@ export class WatchView extends LitElement {
     const [from, to] = key.split(" ").map(Number);
     return api.excursions({ from, to, limit: mostMarks }, signal);
   });
+  /** known by its beginning: asked for anew when it has ended */
+  readonly #shift = new Loaded(this, (_, signal) => api.shifts(signal));
   #cursorOfEvents = 0;
 
   constructor() {
@@ -111,6 +113,7 @@ export class WatchView extends LitElement {
         .time=${time}
         .linkUp=${feed.linkUp || !feed.everUp}
         .lastReadingAt=${lastReadingAt}
+        .shift=${this.#shiftNow(now)}
         @range-wish=${({ detail }: CustomEvent<RangeWish>) => this.#grant(detail)}
       ></mill-range-bar>
       ${
@@ -147,6 +150,12 @@ export class WatchView extends LitElement {
       </p>
       ${streams.length > 1 && !this.arranging ? html`<button @click=${this.#arrange}>Arrange the lanes</button>` : nothing}</div>
     `;
+  }
+
+  #shiftNow(now: number): Shift | undefined {
+    const known = this.#shift.value?.current;
+    this.#shift.want(known && now >= known.to ? `after ${known.to}` : known ? `of ${known.from}` : "first");
+    return known && now < known.to ? known : undefined;
   }
 
   #lane(stream: PlantStream, now: number) {
@@ -239,7 +248,7 @@ export class WatchView extends LitElement {
     };
     switch (wish.kind) {
       case "span":
-        this.#show(zoom(window, wish.spanMs / span(window), edges(window, now).to, now));
+        this.#show(spanning(window, wish.spanMs, now));
         return;
       case "pan":
         this.#show(pan(window, wish.share, now));
@@ -251,7 +260,13 @@ export class WatchView extends LitElement {
         this.#show(stopAt(window, now));
         return;
       case "live":
-        this.#show({ kind: "live", spanMs: span(window) });
+        this.#show({ kind: "live", spanMs: span(window, now) });
+        return;
+      case "since":
+        this.#show({ kind: "since", from: wish.from });
+        return;
+      case "between":
+        this.#show(between(wish.from, wish.to, now));
         return;
     }
   }

@@ -14,6 +14,7 @@ describe("the URL", () => {
   const routes: Route[] = [
     { view: "watch", window: { kind: "live", spanMs: 28_800_000 }, stream: undefined },
     { view: "watch", window: { kind: "stopped", from: at, to: at + 3_600_000 }, stream: "bq-305" },
+    { view: "watch", window: { kind: "since", from: at }, stream: undefined },
     { view: "reading", stream: "bq-305", at },
     { view: "reading", stream: undefined, at: undefined },
     { view: "excursions", stream: "bq-410" },

@@ -1,5 +1,6 @@
 import { describe, expect, test } from "vitest";
 import {
+  between,
   centredOn,
   edges,
   longestMs,
@@ -48,9 +49,28 @@ describe("zooming", () => {
     expect(zoom(stopped, 8, stopped.from, now)).toEqual({ kind: "live", spanMs: 8 * hour });
   });
 
-  test("stays between one minute and sixty days", () => {
+  test("stays between one minute and four hundred days", () => {
     expect(zoom(live, 1e-9, now, now)).toEqual({ kind: "live", spanMs: shortestMs });
     expect(zoom(live, 1e9, now, now)).toEqual({ kind: "live", spanMs: longestMs });
+  });
+});
+
+describe("a window that has begun at a fixed moment", () => {
+  const since: TimeWindow = { kind: "since", from: now - 3 * hour };
+  test("grows with the present", () => {
+    expect(edges(since, now)).toEqual({ from: now - 3 * hour, to: now });
+    expect(edges(since, now + hour)).toEqual({ from: now - 3 * hour, to: now + hour });
+  });
+  test("shows a minute at least, also at its very beginning", () => {
+    expect(edges({ kind: "since", from: now }, now)).toEqual({ from: now - shortestMs, to: now });
+  });
+  test("slides on when it is zoomed, stops when it is panned", () => {
+    expect(zoom(since, 0.5, now - 2 * hour, now)).toEqual({ kind: "live", spanMs: 1.5 * hour });
+    expect(pan(since, -1, now)).toEqual({ kind: "stopped", from: now - 6 * hour, to: now - 3 * hour });
+  });
+  test("is what a typed range is that ends now or later", () => {
+    expect(between(now - 3 * hour, now + hour, now)).toEqual(since);
+    expect(between(now - 3 * hour, now - hour, now)).toEqual({ kind: "stopped", from: now - 3 * hour, to: now - hour });
   });
 });
 
