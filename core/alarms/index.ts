@@ -44,6 +44,7 @@ export { advance } from "./lifecycle.ts";
 export {
   type Annunciation,
   alarmHistory,
+  byAlarm,
   type Chattering,
   chatteringOf,
   type Flood,

@@ -1,4 +1,5 @@
 import { type Static, Type } from "typebox";
+import { HandoverEntrySchema } from "./handover-entry.ts";
 import { ProcessStateSchema } from "./process-state.ts";
 import { AxisUnitSchema } from "./reading.ts";
 
@@ -169,6 +170,8 @@ export const RecordedEventSchema = Type.Object({
   /** for what happened to an alarm that annunciates nothing */
   setAside: Type.Optional(SetAsideAlarmSchema),
   excursion: Type.Optional(ExcursionSchema),
+  /** for what a person wrote to the record of a shift */
+  handover: Type.Optional(HandoverEntrySchema),
   /** what the plant said of the line, where it did */
   process: Type.Optional(ProcessStateSchema),
   /** true for what the recorded history brought in: it never annunciates */

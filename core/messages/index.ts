@@ -70,6 +70,18 @@ export {
 } from "./api.ts";
 export { type Checker, checker, type SchemaMismatch, shown } from "./check.ts";
 export {
+  type EntryHead,
+  type EntryOf,
+  type HandoverEntry,
+  HandoverEntrySchema,
+  type NoteSubject,
+  type SigningSide,
+  SigningSideSchema,
+  signingSides,
+  type Write,
+  WriteSchema,
+} from "./handover-entry.ts";
+export {
   type ApartReason,
   apartReasons,
   CorrectLabSchema,
@@ -143,6 +155,23 @@ export {
   themes,
 } from "./settings.ts";
 export { type Shift, ShiftSchema, type Shifts, ShiftsSchema } from "./shift.ts";
+export {
+  type ActionLine,
+  type AlarmLine,
+  type AlarmPart,
+  type CheckLine,
+  type EventLine,
+  type Lead,
+  type PropertyAccount,
+  type ShiftLabLine,
+  type ShiftRecord,
+  ShiftRecordSchema,
+  type SmallTrend,
+  type StreamAccount,
+  type StreamPart,
+  type TimeKind,
+  timeKinds,
+} from "./shift-record.ts";
 export {
   isInside,
   onlyInside,

@@ -88,6 +88,16 @@ export const PlantConfigSchema = Type.Object({
   retention: Type.Optional(Type.Object({ spectraDays: Type.Number({ minimum: 1 }) })),
   /** when the shifts begin and end, and whose they are; without it every calendar day is one */
   shifts: Type.Optional(ShiftPlanSchema),
+  /** what a shift must have looked at; absent `shifts` (names): every shift */
+  checks: Type.Optional(
+    Type.Array(
+      Type.Object({
+        key: StreamIdSchema,
+        says: Type.String({ minLength: 1, maxLength: 300 }),
+        shifts: Type.Optional(Type.Array(Type.String(), { minItems: 1 })),
+      }),
+    ),
+  ),
   /** an invented plant: the screens say so, and an invented person is signed in */
   demo: Type.Optional(Type.Boolean()),
   streams: Type.Array(StreamConfigSchema, { minItems: 1 }),

@@ -42,6 +42,7 @@ export class Engine {
   readonly #store: StoreWriter;
   readonly #topics: Topics;
   readonly #approval: boolean;
+  readonly #checks: readonly string[];
   readonly #tell: (told: Told) => void;
   readonly #log: (says: string) => void;
   #source: Source | undefined;
@@ -64,12 +65,15 @@ export class Engine {
     streams: Map<string, EngineStream>;
     /** does a change of limits need another person's approval? */
     approval: boolean;
+    /** keys of the checks that every shift has to do */
+    checks: readonly string[];
     tell: (told: Told) => void;
     log: (says: string) => void;
   }) {
     this.#store = parts.store;
     this.#topics = parts.topics;
     this.#approval = parts.approval;
+    this.#checks = parts.checks;
     this.#streams = parts.streams;
     this.#tell = parts.tell;
     this.#log = parts.log;
@@ -211,6 +215,7 @@ export class Engine {
         approval: this.#approval,
         isRecorded: (...identity) => this.#store.isRecorded(...identity),
         excursion: (id) => this.#store.excursion(id),
+        handover: { book: this.#store.handover, checks: this.#checks },
       },
     );
     if (!this.#commit(turn.changes)) {

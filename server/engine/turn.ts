@@ -16,6 +16,7 @@ import type { Excursion, Judged, Reading, RecordedEvent, StreamNow } from "../..
 import type { Changes, NewReading, NewRefusal } from "../store/store.ts";
 import { decodeReading } from "./decode.ts";
 import { decodeProcessState } from "./decode-process-state.ts";
+import { answerHandover, type HandoverCommand, type HandoverContext } from "./handover-command.ts";
 import type { Message } from "./source.ts";
 import { carryOut, type StreamCommand } from "./stream-command.ts";
 import type { EngineStream } from "./streams.ts";
@@ -25,9 +26,12 @@ import type { Topics } from "./topics.ts";
 export type Command =
   | StreamCommand
   | LimitCommand
+  | HandoverCommand
   /** something for the record that touches no stream: a sign-in, say */
   | { kind: "record"; event: string; says: string; by?: string };
-export type CommandOutcome = { done: true; version?: number; proposal?: number } | { done: false; says: string };
+export type CommandOutcome =
+  | { done: true; version?: number; proposal?: number; entry?: number }
+  | { done: false; says: string };
 
 type Untimed<Ask> = Ask extends LimitAsk ? Omit<Ask, "at"> & { stream: string } : never;
 /** What an engineer asks of a stream's limits. */
@@ -74,6 +78,7 @@ export interface Context {
   isRecorded: (stream: string, time: number, sequence: number) => boolean;
   /** an excursion on record (not counting this turn) */
   excursion: (id: string) => Excursion | undefined;
+  handover: HandoverContext;
 }
 
 /** All inputs of one turn through judging, in their order. Changes nothing outside: the caller commits, then takes over what is returned. */
@@ -98,6 +103,7 @@ class TurnBuilder {
   readonly #changed = new Set<string>();
   readonly #loads = new Map<string, Load>();
   readonly #limitSets: LimitSet[] = [];
+  readonly #shiftRecords: NonNullable<Changes["shiftRecords"]> = [];
   readonly #replies: Turn["replies"] = [];
   /** identities within this turn: the store does not know them yet */
   readonly #seen = new Set<string>();
@@ -141,6 +147,7 @@ class TurnBuilder {
         events: this.#events,
         excursions: this.#excursions,
         limitSets: this.#limitSets,
+        shiftRecords: this.#shiftRecords,
         states,
       },
       streams: this.#streams,
@@ -312,6 +319,10 @@ class TurnBuilder {
       this.#replies.push({ id, outcome: { done: true } });
       return;
     }
+    if (command.kind === "handover") {
+      this.#handover(id, now, command);
+      return;
+    }
     const stream = this.#streams.get(command.stream);
     if (!stream) {
       const says = `${command.stream} is no stream of this plant; it has ${[...this.#streams.keys()].join(", ")}`;
@@ -335,6 +346,18 @@ class TurnBuilder {
     this.#changed.add(command.stream);
     this.#excursions.push(...excursions);
     this.#replies.push({ id, outcome: { done: true } });
+  }
+
+  #handover(id: number, now: number, command: HandoverCommand): void {
+    const place = { now, next: this.#cursor + 1, events: this.#events };
+    const answer = answerHandover(command, place, this.#context.handover);
+    if (answer.kind === "rejected") {
+      this.#replies.push({ id, outcome: { done: false, says: answer.why } });
+      return;
+    }
+    this.#note([answer.note], false);
+    if (answer.frozen) this.#shiftRecords.push({ record: answer.frozen, number: answer.number });
+    this.#replies.push({ id, outcome: { done: true, entry: answer.number } });
   }
 
   /** Limits change between two readings: what is judged from here on is judged by the new version, and says so. */

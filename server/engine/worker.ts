@@ -32,6 +32,7 @@ function run(): void {
     topics,
     streams,
     approval: config.limits?.approval === "another person",
+    checks: (config.checks ?? []).map(({ key }) => key),
     log,
     tell(told) {
       say({ kind: ready ? "told" : "ready", told });

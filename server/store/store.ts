@@ -1,3 +1,4 @@
+import type { WantedProperty } from "../../core/handover/index.ts";
 import type { StreamState } from "../../core/judging/index.ts";
 import type { LimitProposal, LimitSet } from "../../core/limit-set/index.ts";
 import type {
@@ -7,9 +8,12 @@ import type {
   Quality,
   RecordedEvent,
   Refusals,
+  ShiftRecord,
+  StreamAccount,
   Trend,
 } from "../../core/messages/index.ts";
 import type { RecordedStretch } from "../../core/rehearsal/index.ts";
+import type { FrozenRecord, HandoverBook, HandoverReader } from "./handover-store.ts";
 
 /** One judged reading as it goes on record, with the spectrum as it was received. */
 export interface NewReading {
@@ -48,6 +52,8 @@ export interface Changes {
   states: Map<string, StreamState>;
   /** new versions, in force from here on */
   limitSets?: LimitSet[];
+  /** records of shifts that were signed, each with the number of its signature */
+  shiftRecords?: { record: FrozenRecord; number: number }[];
 }
 
 /** The record, as its single writer sees it. What a method is asked must be portable: no maker's own words cross this border. */
@@ -72,6 +78,8 @@ export interface StoreWriter {
    * the stream and says whether there are more.
    */
   retireSpectra(stream: string, before: number, most: number): boolean;
+  /** What people wrote to the records of shifts. Entries go in with their events. */
+  handover: HandoverBook;
   /** Time of the stream's first reading that came in live. */
   firstLive(stream: string): number | undefined;
   close(): void;
@@ -110,6 +118,20 @@ export interface StoreReader {
   /** What waits for approval. */
   proposals(stream: string): LimitProposal[];
   modelText(id: string): string | undefined;
+  /** A stream's time of `from` ≤ time < `to`; `gapMs`: after so long without a reading there is no data. */
+  account(
+    stream: string,
+    of: { wanted: readonly WantedProperty[]; from: number; to: number; gapMs: number },
+  ): StreamAccount;
+  /** All but those of alarms, of `from` ≤ time < `to`, in the order of the record. */
+  eventsBetween(from: number, to: number): RecordedEvent[];
+  /** Of one kind, of `from` ≤ time < `to`, in the order of the record. */
+  eventsOfKind(kind: string, from: number, to: number): RecordedEvent[];
+  /** The last of one kind about a stream before `before`, by its time. */
+  lastEvent(kind: string, stream: string, before: number): RecordedEvent | undefined;
+  /** Messages that were refused, by stream and reason. One that came again and again counts as often, also where it began earlier. */
+  refusedBetween(from: number, to: number): ShiftRecord["refused"];
+  handover: HandoverReader;
   /** How many readings of the stream are on record, and the time of the first. */
   extent(stream: string): { readings: number; first: number | null };
   close(): void;

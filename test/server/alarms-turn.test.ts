@@ -12,6 +12,10 @@ const { random } = new SmallStream(rules);
 const context: Context = {
   topics: topicsOf("millrace", "works"),
   approval: false,
+  handover: {
+    book: { entries: () => [], entry: () => undefined, closing: () => undefined, lastAt: () => 0 },
+    checks: [],
+  },
   isRecorded: () => false,
   excursion: () => undefined,
 };

@@ -6,6 +6,6 @@ export {
   type Stretch,
 } from "./annunciation.ts";
 export { type Flood, floodBeginsAbove, floodEndsBelow, floodsIn, mostWithin } from "./floods.ts";
-export { type Chattering, chatteringOf, type Fleeting, fleetingOf } from "./nuisance.ts";
+export { byAlarm, type Chattering, chatteringOf, type Fleeting, fleetingOf } from "./nuisance.ts";
 export { performanceOf } from "./performance.ts";
 export { recommendations, recommendedShares } from "./recommended.ts";

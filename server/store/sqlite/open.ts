@@ -3,6 +3,7 @@ import { dirname } from "node:path";
 import Database from "better-sqlite3";
 import { MillraceError, type Mismatch, mismatchSentence } from "../../../core/errors.ts";
 import { chainEvents } from "./event-chain.ts";
+import { addHandover } from "./handover.ts";
 import { addRetirement } from "./retirement.ts";
 import { rollUpAll, rollupSchema } from "./rollup.ts";
 import { whatIsDamaged } from "./soundness.ts";
@@ -29,6 +30,7 @@ const steps: readonly ((db: Database.Database) => void)[] = [
     rollUpAll(db);
   },
   (db) => db.exec(forRehearsal),
+  addHandover,
 ];
 
 /** A record up to this size is looked through as a whole at every start: less than a second. A larger one is by every backup. */

@@ -10,8 +10,10 @@ import {
   verdictsOfMask,
 } from "../../../core/messages/index.ts";
 import type { StoredReading, StoreReader } from "../store.ts";
+import { handoverReader } from "./handover.ts";
 import { openForReading } from "./open.ts";
 import { spectrumValues } from "./spectrum-bytes.ts";
+import { accountQuery } from "./stream-account.ts";
 import { stretchQuery } from "./stretch.ts";
 import { trendQuery } from "./trend.ts";
 
@@ -84,11 +86,33 @@ export function sqliteReader(file: string): StoreReader {
         "SELECT json FROM excursion WHERE (@stream IS NULL OR stream = @stream) AND last >= @from AND start < @to ORDER BY start DESC LIMIT @limit",
       )
       .pluck(),
+    eventsBetween: db
+      .prepare<Named, string>(
+        "SELECT json FROM event WHERE at >= @from AND at < @to AND NOT (kind >= 'alarm ' AND kind < 'alarm!') ORDER BY cursor",
+      )
+      .pluck(),
+    eventsOfKind: db
+      .prepare<[string, number, number], string>(
+        "SELECT json FROM event WHERE kind = ? AND at >= ? AND at < ? ORDER BY cursor",
+      )
+      .pluck(),
+    lastEvent: db
+      .prepare<[string, number, string], string>(
+        "SELECT json FROM event WHERE kind = ? AND at < ? AND stream = ? ORDER BY at DESC, cursor DESC LIMIT 1",
+      )
+      .pluck(),
+    refusedBetween: db.prepare<
+      Named,
+      { stream: string; reason: string; says: string; count: number; first: number; last: number }
+    >(
+      "SELECT stream, reason, says, sum(count) AS count, min(received) AS first, max(last) AS last FROM refusal WHERE last >= @from AND received < @to GROUP BY stream, reason ORDER BY count DESC",
+    ),
     extent: db.prepare<[number], { readings: number; first: number | null }>(
       "SELECT count(*) AS readings, min(time) AS first FROM reading WHERE stream = ?",
     ),
   };
   const trend = trendQuery(db, modelOf);
+  const account = accountQuery(db, modelOf);
   const stretch = stretchQuery(db, modelOf);
 
   function streamKey(id: string): number {
@@ -162,6 +186,17 @@ export function sqliteReader(file: string): StoreReader {
       const json = sql.state.get(stream);
       return json ? ((JSON.parse(json) as Partial<StreamState>).proposals?.waiting ?? []) : [];
     },
+    account: (stream, { wanted, from, to, gapMs }) => account(streamKey(stream), wanted, from, to, gapMs),
+    eventsBetween: (from, to) => sql.eventsBetween.all({ from, to }).map((json) => JSON.parse(json) as RecordedEvent),
+    eventsOfKind: (kind, from, to) =>
+      sql.eventsOfKind.all(kind, from, to).map((json) => JSON.parse(json) as RecordedEvent),
+    lastEvent(kind, stream, before) {
+      const json = sql.lastEvent.get(kind, before, stream);
+      return json === undefined ? undefined : (JSON.parse(json) as RecordedEvent);
+    },
+    refusedBetween: (from, to) =>
+      sql.refusedBetween.all({ from, to }).map((row) => ({ ...row, stream: row.stream === "" ? null : row.stream })),
+    handover: handoverReader(db),
     modelText: (id) => sql.modelText.get(id),
     stretch: (stream, from, to) => stretch(streamKey(stream), stream, from, to),
     extent: (stream) => sql.extent.get(streamKey(stream))!,

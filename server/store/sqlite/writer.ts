@@ -4,6 +4,7 @@ import type { LimitSet } from "../../../core/limit-set/index.ts";
 import { type AxisSpec, type Excursion, type Judged, verdictMask } from "../../../core/messages/index.ts";
 import type { Changes, NewReading, NewRefusal, StoreWriter } from "../store.ts";
 import { chainHash, chainStart } from "./event-chain.ts";
+import { handoverBook, handoverWriter } from "./handover.ts";
 import { openForWriting } from "./open.ts";
 import { Retirement } from "./retirement.ts";
 import { RollupWriter } from "./rollup.ts";
@@ -53,6 +54,7 @@ export function sqliteWriter(file: string): StoreWriter {
       .prepare<[number], number>("SELECT time FROM reading WHERE stream = ? AND history = 0 ORDER BY time LIMIT 1")
       .pluck(),
   };
+  const handover = handoverWriter(db);
   const rollups = new RollupWriter(db);
   const retirement = new Retirement(db);
   let number = sql.lastNumber.get() as number;
@@ -145,12 +147,14 @@ export function sqliteWriter(file: string): StoreWriter {
       const json = JSON.stringify(event);
       hash = chainHash(hash, json);
       sql.event.run(event.cursor, event.at, event.stream, event.kind, json, hash);
+      if (event.handover) handover.add(event.handover);
     }
     for (const excursion of changes.excursions) {
       const { id, stream, start, end } = excursion;
       sql.excursion.run(id, stream, start, end ?? Number.MAX_SAFE_INTEGER, JSON.stringify(excursion));
     }
     for (const set of changes.limitSets ?? []) addLimitSet(set);
+    for (const { record, number } of changes.shiftRecords ?? []) handover.freeze(record, number);
     for (const [stream, state] of changes.states) sql.setState.run(JSON.stringify(state), streamKey(stream));
     return hash;
   });
@@ -185,6 +189,7 @@ export function sqliteWriter(file: string): StoreWriter {
     addModel: ({ id, name, properties, text }) => void sql.addModel.run(id, name, JSON.stringify(properties), text),
     modelText: (id) => sql.modelText.get(id),
     retireSpectra: (stream, before, most) => retirement.step(stream, streamKey(stream), before, most),
+    handover: handoverBook(db),
     firstLive: (stream) => sql.firstLive.get(streamKey(stream)),
     close: () => void db.close(),
   };
