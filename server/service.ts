@@ -53,7 +53,7 @@ async function assemble(
   let engine: EngineThread | undefined;
   let brokerUrl: string;
   if ("embedded" in brokerConfig) {
-    const isReading = (topic: string) => topic.startsWith(`${prefix}/`) && /\/(reading|state)$/.test(topic);
+    const isReading = (topic: string) => topic.startsWith(`${prefix}/`) && /\/(reading|state|lab)$/.test(topic);
     broker = await startEmbeddedBroker({
       ...brokerConfig.embedded,
       inboxFile,

@@ -15,7 +15,7 @@ export {
   verdictOf,
 } from "./judge.ts";
 export { type ExcursionCommand, labelExcursion } from "./label-excursion.ts";
-export { hearLaboratory } from "./laboratory.ts";
+export { hearLaboratory, withEarlierPairs } from "./laboratory.ts";
 export type { Note } from "./notes.ts";
 export { hearProcessState, type ProcessJudgement, suppressionEvent } from "./process-state.ts";
 export { explainedOf, Scorer } from "./scorer.ts";

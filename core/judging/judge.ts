@@ -40,8 +40,8 @@ export interface LaboratoryRules {
   plausible: Record<string, readonly [number, number]>;
 }
 
-/** Two minutes: drawing a sample takes one or so, and a process that stands still does so for longer. */
-export const defaultLaboratory: LaboratoryRules = { lagMs: 0, windowMs: 120_000, plausible: {} };
+/** One minute: drawing a sample takes about so long. */
+export const defaultLaboratory: LaboratoryRules = { lagMs: 0, windowMs: 60_000, plausible: {} };
 
 export interface Arrival {
   reading: Reading;
@@ -56,6 +56,7 @@ export type RefusalReason =
   | "malformed"
   | "too large"
   | "unknown stream"
+  | "lab result"
   | "wrong axis"
   | "no model"
   | "future"

@@ -38,6 +38,17 @@ function withResult(pairs: readonly RememberedPair[], result: LabResult): Rememb
   return [...others, own].sort((a, b) => a.time - b.time).slice(-mostRemembered);
 }
 
+/** `state` with the pairs that came before its own: what recorded history ends with goes on in the live record. Pure. */
+export function withEarlierPairs(state: StreamState, earlier: StreamState): StreamState {
+  const laboratory = { ...state.laboratory };
+  for (const [property, pairs] of Object.entries(earlier.laboratory)) {
+    const own = laboratory[property] ?? [];
+    const before = pairs.filter(({ time }) => time < (own[0]?.time ?? Number.POSITIVE_INFINITY));
+    laboratory[property] = [...before, ...own].slice(-mostRemembered);
+  }
+  return { ...state, laboratory };
+}
+
 function judgeBias(state: StreamState, property: string, at: number, rules: StreamRules): [StreamState, Note[]] {
   let next = state;
   const notes: Note[] = [];

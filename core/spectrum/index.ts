@@ -17,6 +17,7 @@ export {
   parseHeader,
   parseRow,
   parseTable,
+  splitLine,
   type Table,
   TableError,
   type TableHeader,

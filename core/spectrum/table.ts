@@ -155,7 +155,8 @@ function numberOf(text: string): number | undefined {
   return Number.isFinite(value) ? value : undefined;
 }
 
-function splitLine(text: string, line: number, file: string): string[] {
+/** The fields of one line, comma-separated, quotes as in RFC 4180. @throws TableError */
+export function splitLine(text: string, line: number, file: string): string[] {
   if (!text.includes('"')) return text.split(",");
   const fields: string[] = [];
   const field = /(?:^|,)(?:"((?:[^"]|"")*)"|([^",]*))(?=,|$)/y;

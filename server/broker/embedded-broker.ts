@@ -15,7 +15,7 @@ export interface EmbeddedBroker {
 }
 
 /**
- * An MQTT 3.1.1 broker in this process. Readings and process states go to the inbox on disk before their publisher is answered: aedes writes the PUBACK of a
+ * An MQTT 3.1.1 broker in this process. Readings, process states and laboratory results go to the inbox on disk before their publisher is answered: aedes writes the PUBACK of a
  * QoS 1 publish before any store is asked, and awaits only `authorizePublish` before it, so that is where the message is kept.
  *
  * @param options.isReading which topics the engine must not lose

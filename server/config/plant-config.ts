@@ -20,6 +20,17 @@ const StreamConfigSchema = Type.Object({
   periodMs: Type.Number({ minimum: 10, maximum: 86_400_000 }),
   /** values at or above it are saturated, unit of the spectrum */
   ceiling: Type.Optional(Type.Number()),
+  /** how results of the laboratory are matched to readings, and which are taken */
+  lab: Type.Optional(
+    Type.Object({
+      /** how much later than the probe the sample point sees the same material; negative: earlier */
+      lagSeconds: Type.Optional(Type.Number({ minimum: -86_400, maximum: 86_400 })),
+      /** readings within it, about the moment of the sample, are averaged; 0: the two around that moment */
+      windowSeconds: Type.Optional(Type.Number({ minimum: 0, maximum: 3600 })),
+      /** by property: results outside are refused */
+      plausible: Type.Optional(Type.Record(Type.String(), pair)),
+    }),
+  ),
   properties: Type.Optional(
     Type.Record(Type.String(), Type.Object({ target: Type.Optional(pair), scale: Type.Optional(pair) })),
   ),

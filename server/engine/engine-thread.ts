@@ -1,8 +1,8 @@
 import { Worker } from "node:worker_threads";
 import { MillraceError } from "../../core/errors.ts";
-import type { EngineHealth, Reading } from "../../core/messages/index.ts";
+import type { EngineHealth } from "../../core/messages/index.ts";
 import type { Log } from "../log.ts";
-import type { LoadOutcome, Told } from "./engine.ts";
+import type { LoadOutcome, Portion, Told } from "./engine.ts";
 import type { Account } from "./meter.ts";
 import type { EngineSettings, FromEngine, ToEngine } from "./protocol.ts";
 import type { Command, CommandOutcome } from "./turn.ts";
@@ -89,8 +89,8 @@ export class EngineThread {
     await this.#ask<LoadOutcome>({ kind: "open load", stream, periodMs });
   }
 
-  load(stream: string, readings: Reading[], share: number): Promise<LoadOutcome> {
-    return this.#ask<LoadOutcome>({ kind: "load", stream, readings, share });
+  load(stream: string, portion: Portion, share: number): Promise<LoadOutcome> {
+    return this.#ask<LoadOutcome>({ kind: "load", stream, portion, share });
   }
 
   closeLoad(stream: string): Promise<LoadOutcome> {

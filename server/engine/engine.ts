@@ -7,6 +7,7 @@ import type { Topics } from "./topics.ts";
 import {
   type Command,
   type CommandOutcome,
+  type HistoricLab,
   type Input,
   type Load,
   loadTopic,
@@ -21,6 +22,12 @@ export interface Told {
   now: StreamNow[];
   events: RecordedEvent[];
   cursor: number;
+}
+
+/** A part of a load: readings in order of time, and results of the laboratory in the order in which they came in. */
+export interface Portion {
+  readings: Reading[];
+  results: HistoricLab[];
 }
 
 export interface LoadOutcome {
@@ -131,10 +138,10 @@ export class Engine {
   }
 
   /** One portion of a load, in order; resolves once it is on record, so that the sender cannot run ahead. */
-  load(stream: string, readings: Reading[], share: number): Promise<LoadOutcome> {
+  load(stream: string, portion: Portion, share: number): Promise<LoadOutcome> {
     return this.#loadInput(stream, (load) => {
       load.share = share;
-      return { kind: "history", load, readings };
+      return { kind: "history", load, ...portion };
     });
   }
 
@@ -216,6 +223,8 @@ export class Engine {
         isRecorded: (...identity) => this.#store.isRecorded(...identity),
         excursion: (id) => this.#store.excursion(id),
         handover: { book: this.#store.handover, checks: this.#checks },
+        readingsBetween: (...query) => this.#store.readingsBetween(...query),
+        labResult: (...identity) => this.#store.labResult(...identity),
       },
     );
     if (!this.#commit(turn.changes)) {

@@ -1,7 +1,7 @@
-import type { EngineHealth, Reading } from "../../core/messages/index.ts";
+import type { EngineHealth } from "../../core/messages/index.ts";
 import type { PlantConfig } from "../config/plant-config.ts";
 import type { LogLevel } from "../log.ts";
-import type { LoadOutcome, Told } from "./engine.ts";
+import type { LoadOutcome, Portion, Told } from "./engine.ts";
 import type { Account } from "./meter.ts";
 import type { Command, CommandOutcome } from "./turn.ts";
 
@@ -10,7 +10,7 @@ export type ToEngine =
   | { kind: "inbox" }
   | { kind: "command"; id: number; command: Command }
   | { kind: "open load"; id: number; stream: string; periodMs: number }
-  | { kind: "load"; id: number; stream: string; readings: Reading[]; share: number }
+  | { kind: "load"; id: number; stream: string; portion: Portion; share: number }
   | { kind: "close load"; id: number; stream: string }
   | { kind: "stop" };
 

@@ -1,6 +1,13 @@
 import { readFileSync } from "node:fs";
 import { MillraceError } from "../../core/errors.ts";
-import { freshState, Scorer, type StreamRules, type StreamState } from "../../core/judging/index.ts";
+import {
+  defaultLaboratory,
+  freshState,
+  type LaboratoryRules,
+  Scorer,
+  type StreamRules,
+  type StreamState,
+} from "../../core/judging/index.ts";
 import {
   defaultAlarms,
   type LimitSet,
@@ -140,8 +147,19 @@ function rulesOf(
     futureToleranceMs,
     validity: { frozenAfter, ...(config.ceiling === undefined ? {} : { ceiling: config.ceiling }) },
     limitSet,
+    laboratory: laboratoryOf(config),
     scorer,
     ...(modelTrouble === undefined ? {} : { modelTrouble }),
+  };
+}
+
+/** How a stream's laboratory results are matched, in ms. */
+export function laboratoryOf({ lab }: StreamConfig): LaboratoryRules {
+  const { lagMs, windowMs, plausible } = defaultLaboratory;
+  return {
+    lagMs: lab?.lagSeconds === undefined ? lagMs : lab.lagSeconds * 1000,
+    windowMs: lab?.windowSeconds === undefined ? windowMs : lab.windowSeconds * 1000,
+    plausible: lab?.plausible ?? plausible,
   };
 }
 

@@ -1,10 +1,11 @@
-/** The topics of one site: `<prefix>/<site>/<stream>/<what>` (reading and state in; result, alarm, status out). */
+/** The topics of one site: `<prefix>/<site>/<stream>/<what>` (reading, state and lab in; result, alarm, status out). */
 export interface Topics {
-  /** what the engine subscribes to: readings, and what the plant says of the process */
+  /** what the engine subscribes to: readings, what the plant says of the process, results of the laboratory */
   readings: string;
   states: string;
+  labs: string;
   /** the stream that a topic names, and what comes on it; undefined when it is not one of those that the engine reads */
-  read(topic: string): { stream: string; what: "reading" | "state" } | undefined;
+  read(topic: string): { stream: string; what: Incoming } | undefined;
   result(stream: string): string;
   alarm(stream: string): string;
   /** retained: a stream's verdict and open alarms, whenever one of them changes */
@@ -18,6 +19,7 @@ export function topicsOf(prefix: string, site: string): Topics {
   return {
     readings: `${root}+/reading`,
     states: `${root}+/state`,
+    labs: `${root}+/lab`,
     read(topic) {
       const what = whatOf(topic);
       if (what === undefined || !topic.startsWith(root)) return undefined;
@@ -31,7 +33,9 @@ export function topicsOf(prefix: string, site: string): Topics {
   };
 }
 
-function whatOf(topic: string): "reading" | "state" | undefined {
-  if (topic.endsWith("/reading")) return "reading";
-  return topic.endsWith("/state") ? "state" : undefined;
+const incoming = ["reading", "state", "lab"] as const;
+type Incoming = (typeof incoming)[number];
+
+function whatOf(topic: string): Incoming | undefined {
+  return incoming.find((what) => topic.endsWith(`/${what}`));
 }

@@ -10,13 +10,32 @@ import {
   type StreamState,
   setAsideAlarms,
   tick,
+  withEarlierPairs,
 } from "../../core/judging/index.ts";
 import { decideLimits, type LimitAsk, type LimitSet } from "../../core/limit-set/index.ts";
-import type { Excursion, Judged, Reading, RecordedEvent, StreamNow } from "../../core/messages/index.ts";
+import type {
+  Excursion,
+  Judged,
+  LabIdentity,
+  LabResult,
+  LabRow,
+  Reading,
+  RecordedEvent,
+  StreamNow,
+} from "../../core/messages/index.ts";
 import type { Changes, NewReading, NewRefusal } from "../store/store.ts";
 import { decodeReading } from "./decode.ts";
+import { decodeLab, type LabEntry } from "./decode-lab.ts";
 import { decodeProcessState } from "./decode-process-state.ts";
 import { answerHandover, type HandoverCommand, type HandoverContext } from "./handover-command.ts";
+import {
+  carryOutLab,
+  enterResults,
+  type LabCarried,
+  type LabCommand,
+  type LabRecord,
+  type NearReading,
+} from "./laboratory.ts";
 import type { Message } from "./source.ts";
 import { carryOut, type StreamCommand } from "./stream-command.ts";
 import type { EngineStream } from "./streams.ts";
@@ -27,11 +46,13 @@ export type Command =
   | StreamCommand
   | LimitCommand
   | HandoverCommand
+  | LabCommand
   /** something for the record that touches no stream: a sign-in, say */
   | { kind: "record"; event: string; says: string; by?: string };
+/** `rows`: of what was to be entered, what became of each */
 export type CommandOutcome =
-  | { done: true; version?: number; proposal?: number; entry?: number }
-  | { done: false; says: string };
+  | { done: true; version?: number; proposal?: number; entry?: number; rows?: LabRow[] }
+  | { done: false; says: string; rows?: LabRow[] };
 
 type Untimed<Ask> = Ask extends LimitAsk ? Omit<Ask, "at"> & { stream: string } : never;
 /** What an engineer asks of a stream's limits. */
@@ -41,8 +62,14 @@ export type Input =
   | { kind: "message"; message: Message }
   | { kind: "tick"; now: number; listeningSince: number }
   | { kind: "command"; id: number; now: number; command: Command }
-  | { kind: "history"; load: Load; readings: Reading[] }
+  | { kind: "history"; load: Load; readings: Reading[]; results: HistoricLab[] }
   | { kind: "history ends"; load: Load; now: number };
+
+/** A laboratory result of recorded history, with the process time at which it came in. */
+export interface HistoricLab {
+  entry: LabEntry;
+  receivedAt: number;
+}
 
 /** stands for the topic of what a load brought */
 export const loadTopic = "load";
@@ -79,6 +106,9 @@ export interface Context {
   /** an excursion on record (not counting this turn) */
   excursion: (id: string) => Excursion | undefined;
   handover: HandoverContext;
+  /** readings of `from` ≤ time ≤ `to` and laboratory results on record (not counting this turn) */
+  readingsBetween: (stream: string, from: number, to: number) => NearReading[];
+  labResult: (stream: string, identity: LabIdentity) => LabResult | undefined;
 }
 
 /** All inputs of one turn through judging, in their order. Changes nothing outside: the caller commits, then takes over what is returned. */
@@ -104,6 +134,7 @@ class TurnBuilder {
   readonly #loads = new Map<string, Load>();
   readonly #limitSets: LimitSet[] = [];
   readonly #shiftRecords: NonNullable<Changes["shiftRecords"]> = [];
+  readonly #labResults: LabResult[] = [];
   readonly #replies: Turn["replies"] = [];
   /** identities within this turn: the store does not know them yet */
   readonly #seen = new Set<string>();
@@ -128,7 +159,7 @@ class TurnBuilder {
         this.#command(input.id, input.now, input.command);
         break;
       case "history":
-        this.#history(input.load, input.readings);
+        this.#history(input.load, input.readings, input.results);
         break;
       case "history ends":
         this.#historyEnds(input.load);
@@ -148,6 +179,7 @@ class TurnBuilder {
         excursions: this.#excursions,
         limitSets: this.#limitSets,
         shiftRecords: this.#shiftRecords,
+        labResults: this.#labResults,
         states,
       },
       streams: this.#streams,
@@ -174,6 +206,10 @@ class TurnBuilder {
     }
     if (what === "state") {
       this.#processState(named!, stream, { payload, receivedAt }, refuse);
+      return;
+    }
+    if (what === "lab") {
+      this.#labMessage(stream, { payload, receivedAt }, refuse);
       return;
     }
     const decoded = decodeReading(payload);
@@ -231,14 +267,84 @@ class TurnBuilder {
     }
   }
 
-  #history(load: Load, readings: readonly Reading[]): void {
+  #labMessage(
+    stream: EngineStream,
+    { payload, receivedAt }: Pick<Message, "payload" | "receivedAt">,
+    refuse: (reason: string, says: string) => void,
+  ): void {
+    const decoded = decodeLab(payload);
+    if (decoded.kind === "refused") {
+      refuse("malformed", `lab result: ${decoded.says}`);
+      return;
+    }
+    const { entry } = decoded;
+    const about = { origin: "message" as const, by: entry.by ?? "the laboratory", at: receivedAt };
+    const carried = enterResults(stream, [{ row: 1, entry }], about, this.#labRecord(stream.rules.stream));
+    const [row] = carried.rows!;
+    if (row.outcome === "refused") refuse("lab result", `lab result: ${row.says}`);
+    else if (row.outcome === "already there") this.#repeats++;
+    else this.#takeLab(stream, carried);
+  }
+
+  /** What a load brings of the laboratory, between its readings. */
+  #labHistory(load: Load, state: StreamState, { entry, receivedAt }: HistoricLab): StreamState {
+    const about = { origin: "history" as const, by: entry.by ?? "the laboratory", at: receivedAt };
+    const stream = { rules: load.rules, state };
+    const carried = enterResults(stream, [{ row: 1, entry }], about, this.#labRecord(load.stream));
+    const [row] = carried.rows!;
+    if (row.outcome === "refused") {
+      const payload = Buffer.from(JSON.stringify(entry));
+      const says = `lab result: ${row.says}`;
+      this.#refusals.push({ stream: load.stream, topic: loadTopic, receivedAt, reason: "lab result", says, payload });
+    }
+    this.#labResults.push(...carried.results);
+    this.#note(carried.notes, true);
+    return carried.state;
+  }
+
+  #takeLab({ rules }: EngineStream, { state, results, notes }: LabCarried): void {
+    this.#streams.set(rules.stream, { rules, state });
+    this.#changed.add(rules.stream);
+    this.#labResults.push(...results);
+    this.#note(notes, false);
+  }
+
+  /** The record of a stream as it will be with this turn. */
+  #labRecord(stream: string): LabRecord {
+    const isOurs = (result: LabResult, identity: LabIdentity) =>
+      result.stream === stream &&
+      result.property === identity.property &&
+      result.time === identity.time &&
+      result.method === identity.method &&
+      result.sample === identity.sample;
+    return {
+      readings: (from, to) => {
+        const fresh = this.#readings.filter(
+          ({ judged }) => judged.stream === stream && judged.time >= from && judged.time <= to,
+        );
+        return [...this.#context.readingsBetween(stream, from, to), ...fresh].sort(
+          (a, b) => a.judged.time - b.judged.time,
+        );
+      },
+      known: (identity) =>
+        this.#labResults.findLast((result) => isOurs(result, identity)) ?? this.#context.labResult(stream, identity),
+    };
+  }
+
+  #history(load: Load, readings: readonly Reading[], results: readonly HistoricLab[]): void {
     const { rules, counts } = this.#loadNow(load);
     let { state } = this.#loadNow(load);
     const refuse = (reading: Reading, reason: string, says: string) => {
       const payload = Buffer.from(`time ${reading.time}, sequence ${reading.sequence}`);
       this.#refusals.push({ stream: load.stream, topic: loadTopic, receivedAt: reading.time, reason, says, payload });
     };
+    const waiting = results.filter(({ entry }) => entry.time < load.until);
+    const hearUntil = (time: number) => {
+      while (waiting.length > 0 && waiting[0].receivedAt <= time)
+        state = this.#labHistory(load, state, waiting.shift()!);
+    };
     for (const reading of readings) {
+      hearUntil(reading.time);
       if (reading.time >= load.until) {
         counts.repeated++; // the live record begins here: what follows is on record, or will be
         continue;
@@ -260,6 +366,7 @@ class TurnBuilder {
         if (judgement.refusal) refuse(reading, judgement.refusal.reason, judgement.refusal.says);
       }
     }
+    hearUntil(Number.POSITIVE_INFINITY); // what is left came after the portion's last reading
     this.#loads.set(load.stream, { ...load, state, counts });
   }
 
@@ -294,6 +401,8 @@ class TurnBuilder {
       true,
     );
     this.#loads.delete(load.stream);
+    const live = this.#streams.get(load.stream)!;
+    this.#streams.set(load.stream, { ...live, state: withEarlierPairs(live.state, state) });
     this.#changed.add(load.stream);
   }
 
@@ -331,6 +440,17 @@ class TurnBuilder {
     }
     if (isLimitCommand(command)) {
       this.#limits(id, now, stream, command);
+      return;
+    }
+    if (isLabCommand(command)) {
+      const carried = carryOutLab(stream, command, now, this.#labRecord(command.stream));
+      this.#takeLab(stream, carried);
+      const rows = carried.rows ? { rows: carried.rows } : {};
+      const { rejected: says } = carried;
+      this.#replies.push({
+        id,
+        outcome: says === undefined ? { done: true, ...rows } : { done: false, says, ...rows },
+      });
       return;
     }
     const { state, notes, excursions, rejected } = carryOut(stream, command, now, (excursion) =>
@@ -427,7 +547,15 @@ class TurnBuilder {
   }
 }
 
-function isLimitCommand(command: StreamCommand | LimitCommand): command is LimitCommand {
+function isLabCommand(command: StreamCommand | LabCommand): command is LabCommand {
+  return (
+    command.kind === "enter lab results" ||
+    command.kind === "correct lab result" ||
+    command.kind === "withdraw lab result"
+  );
+}
+
+function isLimitCommand(command: StreamCommand | LimitCommand | LabCommand): command is LimitCommand {
   return command.kind === "change limits" || command.kind === "approve limits" || command.kind === "withdraw limits";
 }
 

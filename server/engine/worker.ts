@@ -44,7 +44,7 @@ function run(): void {
     ? new InboxSource(inboxFile, (n) => say({ kind: "drained", n }))
     : new MqttSource({
         connection: connectionOf(config, brokerUrl, "readings"),
-        topics: [topics.readings, topics.states],
+        topics: [topics.readings, topics.states, topics.labs],
         wake: () => engine.wake(),
         log,
       });
@@ -96,7 +96,7 @@ async function outcomeOf(engine: Engine, message: Asked) {
       engine.openLoad(message.stream, message.periodMs);
       return { recorded: 0, repeated: 0, refused: 0 };
     case "load":
-      return engine.load(message.stream, message.readings, message.share);
+      return engine.load(message.stream, message.portion, message.share);
     case "close load":
       return engine.closeLoad(message.stream);
     default:

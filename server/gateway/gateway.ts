@@ -18,6 +18,7 @@ import { ReadingExplainer } from "./reading-view.ts";
 import { alarmRoutes } from "./routes/alarms.ts";
 import { excursionRoutes } from "./routes/excursions.ts";
 import { healthRoutes } from "./routes/health.ts";
+import { laboratoryRoutes } from "./routes/laboratory.ts";
 import { limitSetRoutes } from "./routes/limit-sets.ts";
 import { loadRoutes } from "./routes/load.ts";
 import { peopleRoutes } from "./routes/people.ts";
@@ -137,6 +138,7 @@ export async function startGateway(options: {
       alarmRoutes(api, parts);
       excursionRoutes(api, parts);
       loadRoutes(api, parts);
+      laboratoryRoutes(api, parts);
       limitSetRoutes(api, parts);
       shiftRoutes(api, parts);
       api.get("/openapi.json", { schema: { hide: true } }, () => app.swagger());

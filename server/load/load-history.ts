@@ -1,5 +1,5 @@
 import type { Reading } from "../../core/messages/index.ts";
-import type { LoadOutcome } from "../engine/engine.ts";
+import type { LoadOutcome, Portion } from "../engine/engine.ts";
 import type { EngineThread } from "../engine/engine-thread.ts";
 import { type HistoryItem, LoadError } from "./readings.ts";
 
@@ -9,7 +9,7 @@ const portion = 250;
 const spacingFrom = 50;
 
 interface OpenPart {
-  waiting: Reading[];
+  waiting: Portion;
   open: boolean;
   done: number;
 }
@@ -32,20 +32,22 @@ export async function loadHistory(engine: EngineThread, source: HistorySource): 
   let done = 0;
   const outcomes = new Map<string, LoadOutcome>();
   try {
-    for await (const { stream = source.stream, reading } of source.items) {
+    for await (const { stream = source.stream, ...item } of source.items) {
       if (stream === undefined) throw new LoadError("a reading names no stream; give one with --stream.");
-      const part = parts.get(stream) ?? { waiting: [], open: false, done: 0 };
+      const part = parts.get(stream) ?? { waiting: { readings: [], results: [] }, open: false, done: 0 };
       parts.set(stream, part);
-      part.waiting.push(reading);
-      if (part.waiting.length >= portion) {
-        done += part.waiting.length;
+      if ("result" in item) part.waiting.results.push(item.result);
+      else part.waiting.readings.push(item.reading);
+      if (part.waiting.readings.length >= portion) {
+        done += part.waiting.readings.length;
         await send(engine, stream, part, shareOf(done, source.expected));
         source.onProgress?.(done);
       }
     }
     for (const [stream, part] of parts) {
-      done += part.waiting.length;
-      if (part.waiting.length > 0) await send(engine, stream, part, shareOf(done, source.expected));
+      const { readings, results } = part.waiting;
+      done += readings.length;
+      if (readings.length + results.length > 0) await send(engine, stream, part, shareOf(done, source.expected));
       source.onProgress?.(done);
     }
   } finally {
@@ -56,12 +58,12 @@ export async function loadHistory(engine: EngineThread, source: HistorySource): 
 
 async function send(engine: EngineThread, stream: string, part: OpenPart, share: number): Promise<void> {
   if (!part.open) {
-    await engine.openLoad(stream, spacingOf(part.waiting));
+    await engine.openLoad(stream, spacingOf(part.waiting.readings));
     part.open = true;
   }
   await engine.load(stream, part.waiting, share);
-  part.done += part.waiting.length;
-  part.waiting = [];
+  part.done += part.waiting.readings.length;
+  part.waiting = { readings: [], results: [] };
 }
 
 function shareOf(done: number, expected: number | undefined): number {

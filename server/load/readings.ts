@@ -2,13 +2,12 @@ import { DecoderStream } from "cbor-x";
 import { MillraceError } from "../../core/errors.ts";
 import type { AxisSpec, Reading } from "../../core/messages/index.ts";
 import { type Axis, parseHeader, parseRow, type TableHeader } from "../../core/spectrum/index.ts";
-import { readingOf } from "../engine/decode.ts";
+import { readingOf, timeOf } from "../engine/decode.ts";
+import { labEntryOf } from "../engine/decode-lab.ts";
+import type { HistoricLab } from "../engine/turn.ts";
 
-/** One reading of recorded history; `stream` where the source says it. */
-export interface HistoryItem {
-  stream?: string;
-  reading: Reading;
-}
+/** One reading of recorded history, or one result of the laboratory; `stream` where the source says it. */
+export type HistoryItem = { stream?: string } & ({ reading: Reading } | { result: HistoricLab });
 
 export class LoadError extends MillraceError {
   readonly code = "load";
@@ -92,9 +91,20 @@ export async function* readingsOfCborSequence(bytes: AsyncIterable<Uint8Array>):
   await feeding;
 }
 
+/** `{ lab: { time, property, value, unit … }, received }` is a result of the laboratory and when it was there; anything else a reading. */
 function itemOf(value: unknown, where: string): HistoryItem {
+  const fields = (value ?? {}) as { stream?: unknown; lab?: unknown; received?: unknown };
+  const stream = typeof fields.stream === "string" ? { stream: fields.stream } : {};
+  if (fields.lab !== undefined) return { ...stream, result: resultOf(fields, where) };
   const decoded = readingOf(value);
   if (decoded.kind === "refused") throw new LoadError(`${where}: ${decoded.says}.`);
-  const stream = (value as { stream?: unknown }).stream;
-  return { ...(typeof stream === "string" ? { stream } : {}), reading: decoded.reading };
+  return { ...stream, reading: decoded.reading };
+}
+
+function resultOf({ lab, received }: { lab?: unknown; received?: unknown }, where: string): HistoricLab {
+  const decoded = labEntryOf(lab);
+  if (decoded.kind === "refused") throw new LoadError(`${where}: lab.${decoded.says}.`);
+  const receivedAt = timeOf((received ?? decoded.entry.time) as number | string);
+  if (typeof receivedAt === "string") throw new LoadError(`${where}: received: ${receivedAt}.`);
+  return { entry: decoded.entry, receivedAt };
 }

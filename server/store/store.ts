@@ -5,6 +5,8 @@ import type {
   AxisSpec,
   Excursion,
   Judged,
+  LabIdentity,
+  LabResult,
   Quality,
   RecordedEvent,
   Refusals,
@@ -54,6 +56,8 @@ export interface Changes {
   limitSets?: LimitSet[];
   /** records of shifts that were signed, each with the number of its signature */
   shiftRecords?: { record: FrozenRecord; number: number }[];
+  /** new versions: those before stay on record */
+  labResults?: LabResult[];
 }
 
 /** The record, as its single writer sees it. What a method is asked must be portable: no maker's own words cross this border. */
@@ -64,6 +68,10 @@ export interface StoreWriter {
   state(stream: string): StreamState | undefined;
   isRecorded(stream: string, time: number, sequence: number): boolean;
   excursion(id: string): Excursion | undefined;
+  /** Readings of `from` ≤ time ≤ `to`, in order: for a handful around a moment. */
+  readingsBetween(stream: string, from: number, to: number): StoredReading[];
+  /** The newest version of a laboratory result. */
+  labResult(stream: string, identity: LabIdentity): LabResult | undefined;
   /** The largest cursor on record; 0 for an empty one. */
   lastCursor(): number;
   /** The newest version of a stream's limit set. */
@@ -112,6 +120,8 @@ export interface StoreReader {
   alarmEvents(query: { from: number; to: number; history: boolean }): RecordedEvent[];
   /** Newest first, those that touch `from`–`to`. */
   excursions(query: { stream?: string; from?: number; to?: number; limit: number }): Excursion[];
+  /** The newest versions of the results whose samples were drawn at `from` ≤ time < `to`, newest sample first; withdrawn ones, too. */
+  labResults(query: { stream: string; property?: string; from: number; to: number }): LabResult[];
   limitSet(stream: string, version?: number): LimitSet | undefined;
   /** Every version, newest first. */
   limitSets(stream: string): LimitSet[];

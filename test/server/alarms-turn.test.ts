@@ -18,6 +18,8 @@ const context: Context = {
   },
   isRecorded: () => false,
   excursion: () => undefined,
+  readingsBetween: () => [],
+  labResult: () => undefined,
 };
 let id = 0;
 const command = (asked: StreamCommand): Input => ({ kind: "command", id: ++id, now: start, command: asked });

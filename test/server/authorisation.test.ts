@@ -17,6 +17,7 @@ interface Row {
 }
 let limitSet: LimitSet;
 const reason = "a trial";
+const labIdentity = { property: "water", time: 1, method: "", sample: "" };
 const table = (): Record<string, Row> => ({
   "POST /sign-in": { least: "door", body: { name: "N. Obody", password: "not the password" } },
   "POST /sign-out": { least: "door" },
@@ -30,6 +31,10 @@ const table = (): Record<string, Row> => ({
   "POST /streams/{id}/excursions/{kind}/{start}/label": { least: "operator", body: { label: "process change" } },
   "POST /streams/{id}/excursions/{kind}/{start}/notes": { least: "operator", body: { note: "seen" } },
   "POST /streams/{id}/load": { least: "operator", body: "\n", type: "application/x-ndjson" },
+  "POST /streams/{id}/lab": { least: "operator", body: { time: 1, property: "water", value: 1, unit: "wt%" } },
+  "POST /streams/{id}/lab/table": { least: "engineer", body: "time,property\n", type: "text/csv" },
+  "POST /streams/{id}/lab/correct": { least: "engineer", body: { result: labIdentity, value: 1, reason } },
+  "POST /streams/{id}/lab/withdraw": { least: "engineer", body: { result: labIdentity, reason } },
   "POST /streams/{id}/limit-sets/differences": { least: "anybody", body: { limitSet } },
   "POST /streams/{id}/limit-sets": { least: "engineer", body: { limitSet, reason } },
   "POST /streams/{id}/limit-sets/{version}/roll-back": { least: "engineer", body: { reason } },

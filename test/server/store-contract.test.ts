@@ -2,6 +2,7 @@ import { afterEach, beforeEach, describe, expect, test } from "vitest";
 import type { LimitSet } from "../../core/limit-set/index.ts";
 import type { Excursion } from "../../core/messages/index.ts";
 import type { StoreReader, StoreWriter } from "../../server/store/store.ts";
+import { labResult } from "../core/judging/small-stream.ts";
 import { changes, event, type Maker, makers, modelId, names, reading, stateWith, stream } from "./store-record.ts";
 
 const time = Date.UTC(2026, 4, 14, 18, 42, 7);
@@ -207,5 +208,30 @@ describe.each(makers)("the record by $name", ({ place }) => {
     );
     expect(writer.firstLive(stream)).toBe(time + 10);
     expect(reader.extent(stream)).toEqual({ readings: 3, first: time });
+  });
+
+  test("keeps every version of a laboratory result, and gives the newest", () => {
+    const first = labResult(time, 7.2, { stream, method: "titration", sample: "L-1" });
+    const second = { ...first, version: 2, value: 7.3 };
+    const other = labResult(time, 7.4, { stream, sample: "L-2" });
+    const later = labResult(time + 1000, 50, { stream, property: "ethanol" });
+    writer.commit(changes({ labResults: [first, other, later, { ...first, stream: "s-2" }] }));
+    writer.commit(changes({ labResults: [second] }));
+    reopen();
+    expect(writer.labResult(stream, first)).toEqual(second);
+    expect(writer.labResult(stream, { ...first, sample: "L-3" })).toBeUndefined();
+    const all = { stream, from: time, to: time + 1001 };
+    expect(reader.labResults(all)).toEqual([later, second, other]); // newest sample first, then by name
+    expect(reader.labResults({ ...all, property: "ethanol" })).toEqual([later]);
+    expect(reader.labResults({ ...all, to: time + 1000 })).toEqual([second, other]);
+    expect(() => writer.commit(changes({ labResults: [second] }))).toThrow(); // a version is written once
+  });
+
+  test("finds the readings about a moment, both ends included, with their spectra", () => {
+    writer.commit(changes({ readings: [0, 1, 2, 3].map((i) => reading(time + i * 1000, { sequence: i })) }));
+    const found = writer.readingsBetween(stream, time + 1000, time + 2000);
+    expect(found.map(({ judged }) => judged.time)).toEqual([time + 1000, time + 2000]);
+    expect(found[0].values).toEqual(Float64Array.of(0.5, 0.1, Number.NaN));
+    expect(writer.readingsBetween(stream, time + 3001, time + 9000)).toEqual([]);
   });
 });

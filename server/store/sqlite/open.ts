@@ -4,6 +4,7 @@ import Database from "better-sqlite3";
 import { MillraceError, type Mismatch, mismatchSentence } from "../../../core/errors.ts";
 import { chainEvents } from "./event-chain.ts";
 import { addHandover } from "./handover.ts";
+import { laboratorySchema } from "./laboratory.ts";
 import { addRetirement } from "./retirement.ts";
 import { rollUpAll, rollupSchema } from "./rollup.ts";
 import { whatIsDamaged } from "./soundness.ts";
@@ -31,6 +32,7 @@ const steps: readonly ((db: Database.Database) => void)[] = [
   },
   (db) => db.exec(forRehearsal),
   addHandover,
+  (db) => db.exec(laboratorySchema),
 ];
 
 /** A record up to this size is looked through as a whole at every start: less than a second. A larger one is by every backup. */

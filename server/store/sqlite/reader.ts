@@ -1,61 +1,28 @@
 import type Database from "better-sqlite3";
 import type { StreamState } from "../../../core/judging/index.ts";
 import type { LimitSet } from "../../../core/limit-set/index.ts";
-import {
-  type AxisSpec,
-  type Excursion,
-  type Judged,
-  type Prediction,
-  type RecordedEvent,
-  verdictsOfMask,
-} from "../../../core/messages/index.ts";
-import type { StoredReading, StoreReader } from "../store.ts";
+import type { Excursion, RecordedEvent } from "../../../core/messages/index.ts";
+import type { StoreReader } from "../store.ts";
 import { handoverReader } from "./handover.ts";
+import { laboratoryReader } from "./laboratory.ts";
 import { openForReading } from "./open.ts";
-import { spectrumValues } from "./spectrum-bytes.ts";
+import { type ReadingRow, readingRows } from "./reading-rows.ts";
 import { accountQuery } from "./stream-account.ts";
 import { stretchQuery } from "./stretch.ts";
 import { trendQuery } from "./trend.ts";
-
-interface ReadingRow {
-  time: number;
-  sequence: number;
-  number: number;
-  received: number;
-  late: number;
-  history: number;
-  verdict: number;
-  t2: number | null;
-  q: number | null;
-  leverage: number | null;
-  nearest: number | null;
-  t2_ratio: number | null;
-  q_ratio: number | null;
-  nearest_ratio: number | null;
-  properties: Buffer;
-  unusable: string | null;
-  model: number | null;
-  limit_set: number;
-  unusable_reason: string | null;
-}
 
 /** The SQLite record's reader: its own connection, read only, beside the running writer. @throws StoreError */
 export function sqliteReader(file: string): StoreReader {
   const db = openForReading(file);
   const streams = new Map<string, number>();
-  const models = new Map<number, { id: string; properties: string[] }>();
   const sql = {
     stream: db.prepare<[string], number>("SELECT k FROM stream WHERE id = ?").pluck(),
-    model: db.prepare<[number], { id: string; properties: string }>("SELECT id, properties FROM model WHERE k = ?"),
     modelText: db.prepare<[string], string>("SELECT text FROM model WHERE id = ?").pluck(),
     before: readingQuery(db, "time <= ? ORDER BY time DESC, sequence DESC"),
     strictlyBefore: readingQuery(db, "time < ? ORDER BY time DESC, sequence DESC"),
     after: db
       .prepare<[number, number], number>("SELECT time FROM reading WHERE stream = ? AND time > ? ORDER BY time LIMIT 1")
       .pluck(),
-    spectrum: db.prepare<[number], { width: number; data: Buffer; axis: string | null }>(
-      "SELECT width, data, json AS axis FROM spectrum LEFT JOIN axis ON axis.k = spectrum.axis WHERE number = ?",
-    ),
     limitSet: db
       .prepare<[number, number], string>(
         "SELECT json FROM limit_set WHERE stream = ? AND version <= ? ORDER BY version DESC LIMIT 1",
@@ -111,6 +78,8 @@ export function sqliteReader(file: string): StoreReader {
       "SELECT count(*) AS readings, min(time) AS first FROM reading WHERE stream = ?",
     ),
   };
+  const { modelOf, readingOf } = readingRows(db);
+  const labResults = laboratoryReader(db);
   const trend = trendQuery(db, modelOf);
   const account = accountQuery(db, modelOf);
   const stretch = stretchQuery(db, modelOf);
@@ -121,27 +90,6 @@ export function sqliteReader(file: string): StoreReader {
     const k = sql.stream.get(id);
     if (k !== undefined) streams.set(id, k);
     return k ?? -1; // a stream that was never recorded: every query about it is empty
-  }
-  function modelOf(k: number | null): { id: string; properties: string[] } | undefined {
-    if (k === null) return undefined;
-    const known = models.get(k);
-    if (known) return known;
-    const row = sql.model.get(k);
-    if (!row) return undefined;
-    const model = { id: row.id, properties: JSON.parse(row.properties) as string[] };
-    models.set(k, model);
-    return model;
-  }
-  function readingOf(stream: string, row: ReadingRow): StoredReading {
-    const spectrum = sql.spectrum.get(row.number);
-    return {
-      judged: judgedOf(stream, row, modelOf(row.model)),
-      receivedAt: row.received,
-      late: row.late === 1,
-      history: row.history === 1,
-      values: spectrum ? spectrumValues(spectrum.data, spectrum.width) : null,
-      ...(spectrum?.axis ? { axis: JSON.parse(spectrum.axis) as AxisSpec } : {}),
-    };
   }
 
   return {
@@ -197,6 +145,7 @@ export function sqliteReader(file: string): StoreReader {
     refusedBetween: (from, to) =>
       sql.refusedBetween.all({ from, to }).map((row) => ({ ...row, stream: row.stream === "" ? null : row.stream })),
     handover: handoverReader(db),
+    labResults,
     modelText: (id) => sql.modelText.get(id),
     stretch: (stream, from, to) => stretch(streamKey(stream), stream, from, to),
     extent: (stream) => sql.extent.get(streamKey(stream))!,
@@ -219,32 +168,4 @@ interface RefusalRow {
 
 function readingQuery(db: Database.Database, where: string) {
   return db.prepare<[number, number], ReadingRow>(`SELECT * FROM reading WHERE stream = ? AND ${where} LIMIT 1`);
-}
-
-function judgedOf(stream: string, row: ReadingRow, model: { id: string; properties: string[] } | undefined): Judged {
-  const numbers = spectrumValues(row.properties, 8);
-  const properties: Record<string, Prediction> = {};
-  model?.properties.forEach((name, i) => {
-    properties[name] = { value: orNull(numbers[2 * i]), uncertainty: orNull(numbers[2 * i + 1]) };
-  });
-  return {
-    stream,
-    time: row.time,
-    sequence: row.sequence,
-    properties,
-    t2: row.t2,
-    q: row.q,
-    leverage: row.leverage,
-    nearest: row.nearest,
-    ratios: { t2: row.t2_ratio, q: row.q_ratio, nearest: row.nearest_ratio },
-    verdict: verdictsOfMask(row.verdict),
-    ...(row.unusable === null ? {} : { unusable: row.unusable }),
-    ...(row.unusable_reason === null ? {} : { unusableReason: row.unusable_reason }),
-    model: model?.id ?? null,
-    limitSet: row.limit_set,
-  };
-}
-
-function orNull(value: number): number | null {
-  return Number.isNaN(value) ? null : value;
 }

@@ -5,7 +5,9 @@ import { type AxisSpec, type Excursion, type Judged, verdictMask } from "../../.
 import type { Changes, NewReading, NewRefusal, StoreWriter } from "../store.ts";
 import { chainHash, chainStart } from "./event-chain.ts";
 import { handoverBook, handoverWriter } from "./handover.ts";
+import { laboratoryWriter } from "./laboratory.ts";
 import { openForWriting } from "./open.ts";
+import { type ReadingRow, readingRows } from "./reading-rows.ts";
 import { Retirement } from "./retirement.ts";
 import { RollupWriter } from "./rollup.ts";
 import { spectrumBytes } from "./spectrum-bytes.ts";
@@ -55,6 +57,11 @@ export function sqliteWriter(file: string): StoreWriter {
       .pluck(),
   };
   const handover = handoverWriter(db);
+  const between = db.prepare<[number, number, number], ReadingRow>(
+    "SELECT * FROM reading WHERE stream = ? AND time >= ? AND time <= ? ORDER BY time, sequence",
+  );
+  const { readingOf } = readingRows(db);
+  const laboratory = laboratoryWriter(db);
   const rollups = new RollupWriter(db);
   const retirement = new Retirement(db);
   let number = sql.lastNumber.get() as number;
@@ -153,6 +160,7 @@ export function sqliteWriter(file: string): StoreWriter {
       const { id, stream, start, end } = excursion;
       sql.excursion.run(id, stream, start, end ?? Number.MAX_SAFE_INTEGER, JSON.stringify(excursion));
     }
+    for (const result of changes.labResults ?? []) laboratory.add(result);
     for (const set of changes.limitSets ?? []) addLimitSet(set);
     for (const { record, number } of changes.shiftRecords ?? []) handover.freeze(record, number);
     for (const [stream, state] of changes.states) sql.setState.run(JSON.stringify(state), streamKey(stream));
@@ -180,6 +188,9 @@ export function sqliteWriter(file: string): StoreWriter {
       return json === undefined ? undefined : (JSON.parse(json) as Excursion);
     },
     isRecorded: (stream, time, sequence) => sql.recorded.get(streamKey(stream), time, sequence) !== undefined,
+    readingsBetween: (stream, from, to) =>
+      between.all(streamKey(stream), from, to).map((row) => readingOf(stream, row)),
+    labResult: (stream, identity) => laboratory.newest(stream, identity),
     lastCursor: () => sql.lastCursor.get() as number,
     limitSet(stream) {
       const json = sql.limitSet.get(streamKey(stream)) as string | undefined;
