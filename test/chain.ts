@@ -2,11 +2,9 @@ import { type ChildProcess, spawn } from "node:child_process";
 import { cpSync, existsSync, mkdirSync, mkdtempSync, readdirSync, readFileSync, rmSync, writeFileSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
-import { fileURLToPath } from "node:url";
 import { connectAsync, type MqttClient } from "mqtt";
+import { dist, program } from "./program.ts";
 
-const root = fileURLToPath(new URL("..", import.meta.url));
-const program = join(root, "dist/server/main.js");
 export const prefix = "millrace/brindle-quay";
 
 /** A whole Millrace in processes of its own: broker, engine, gateway and screens, with the demo's settings. */
@@ -113,7 +111,7 @@ function addresses(child: ChildProcess, printed: () => string): Promise<[string,
   });
 }
 
-const models = join(root, "dist/test-models");
+const models = join(dist, "test-models");
 
 /** Fitting the demo's models takes seconds: every chain of a run starts from the same files, made by the first. */
 async function copyModels(folder: string): Promise<void> {

@@ -86,7 +86,7 @@ export async function startMosquitto(
   return mosquitto;
 }
 
-function freePort(): Promise<number> {
+export function freePort(): Promise<number> {
   return new Promise((resolve) => {
     const server = createServer().listen(0, "127.0.0.1", () => {
       const { port } = server.address() as { port: number };

@@ -1,10 +1,9 @@
 import { spawn } from "node:child_process";
 import { join } from "node:path";
-import { fileURLToPath } from "node:url";
 import type { Page } from "playwright-core";
 import type { Chain } from "./chain.ts";
+import { program } from "./program.ts";
 
-const program = fileURLToPath(new URL("../dist/server/main.js", import.meta.url));
 /** of everybody that a test adds */
 export const password = "a long enough secret";
 

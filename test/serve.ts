@@ -1,8 +1,6 @@
 import { spawn } from "node:child_process";
-import { fileURLToPath } from "node:url";
 import { eventually } from "./chain.ts";
-
-const program = fileURLToPath(new URL("../dist/server/main.js", import.meta.url));
+import { program } from "./program.ts";
 
 export interface Served {
   url: string;

@@ -2,6 +2,7 @@ import { cpus } from "node:os";
 import type { BenchResult } from "./bench-result.ts";
 import { benchRehearse } from "./rehearse.ts";
 import { benchScore } from "./score.ts";
+import { benchScreens } from "./screens.ts";
 import { benchYear } from "./year.ts";
 
 /** Every bench, one after the other: first a table for people, then one line of JSON. Ratios within one run; times depend on the machine. */
@@ -9,6 +10,7 @@ const benches: Record<string, () => BenchResult[] | Promise<BenchResult[]>> = {
   score: benchScore,
   year: benchYear,
   rehearse: benchRehearse,
+  screens: benchScreens,
 };
 
 const asked = process.argv.slice(2);

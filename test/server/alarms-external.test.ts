@@ -2,14 +2,12 @@ import { spawn } from "node:child_process";
 import { readFileSync, writeFileSync } from "node:fs";
 import { createServer, type Socket } from "node:net";
 import { join } from "node:path";
-import { fileURLToPath } from "node:url";
 import { Aedes } from "aedes";
 import { connectAsync } from "mqtt";
 import { expect, test } from "vitest";
 import type { RecordedEvent, SetAsideAlarm } from "../../core/messages/index.ts";
 import { eventually, prefix, startChain } from "../chain.ts";
-
-const program = fileURLToPath(new URL("../../dist/server/main.js", import.meta.url));
+import { program } from "../program.ts";
 
 async function serve(config: string) {
   const child = spawn(process.execPath, [program, "serve", "--config", config], { stdio: ["ignore", "pipe", "pipe"] });

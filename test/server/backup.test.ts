@@ -2,19 +2,18 @@ import { execFile } from "node:child_process";
 import { cpSync, mkdtempSync, readdirSync, readFileSync, renameSync, rmSync, writeFileSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
-import { fileURLToPath } from "node:url";
 import { promisify } from "node:util";
 import { expect, test } from "vitest";
 import { backupCommand } from "../../server/commands/backup.ts";
 import { sqliteWriter } from "../../server/store/sqlite/writer.ts";
 import { makePlant, spectrumAt } from "../../simulator/plant/index.ts";
 import { eventually, startChain } from "../chain.ts";
+import { program } from "../program.ts";
 import { serve } from "../serve.ts";
 import { runCommand } from "./run-command.ts";
 import { changes, makers, modelId, names, reading } from "./store-record.ts";
 
 const plant = makePlant(1);
-const program = fileURLToPath(new URL("../../dist/server/main.js", import.meta.url));
 
 test("a backup made while readings come in holds everything from before it, and a service restored from it goes on", async () => {
   const chain = await startChain();

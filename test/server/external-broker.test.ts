@@ -2,15 +2,14 @@ import { spawn } from "node:child_process";
 import { readFileSync, writeFileSync } from "node:fs";
 import { createServer, type Server, type Socket } from "node:net";
 import { join } from "node:path";
-import { fileURLToPath } from "node:url";
 import { Aedes } from "aedes";
 import { connectAsync } from "mqtt";
 import { expect, test } from "vitest";
 import { makePlant, spectrumAt } from "../../simulator/plant/index.ts";
 import { eventually, prefix, startChain } from "../chain.ts";
+import { program } from "../program.ts";
 
 const plant = makePlant(1);
-const program = fileURLToPath(new URL("../../dist/server/main.js", import.meta.url));
 
 /** A broker of its own, outside the service, that can lose its links and get them back. */
 async function startBroker() {

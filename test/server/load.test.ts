@@ -1,15 +1,14 @@
 import { execFile } from "node:child_process";
 import { writeFileSync } from "node:fs";
 import { join } from "node:path";
-import { fileURLToPath } from "node:url";
 import { promisify } from "node:util";
 import { afterAll, beforeAll, expect, test } from "vitest";
 import type { RecordedEvent } from "../../core/messages/index.ts";
 import { makePlant, spectrumAt, wavelengths } from "../../simulator/plant/index.ts";
 import { type Chain, startChain } from "../chain.ts";
+import { program } from "../program.ts";
 
 const run = promisify(execFile);
-const program = fileURLToPath(new URL("../../dist/server/main.js", import.meta.url));
 const plant = makePlant(1);
 let chain: Chain;
 const end = Math.floor(Date.now() / 1000) * 1000 - 3_600_000;

@@ -1,14 +1,13 @@
 import { spawn } from "node:child_process";
 import { readFileSync, writeFileSync } from "node:fs";
 import { join } from "node:path";
-import { fileURLToPath } from "node:url";
 import { afterAll, beforeAll, describe, expect, test } from "vitest";
 import { WebSocket } from "ws";
 import { afterFailure, type Failures, waitLeft } from "../../server/people/throttle.ts";
 import { type Chain, eventually, startChain } from "../chain.ts";
 import { password, user as userOf } from "../people.ts";
+import { program } from "../program.ts";
 
-const program = fileURLToPath(new URL("../../dist/server/main.js", import.meta.url));
 const people = [
   ["V. Marsh", "viewer"],
   ["O. Quill", "operator"],
