@@ -70,6 +70,11 @@ export class SpectrumPanel extends LitElement {
     `,
   ];
 
+  /** what is drawn, for a picture that is saved */
+  get canvas(): HTMLCanvasElement | null {
+    return this.renderRoot.querySelector("canvas");
+  }
+
   override render() {
     return html`<div class="plot" role="application" aria-roledescription="chart" tabindex="0" aria-label=${this.label ?? ""} @keydown=${this.#key}></div>`;
   }

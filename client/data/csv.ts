@@ -70,6 +70,7 @@ export function readingCsv({ axis, spectrum, calibration, explanation }: Reading
       "residual",
       "part of T2",
       "part of Q (signed)",
+      ...(explanation?.predictions ?? []).map(({ name }) => `part of ${name}`),
     ],
   ];
   axis.points.forEach((point, index) => {
@@ -86,6 +87,7 @@ export function readingCsv({ axis, spectrum, calibration, explanation }: Reading
       modelled(explanation?.residual),
       modelled(explanation?.t2),
       modelled(explanation?.q),
+      ...(explanation?.predictions ?? []).map(({ contributions }) => modelled(contributions)),
     ]);
   });
   return csvOf(rows);

@@ -1,13 +1,19 @@
-import type { ReadingView } from "../../core/messages/index.ts";
+import type { PlantProperty, ReadingView } from "../../core/messages/index.ts";
 import type { PanelPicture } from "../charts/panel-picture.ts";
+
+export type PropertyName = Pick<PlantProperty, "name" | "unit">;
 
 /** A column in ascending order of the axis, whichever way the axis runs. */
 function inOrder<T>(axis: readonly number[], column: readonly T[]): T[] {
   return axis[0] > axis[axis.length - 1] ? [...column].reverse() : [...column];
 }
 
-/** The panels of a reading, from what came in to why it was judged so. Pure. */
-export function readingPanels(reading: ReadingView): PanelPicture[] {
+/**
+ * The panels of a reading, from what came in to why it was judged so and what made its numbers. Pure.
+ *
+ * @param property whose prediction is taken apart
+ */
+export function readingPanels(reading: ReadingView, { name, unit: of }: PropertyName): PanelPicture[] {
   const { axis, spectrum, calibration, explanation } = reading;
   const { unit } = axis;
   const panels: PanelPicture[] = [];
@@ -68,5 +74,16 @@ export function readingPanels(reading: ReadingView): PanelPicture[] {
       regions: explanation.t2Regions,
     },
   );
+  const prediction = explanation.predictions.find((each) => each.name === name);
+  if (prediction) {
+    panels.push({
+      title: `What makes ${name}, ${of} (together its distance from the calibration's mean)`,
+      axis: channels,
+      unit,
+      lines: [],
+      bars: { values: scored(prediction.contributions), colour: "quiet", label: "part" },
+      regions: prediction.regions,
+    });
+  }
   return panels;
 }

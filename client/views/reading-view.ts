@@ -3,6 +3,8 @@ import type { Plant, PlantStream, ReadingView as ReadingAnswer, Region } from ".
 import { href, type Route } from "../app/route.ts";
 import { regionName } from "../charts/panel-drawing.ts";
 import type { PanelPicture } from "../charts/panel-picture.ts";
+import { pictureSheet } from "../charts/picture-sheet.ts";
+import type { SpectrumPanel } from "../charts/spectrum-panel.ts";
 import "../charts/spectrum-panel.ts";
 import "../charts/place-map.ts";
 import { api } from "../data/api.ts";
@@ -19,6 +21,7 @@ import { duration } from "../words/duration.ts";
 import type { PlantTime } from "../words/plant-time.ts";
 import { axisUnit, decimalsFor, figure, fixed, grouped, named, percent, ratio, thin } from "../words/quantity.ts";
 import { verdictMeaning } from "../words/verdict-words.ts";
+import { readingCircumstances } from "./reading-circumstances.ts";
 import { readingPanels } from "./reading-panels.ts";
 
 /** regions beyond these say little */
@@ -33,6 +36,8 @@ export class ReadingView extends LitElement {
     time: { attribute: false },
     route: { attribute: false },
     cursor: { state: true },
+    takenApart: { state: true },
+    told: { state: true },
   };
   declare plant: Plant;
   declare feed: Feed;
@@ -40,11 +45,15 @@ export class ReadingView extends LitElement {
   declare route: Extract<Route, { view: "reading" }>;
   /** on the spectral axis */
   declare cursor: number | undefined;
+  /** name of the property whose prediction is taken apart */
+  declare takenApart: string | undefined;
+  /** what became of copying or saving */
+  declare told: string | undefined;
   readonly #loaded = new Loaded<ReadingAnswer>(this, (key, signal) => {
     const [stream, at] = key.split(" ");
     return api.reading(stream, at ? Number(at) : undefined, signal);
   });
-  #panels: { of: ReadingAnswer; made: PanelPicture[] } | undefined;
+  #panels: { of: ReadingAnswer; name: string; made: PanelPicture[] } | undefined;
 
   constructor() {
     super();
@@ -78,6 +87,12 @@ export class ReadingView extends LitElement {
       }
       .panels h2 span {
         color: var(--ink);
+      }
+      .take {
+        display: flex;
+        flex-wrap: wrap;
+        align-items: center;
+        gap: 8px;
       }
       .facts {
         display: grid;
@@ -192,19 +207,76 @@ export class ReadingView extends LitElement {
       }
       <span style="margin-left:auto"></span>
       ${step(reading?.previous, "◂ previous")} ${step(reading?.next, "next ▸")}
-      ${
-        reading
-          ? html`<button @click=${() => saveFile(fileName(stream.id, reading.judged.time), readingCsv(reading))}>Save as CSV</button>`
-          : nothing
-      }
+      ${step(reading?.excursions.previous, "◂ excursion")} ${step(reading?.excursions.next, "excursion ▸")}
       <a class="button" href=${href({ view: "reading", stream: stream.id })} @click=${this.#newest}>newest</a>
       ${at === undefined ? nothing : html`<a class="button" href=${href({ view: "watch", window: around(at, now) })}>Show on Watch</a>`}
+      ${reading ? this.#takeAway(stream, reading) : nothing}
     </div>`;
   }
 
+  /** What can be carried off: the numbers, by file or clipboard, and the charts. */
+  #takeAway(stream: PlantStream, reading: ReadingAnswer) {
+    const copy = async () => {
+      await navigator.clipboard.writeText(readingCsv(reading));
+      return "Copied.";
+    };
+    return html`<span class="take">
+      <button @click=${() => saveFile(fileName(stream.id, reading.judged.time), readingCsv(reading))}>Save as CSV</button>
+      ${navigator.clipboard ? html`<button @click=${() => this.#tell(copy)}>Copy as CSV</button>` : nothing}
+      <button @click=${() => this.#tell(() => this.#savePicture(stream, reading))}>Save picture</button>
+      <span role="status">${this.told ?? nothing}</span>
+    </span>`;
+  }
+
+  async #tell(act: () => Promise<string>): Promise<void> {
+    try {
+      this.told = await act();
+    } catch (error) {
+      this.told = `Not done: ${(error as Error).message}`;
+    }
+  }
+
+  async #savePicture(stream: PlantStream, reading: ReadingAnswer): Promise<string> {
+    const panels = this.#panelsOf(stream, reading);
+    const drawn = [...this.renderRoot.querySelectorAll<SpectrumPanel>("mill-spectrum-panel")];
+    const parts = panels.flatMap(({ title }, i) => {
+      const canvas = drawn[i]?.canvas;
+      return canvas ? [{ caption: title, canvas }] : [];
+    });
+    const lines = readingCircumstances(stream, reading, { plant: this.plant, time: this.time, now: this.feed.now() });
+    const picture = await pictureSheet({ title: `${stream.name} (${stream.id})`, lines, parts }, this);
+    saveFile(fileName(stream.id, reading.judged.time, "png"), picture);
+    return "Saved.";
+  }
+
+  #panelsOf(stream: PlantStream, reading: ReadingAnswer): PanelPicture[] {
+    const property = stream.properties.find(({ name }) => name === this.takenApart) ?? stream.properties[0];
+    const name = property?.name ?? "";
+    if (this.#panels?.of !== reading || this.#panels.name !== name) {
+      this.#panels = { of: reading, name, made: readingPanels(reading, property ?? { name, unit: "" }) };
+    }
+    return this.#panels.made;
+  }
+
+  /** Which prediction the last panel takes apart, where there are several. */
+  #apart({ properties }: PlantStream) {
+    if (properties.length < 2) return nothing;
+    return html`<p class="axis">
+      <label
+        >Take apart
+        <select
+          @change=${(event: Event) => {
+            this.takenApart = (event.target as HTMLSelectElement).value;
+          }}
+        >
+          ${properties.map(({ name }) => html`<option value=${name} ?selected=${name === (this.takenApart ?? properties[0].name)}>${name}</option>`)}
+        </select></label
+      >
+    </p>`;
+  }
+
   #body(stream: PlantStream, reading: ReadingAnswer, busy: boolean) {
-    if (this.#panels?.of !== reading) this.#panels = { of: reading, made: readingPanels(reading) };
-    const panels = this.#panels.made;
+    const panels = this.#panelsOf(stream, reading);
     const { points, unit } = reading.axis;
     const domain: [number, number] = [Math.min(...points), Math.max(...points)];
     return html`<div class="body" aria-busy=${busy}>
@@ -233,7 +305,7 @@ export class ReadingView extends LitElement {
           `,
         )}
         <p class="axis quiet">Axis: ${unit === "nm" ? "wavelength" : "wavenumber"}, ${axisUnit(unit)}</p>
-        ${panels.length ? this.#table(panels, unit) : nothing}
+        ${reading.explanation ? this.#apart(stream) : nothing} ${panels.length ? this.#table(panels, unit) : nothing}
       </div>
       <div class="facts">
         ${this.#verdict(reading)} ${this.#values(stream, reading)} ${this.#regions(reading)}
@@ -385,6 +457,7 @@ export class ReadingView extends LitElement {
       <table>
         <tbody>
           ${list(explanation.qRegions, "Q", true)} ${list(explanation.t2Regions, "T²", false)}
+          ${explanation.predictions.map(({ name, regions }) => list(regions, named(name), false))}
         </tbody>
       </table>
     </section>`;

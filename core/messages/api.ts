@@ -103,6 +103,8 @@ export const ReadingViewSchema = Type.Object({
   receivedAt: Type.Number(),
   previous: orNull(Type.Number()),
   next: orNull(Type.Number()),
+  /** beginnings of the excursions before and after it */
+  excursions: Type.Object({ previous: orNull(Type.Number()), next: orNull(Type.Number()) }),
   limits: Type.Object({
     t2: Type.Number(),
     q: Type.Number(),
@@ -133,6 +135,10 @@ export const ReadingViewSchema = Type.Object({
       t2: numbers,
       /** e_j² with the sign of e_j; the absolute values add up to Q */
       q: numbers,
+      /** by property: x_j b_j, adds up to the prediction's distance from the calibration's mean; unit of the property */
+      predictions: Type.Array(
+        Type.Object({ name: Type.String(), contributions: numbers, regions: Type.Array(RegionSchema) }),
+      ),
       t2Regions: Type.Array(RegionSchema),
       qRegions: Type.Array(RegionSchema),
       /** the model's steps take a derivative: a residual tells of a slope then, not of more or less absorption */

@@ -19,7 +19,7 @@ export interface Explanation {
   /** e_j² with the sign of e_j; the absolute values add up to Q */
   q: number[];
   /** for each property, x_j b_j: adds up to ŷ − ȳ */
-  predictions: { name: string; contributions: number[] }[];
+  predictions: { name: string; contributions: number[]; regions: Region[] }[];
   /** share of Σ|c|; sign: whether the region adds to T² (1) or takes away (−1) */
   t2Regions: Region[];
   /** sign: what is measured lies above (1) or below (−1) what the model can explain, in the unit that the steps leave */
@@ -51,13 +51,13 @@ export function explain(values: Float64Array, compiled: CompiledModel): Explanat
     residual: model.loadings ? Array.from(left) : [],
     t2: Array.from(t2),
     q: Array.from(q),
-    predictions: model.properties.map(({ name, deviation }, k) => ({
-      name,
-      contributions: Array.from(
+    predictions: model.properties.map(({ name, deviation }, k) => {
+      const contributions = Array.from(
         predictionContributions(x, coefficients[k]),
         (part) => part * (model.coefficients ? 1 : deviation),
-      ),
-    })),
+      );
+      return { name, contributions, regions: regionsOf(contributions, axisAfter) };
+    }),
     t2Regions: regionsOf(t2, axisAfter),
     qRegions: regionsOf(q, axisAfter),
     scores: Array.from(score.scores),

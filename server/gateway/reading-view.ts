@@ -34,6 +34,7 @@ export class ReadingExplainer {
       receivedAt: stored.receivedAt,
       previous: this.#store.readingBefore(stream, judged.time, "strictly")?.judged.time ?? null,
       next: this.#store.timeAfter(stream, judged.time) ?? null,
+      excursions: this.#store.excursionsBeside(stream, judged.time),
       limits,
       model: compiled ? { id: compiled.id, name: compiled.model.name, components: compiled.components } : null,
       axis: axisShown(stored, compiled, spectrum !== undefined),

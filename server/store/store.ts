@@ -119,6 +119,8 @@ export interface StoreReader {
   /** What happened to alarms at `from` ≤ time < `to`, in the order of the record; without what recorded history brought in, unless asked for. */
   alarmEvents(query: { from: number; to: number; history: boolean }): RecordedEvent[];
   /** Newest first, those that touch `from`–`to`. */
+  /** Beginnings of the last excursion before `at` and of the first after it; null where there is none. */
+  excursionsBeside(stream: string, at: number): { previous: number | null; next: number | null };
   excursions(query: { stream?: string; from?: number; to?: number; limit: number }): Excursion[];
   /** The newest versions of the results whose samples were drawn at `from` ≤ time < `to`, newest sample first; withdrawn ones, too. */
   labResults(query: { stream: string; property?: string; from: number; to: number }): LabResult[];

@@ -59,10 +59,11 @@ test("a reading as CSV leaves the model's columns empty for channels that it doe
       residual: [0.1],
       t2: [2],
       q: [0.01],
+      predictions: [{ name: "water", contributions: [0.3], regions: [] }],
     },
   } as unknown as ReadingView;
   expect(readingCsv(reading).trimEnd().split("\r\n").slice(1)).toEqual([
-    "1000,0.1,0.11,0.1,0.12,,,,,",
-    "1004,0.2,0.21,0.2,0.22,1,0.9,0.1,2,0.01",
+    "1000,0.1,0.11,0.1,0.12,,,,,,",
+    "1004,0.2,0.21,0.2,0.22,1,0.9,0.1,2,0.01,0.3",
   ]);
 });

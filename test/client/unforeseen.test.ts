@@ -81,6 +81,17 @@ test("the Reading view names the wavelengths of the band", async () => {
   await other.close();
 });
 
+test("the Reading view steps from one excursion to the next, and to none where there is none", async () => {
+  const other = await openPage(browser, `${chain.url}/reading/${stream}`);
+  await other.page.getByRole("link", { name: "◂ excursion" }).click();
+  await other.page.waitForURL(/at=/);
+  const { excursions } = await chain.get<{ excursions: { start: number }[] }>(`/excursions?stream=${stream}`);
+  expect(other.page.url()).toContain(new Date(excursions[0].start).toISOString());
+  await other.page.locator(".verdict", { hasText: "unfamiliar" }).waitFor();
+  await eventually("no earlier one", () => other.page.getByRole("button", { name: "◂ excursion" }).isDisabled());
+  await other.close();
+});
+
 test("a screen reader is told of the alarm without asking, once", async () => {
   const spoken = await wordsOf(seen.page.getByRole("alert").filter({ hasText: "alarm:" }));
   expect(spoken).toContain("high alarm: Recycled blend: Unfamiliar spectrum. Take a grab sample");

@@ -165,7 +165,7 @@ describe("Reading", () => {
     const stamp = seen.page.locator("mill-reading-view .head b");
     await stamp.waitFor();
     const first = await wordsOf(stamp);
-    expect(await seen.page.locator("mill-reading-view mill-spectrum-panel").count()).toBe(5);
+    expect(await seen.page.locator("mill-reading-view mill-spectrum-panel").count()).toBe(6);
     await seen.page.getByRole("link", { name: "◂ previous" }).click();
     await eventually("the reading before", async () => (await wordsOf(stamp)) !== first);
     await seen.page.getByRole("link", { name: "next ▸" }).click();
@@ -186,6 +186,48 @@ describe("Reading", () => {
       .split("\r\n");
     expect(lines).toHaveLength(1 + 301);
     expect(lines[1]).toMatch(/^1000,0\.\d+/);
+  });
+
+  test("is copied as the same CSV, where the browser has a clipboard", async () => {
+    await seen.page.context().grantPermissions(["clipboard-read", "clipboard-write"]);
+    await seen.page.getByRole("button", { name: "Copy as CSV" }).click();
+    await seen.page.getByText("Copied.").waitFor();
+    const text = await seen.page.evaluate("navigator.clipboard.readText()");
+    expect(String(text).trimEnd().split("\n")).toHaveLength(1 + 301);
+    expect(String(text)).toMatch(/^axis \(nm\),reading,.*,part of ethyl acetate,part of ethanol,part of water\r?\n/);
+  });
+
+  test("is saved as a PNG that holds every chart", async () => {
+    const [file] = await Promise.all([
+      seen.page.waitForEvent("download"),
+      seen.page.getByRole("button", { name: "Save picture" }).click(),
+    ]);
+    expect(file.suggestedFilename()).toMatch(/^bq-305 .*Z\.png$/);
+    const png = readFileSync(await file.path());
+    expect(png.subarray(1, 4).toString()).toBe("PNG"); // ISO/IEC 15948: signature, then IHDR with width and height
+    const [width, height] = [png.readUInt32BE(16), png.readUInt32BE(20)];
+    const charts = await seen.page
+      .locator("mill-spectrum-panel canvas")
+      .evaluateAll((all) =>
+        all
+          .map((each) => each as unknown as { width: number; height: number })
+          .map(({ width: w, height: h }) => [w, h]),
+      );
+    expect(charts).toHaveLength(6);
+    expect(width).toBeGreaterThan(charts[0][0]);
+    expect(height).toBeGreaterThan(charts.reduce((sum, [, h]) => sum + h, 0));
+  });
+
+  test("takes the prediction of each property apart, region by region", async () => {
+    const titles = seen.page.locator("mill-reading-view .panels h2");
+    expect(await titles.last().textContent()).toMatch(/^What makes ethyl acetate, wt%/);
+    await seen.page.getByLabel("Take apart").selectOption("water");
+    await eventually("water", async () => /^What makes water, wt%/.test((await titles.last().textContent()) ?? ""));
+    const row = seen.page
+      .locator(".facts")
+      .getByRole("row", { name: /^Water/ })
+      .last();
+    expect(await wordsOf(row)).toMatch(/\d–[\d\s]+ nm: [\d.]+\s%/);
   });
 
   test("shows T² and Q beside their limits, and the place among the calibration samples", async () => {

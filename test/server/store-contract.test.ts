@@ -134,6 +134,10 @@ describe.each(makers)("the record by $name", ({ place }) => {
     expect(reader.excursions({ from: 201, limit: 9 })).toEqual([]);
     expect(reader.excursions({ to: 100, limit: 9 })).toEqual([]);
     expect(reader.excursions({ stream: "another", limit: 9 })).toEqual([]);
+    expect(reader.excursionsBeside(over.stream, over.start)).toEqual({ previous: null, next: null });
+    expect(reader.excursionsBeside(over.stream, over.start + 1)).toEqual({ previous: over.start, next: null });
+    expect(reader.excursionsBeside(over.stream, over.start - 1)).toEqual({ previous: null, next: over.start });
+    expect(reader.excursionsBeside("another", over.start + 1)).toEqual({ previous: null, next: null });
   });
 
   test("counts refusals by stream and reason; the same message again is one entry with a count", () => {

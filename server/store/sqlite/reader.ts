@@ -74,6 +74,9 @@ export function sqliteReader(file: string): StoreReader {
     >(
       "SELECT stream, reason, says, sum(count) AS count, min(received) AS first, max(last) AS last FROM refusal WHERE last >= @from AND received < @to GROUP BY stream, reason ORDER BY count DESC",
     ),
+    excursionsBeside: db.prepare<Named, { previous: number | null; next: number | null }>(
+      "SELECT (SELECT max(start) FROM excursion WHERE stream = @stream AND start < @at) AS previous, (SELECT min(start) FROM excursion WHERE stream = @stream AND start > @at) AS next",
+    ),
     extent: db.prepare<[number], { readings: number; first: number | null }>(
       "SELECT count(*) AS readings, min(time) AS first FROM reading WHERE stream = ?",
     ),
@@ -120,6 +123,7 @@ export function sqliteReader(file: string): StoreReader {
       const events = sql.alarmEvents.all({ from, to }).map((json) => JSON.parse(json) as RecordedEvent);
       return history ? events : events.filter((event) => !event.history);
     },
+    excursionsBeside: (stream, at) => sql.excursionsBeside.get({ stream, at })!,
     excursions({ stream, from = 0, to = Number.MAX_SAFE_INTEGER, limit }) {
       return sql.excursions
         .all({ stream: stream ?? null, from, to, limit })
