@@ -6,6 +6,7 @@ import { calibrateCommand } from "./commands/calibrate.ts";
 import { demoCommand } from "./commands/demo.ts";
 import { importModelCommand } from "./commands/import-model.ts";
 import { inspectCommand } from "./commands/inspect.ts";
+import { labCommand } from "./commands/lab.ts";
 import { loadCommand } from "./commands/load.ts";
 import { scoreCommand } from "./commands/score.ts";
 import { serveCommand } from "./commands/serve.ts";
@@ -26,6 +27,7 @@ for (const command of [
   inspectCommand(),
   importModelCommand(),
   scoreCommand(),
+  labCommand(),
   loadCommand(),
   simulateCommand(),
   userCommand(),

@@ -45,9 +45,12 @@ export function yScoresOf(y: number, t: readonly number[], model: Model, propert
  *
  *     s_a √(1 + 1/n + t²/Σt²)     s_a² = Σ(u − t)²/(n − a − 1)
  *
- * A pair further away is odd: its spectrum and its value may be ordinary each, but not together. All beside the line: shifted. Their own
- * relation of second order: bent, so the property is not linear in these spectra (any more). Empty when the model keeps no scores or
- * reference values.
+ * A pair further away is odd: its spectrum and its value may be ordinary each, but not together.
+ *
+ * Shift and bend are judged by what all components together leave, e = (y − mean)/deviation − Σ t q, since what later components add need not
+ * vanish where a process runs: shifted when the mean of e is not 0, bent when e goes with t² of the component (a component-plus-residual plot;
+ * Larsen & McCleary, Technometrics 14 (1972) 781, from memory), so that the property is not linear in these spectra any more. Empty when the
+ * model keeps no scores or reference values.
  */
 export function innerPlaces(pairs: readonly PlacedPair[], model: Model, property: number): InnerPlace[] {
   const { scores, yLoadings, samples } = model;
@@ -55,6 +58,7 @@ export function innerPlaces(pairs: readonly PlacedPair[], model: Model, property
   if (!scores || !yLoadings || !reference) return [];
   const u = scores.map((t, i) => yScoresOf(reference[i][property], t, model, property));
   const pairsU = pairs.map(({ laboratory, t }) => yScoresOf(laboratory, t, model, property));
+  const left = pairs.map(({ laboratory, t }) => leftOf(laboratory, t, model, property));
   return yLoadings.flatMap((q, a) => {
     if (q[property] === 0) return [];
     const calibration = { t: scores.map((row) => row[a]), u: u.map((row) => row[a]) };
@@ -63,14 +67,21 @@ export function innerPlaces(pairs: readonly PlacedPair[], model: Model, property
       t: pairs.map(({ t }) => t[a]),
       u: pairsU.map((row) => row[a]),
     };
-    return [placeIn(a + 1, calibration, placed)];
+    return [placeIn(a + 1, calibration, placed, left)];
   });
+}
+
+/** What all components leave of y, in its scaled unit. */
+function leftOf(y: number, t: readonly number[], { properties, yLoadings = [] }: Model, property: number): number {
+  const { mean, deviation } = properties[property];
+  return yLoadings.reduce((left, q, a) => left - t[a] * q[property], (y - mean) / deviation);
 }
 
 function placeIn(
   component: number,
   calibration: { t: number[]; u: number[] },
   placed: { index: number[]; t: number[]; u: number[] },
+  left: readonly number[],
 ): InnerPlace {
   const n = calibration.t.length;
   const freedom = n - component - 1;
@@ -79,8 +90,8 @@ function placeIn(
   const apart = placed.t.map((t, i) => (placed.u[i] - t) / (s * Math.sqrt(1 + 1 / n + (t * t) / tt)));
   const limit = tQuantile(1 - alpha / 2, freedom);
   const enough = placed.t.length >= leastPairs;
-  const shift = enough ? biasTest(placed.t.map((t, i) => placed.u[i] - t)) : null;
-  const bend = enough ? bendTest(placed) : null;
+  const shift = enough ? biasTest(left) : null;
+  const bend = enough ? bendTest(placed.t, left) : null;
   return {
     component,
     calibration,
@@ -94,8 +105,8 @@ function placeIn(
   };
 }
 
-function bendTest({ t, u }: { t: number[]; u: number[] }): NonNullable<InnerPlace["bend"]> {
-  const statistic = quadraticTerm({ t, u });
+function bendTest(t: readonly number[], left: readonly number[]): NonNullable<InnerPlace["bend"]> {
+  const statistic = quadraticTerm({ t, u: left });
   const freedom = t.length - 3;
   return { statistic, freedom: [freedom], p: tTails(statistic, freedom) };
 }

@@ -13,7 +13,7 @@ const k = 0.5;
 const h = 4;
 /** One wild pair must not make a shift by itself: further than this from the level it counts as this far. */
 const mostAway = 3;
-/** Neighbours whose levels differ no surer than this are one. */
+/** Neighbours whose levels differ no surer than this are one: strict, because the cut was looked for. */
 const differAt = 0.01;
 
 /**

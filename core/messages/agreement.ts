@@ -90,10 +90,10 @@ export const InnerPlaceSchema = Type.Object({
   /** beyond this many standard errors a pair is odd in this component */
   limit: Type.Number(),
   odd: Type.Array(Type.Integer()),
-  /** the pairs lie beside the calibration's line, all of them: t of their mean distance, and its p */
+  /** the pairs lie beside the calibration's line, all of them: t of the mean of what all components leave, and its p */
   shift: orNull(TestSchema),
   shifted: Type.Boolean(),
-  /** the pairs' own relation bends: t of the quadratic term, and its p */
+  /** what all components leave bends with t: t of the quadratic term, and its p */
   bend: orNull(TestSchema),
   bent: Type.Boolean(),
 });

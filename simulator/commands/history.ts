@@ -3,17 +3,20 @@ import { writeFile } from "node:fs/promises";
 import type { Writable } from "node:stream";
 import { Command } from "commander";
 import { defaultSeed, makePlant, type Plant, type PlantStreamId, streamIds } from "../plant/index.ts";
-import { historyItem } from "../publisher/index.ts";
+import { historyItem, labHistoryItem } from "../publisher/index.ts";
 import {
   type Grid,
   historyEvents,
   type PlantEvent,
   readingAt,
+  resultsOf,
   type SimulatedReading,
+  samplesReported,
   sequenceFrom,
   settleMs,
   timeOf,
   truthOf,
+  usualSchedule,
 } from "../scenario/index.ts";
 import { moment, periodNumber, seedNumber, streamId } from "./options.ts";
 import { SimulatorError, UsageError } from "./simulator-error.ts";
@@ -30,7 +33,8 @@ export function historyCommand(): Command {
   return new Command("history")
     .description(
       "write the readings of a stretch of time to standard output, as a CBOR sequence (RFC 8742) of\n" +
-        "{ stream, time (epoch ms), sequence, values (RFC 8746 typed array), context: { temperature } }, in order of time",
+        "{ stream, time (epoch ms), sequence, values (RFC 8746 typed array), context: { temperature } }, in order of time;\n" +
+        "between them the results of the laboratory, when they were there: { stream, received, lab: { time, property, value … } }",
     )
     .requiredOption("--from <time>", "first moment, RFC 3339 or epoch ms", moment)
     .requiredOption("--to <time>", "end (not in it)", moment)
@@ -44,7 +48,7 @@ export function historyCommand(): Command {
       const streams = options.streams ?? [...streamIds];
       const events = historyEvents(options.seed, options.from, options.to);
       if (options.truth !== undefined) await writeTruth(options.truth, events, streams, options);
-      await writeAll(historyReadings(makePlant(options.seed), events, streams, options), process.stdout);
+      await writeAll(historyItems(makePlant(options.seed), events, streams, options), process.stdout);
     });
 }
 
@@ -89,10 +93,30 @@ export function* historyReadings(
   }
 }
 
+/** The readings of a stretch with the laboratory's results between them, each as an item of the sequence. */
+function* historyItems(
+  plant: Plant,
+  events: readonly PlantEvent[],
+  streams: readonly PlantStreamId[],
+  stretch: { from: number; to: number } & Grid,
+): Generator<Buffer> {
+  const samples = streams
+    .flatMap((stream) => samplesReported(usualSchedule, plant.seed, stream, stretch.from, stretch.to))
+    .filter(({ drawn }) => drawn >= stretch.from)
+    .sort((a, b) => a.reported - b.reported);
+  for (const reading of historyReadings(plant, events, streams, stretch)) {
+    while (samples.length > 0 && samples[0].reported <= reading.time) {
+      const sample = samples.shift()!;
+      for (const result of resultsOf(plant, events, sample)) yield labHistoryItem(sample, result);
+    }
+    yield historyItem(reading);
+  }
+}
+
 /** Written in pieces of this size: large enough that the pipe is not the work, small enough that the reader starts at once. */
 const pieceBytes = 256 * 1024;
 
-async function writeAll(readings: Iterable<SimulatedReading>, out: Writable): Promise<void> {
+async function writeAll(items: Iterable<Buffer>, out: Writable): Promise<void> {
   let piece: Buffer[] = [];
   let bytes = 0;
   const flush = async () => {
@@ -101,8 +125,7 @@ async function writeAll(readings: Iterable<SimulatedReading>, out: Writable): Pr
     bytes = 0;
     if (!out.write(whole)) await once(out, "drain");
   };
-  for (const reading of readings) {
-    const item = historyItem(reading);
+  for (const item of items) {
     piece.push(item);
     bytes += item.length;
     if (bytes >= pieceBytes) await flush();

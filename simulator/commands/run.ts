@@ -33,7 +33,9 @@ above 1 needs a --start in the past; when process time has caught up with the wa
 
 export function runCommand(): Command {
   return new Command("run")
-    .description("publish the plant live over MQTT (QoS 1) to <prefix>/<site>/<stream>/reading and …/state (retained)")
+    .description(
+      "publish the plant live over MQTT (QoS 1) to <prefix>/<site>/<stream>/reading, …/state (retained) and …/lab",
+    )
     .requiredOption("--broker <url>", "as mqtt://127.0.0.1:1883", brokerUrl)
     .option("--prefix <word>", "first part of the topics", "millrace")
     .option("--site <word>", "second part of the topics", "brindle-quay")

@@ -3,7 +3,7 @@ import type { Composition } from "./ingredients.ts";
 import { normalTable } from "./normal-noise.ts";
 import { measured, type Plant } from "./plant.ts";
 import { evenNumbers, hash32, keyOf } from "./random.ts";
-import type { PlantStreamId, StreamPlan } from "./streams.ts";
+import type { LaboratoryProperty, PlantStreamId, StreamPlan } from "./streams.ts";
 
 /** One sample that was drawn, measured by the analyzer and sent to the laboratory. */
 export interface CalibrationSample {
@@ -82,12 +82,15 @@ function conditionsOf(plan: StreamPlan, place: readonly number[]): Conditions {
 }
 
 function laboratoryResults(plan: StreamPlan, truth: Composition, random: () => number): number[] {
-  const z = normalTable();
   return plan.properties.map(({ name, error }) => {
     const percent = 100 * truth[name];
-    const deviation = Math.hypot(error.absolute, error.relative * percent);
-    return percent + deviation * z[random() >>> 20]!;
+    return percent + laboratoryError(error, percent, random());
   });
+}
+
+/** What the laboratory's result is off by, wt%; `chance`: 32 even bits. */
+export function laboratoryError(error: LaboratoryProperty["error"], percent: number, chance: number): number {
+  return Math.hypot(error.absolute, error.relative * percent) * normalTable()[chance >>> 20]!;
 }
 
 /** One point in each of `count` even slices of every dimension, the slices shuffled against each other (McKay, Beckman & Conover 1979). */

@@ -2,7 +2,7 @@ export { absorbanceInto } from "./absorbance.ts";
 export { analyzerAxis, channelCount, wavelengths } from "./axis.ts";
 export { type Band, bandSpectrum, unforeseenBand } from "./band.ts";
 export { calibrationCsv } from "./calibration-csv.ts";
-export { type CalibrationSample, calibrationSet, type SetKind } from "./calibration-set.ts";
+export { type CalibrationSample, calibrationSet, laboratoryError, type SetKind } from "./calibration-set.ts";
 export type { Conditions, Optics } from "./conditions.ts";
 export { type Disturbance, undisturbed } from "./disturbance.ts";
 export { type Composition, type Ingredient, ingredientNames } from "./ingredients.ts";

@@ -50,6 +50,8 @@ export interface StreamPlan {
     heatK: number;
     /** growth of the lamp's fault, absorbance between the ends of the axis */
     lamp: number;
+    /** what an aged reagent takes from (or adds to) the laboratory's results of one property, wt% */
+    reagent: { property: Ingredient; bias: number };
   };
 }
 
@@ -72,7 +74,14 @@ export const streamPlans: Record<PlantStreamId, StreamPlan> = {
     calibrationSamples: 90,
     steps: "savitzky-golay 15 2 1; center",
     grades: { usual: "industrial", other: "fine", shift: { water: -0.012, propanol: -0.002 } },
-    sizes: { coSolvent: 0.025, feed: { water: 0.235 }, film: 0.01, heatK: 22, lamp: 0.016 },
+    sizes: {
+      coSolvent: 0.025,
+      feed: { water: 0.235 },
+      film: 0.01,
+      heatK: 22,
+      lamp: 0.016,
+      reagent: { property: "water", bias: -0.22 },
+    },
   },
   "bq-305": {
     id: "bq-305",
@@ -93,7 +102,14 @@ export const streamPlans: Record<PlantStreamId, StreamPlan> = {
     calibrationSamples: 90,
     steps: "savitzky-golay 15 2 1; center",
     grades: { usual: "blend 30", other: "blend 34", shift: { ethanol: 0.035, water: 0.003 } },
-    sizes: { coSolvent: 0.035, feed: { water: 0.095, ethanol: 0.46 }, film: 0.018, heatK: 22, lamp: 0.028 },
+    sizes: {
+      coSolvent: 0.035,
+      feed: { water: 0.095, ethanol: 0.46 },
+      film: 0.018,
+      heatK: 22,
+      lamp: 0.028,
+      reagent: { property: "water", bias: -0.14 },
+    },
   },
   "bq-410": {
     id: "bq-410",
@@ -110,6 +126,13 @@ export const streamPlans: Record<PlantStreamId, StreamPlan> = {
     calibrationSamples: 70,
     steps: "snv; savitzky-golay 15 2 1; center",
     grades: { usual: "dry", other: "extra dry", shift: { water: -0.0006 } },
-    sizes: { coSolvent: 0.02, feed: { water: 0.0105 }, film: 0.01, heatK: 22, lamp: 0.016 },
+    sizes: {
+      coSolvent: 0.02,
+      feed: { water: 0.0105 },
+      film: 0.01,
+      heatK: 22,
+      lamp: 0.016,
+      reagent: { property: "water", bias: -0.018 },
+    },
   },
 };

@@ -1,3 +1,3 @@
-export { historyItem, readingPayload } from "./payload.ts";
+export { historyItem, labHistoryItem, readingPayload } from "./payload.ts";
 export { type ProcessClock, processClock } from "./process-clock.ts";
 export { type Publisher, type PublisherOptions, startPublisher } from "./publisher.ts";

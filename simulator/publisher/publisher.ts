@@ -5,14 +5,16 @@ import {
   type PlantEvent,
   processStateAt,
   readingAt,
+  resultsOf,
   type Scenario,
+  samplesReported,
   scenarioEvents,
   sequenceFrom,
   timeOf,
 } from "../scenario/index.ts";
 import { type BrokerLink, brokerLink } from "./broker-link.ts";
 import { lane } from "./lane.ts";
-import { readingPayload } from "./payload.ts";
+import { labPayload, readingPayload } from "./payload.ts";
 import { processClock } from "./process-clock.ts";
 
 export interface PublisherOptions extends Grid {
@@ -55,6 +57,7 @@ export function startPublisher(options: PublisherOptions): Publisher {
   const topic = (stream: PlantStreamId, last: string) => `${prefix}/${site}/${stream}/${last}`;
   const tellStates = stateTeller(link, topic);
   const tellEvents = eventTeller(say);
+  const tellResults = resultTeller(link, topic, options);
   let acknowledged = 0;
 
   async function run(): Promise<void> {
@@ -65,6 +68,7 @@ export function startPublisher(options: PublisherOptions): Publisher {
       const events = scenarioEvents(scenario, start, time - options.periodMs, time);
       tellEvents(events, time);
       for (const change of tellStates(events, time)) await sending.start(change);
+      for (const result of tellResults(stream, time)) await sending.start(result);
       const memoryMs = rememberedMs * Math.max(1, options.speed);
       if (clock.now() - time > memoryMs) {
         const from = sequenceFrom(options, stream, clock.now() - memoryMs);
@@ -114,6 +118,26 @@ function stateTeller(link: BrokerLink, topic: (stream: PlantStreamId, last: stri
       const payload = JSON.stringify({ time: iso(time), ...state });
       return [() => link.publish(topic(stream, "state"), payload, { retain: true })];
     });
+}
+
+/** Publishes the laboratory's results of a line when they are there: of samples that were drawn since the run began. */
+function resultTeller(
+  link: BrokerLink,
+  topic: (stream: PlantStreamId, last: string) => string,
+  { plant, scenario, start }: PublisherOptions,
+) {
+  const toldUpTo = new Map<PlantStreamId, number>();
+  const { laboratory } = scenario;
+  return (stream: PlantStreamId, time: number): (() => Promise<void>)[] => {
+    if (!laboratory) return [];
+    const schedule = { everyMs: laboratory.everyMinutes * 60_000, turnaroundMs: laboratory.turnaroundMinutes * 60_000 };
+    const samples = samplesReported(schedule, plant.seed, stream, toldUpTo.get(stream) ?? start, time);
+    toldUpTo.set(stream, time);
+    return samples
+      .filter(({ drawn }) => drawn >= start)
+      .flatMap((sample) => resultsOf(plant, scenarioEvents(scenario, start, sample.drawn, sample.drawn), sample))
+      .map((result) => () => link.publish(topic(stream, "lab"), labPayload(result)));
+  };
 }
 
 /** Says once when each event begins and when it ends. */

@@ -11,9 +11,12 @@ const demo: Scenario = {
   ...form,
   name: "demo",
   repeatMinutes: 30,
+  // Samples far more often than anybody draws them, so that someone who watches sees the laboratory drift within the half hour.
+  laboratory: { everyMinutes: 3, turnaroundMinutes: 1 },
   events: [
     { kind: "bubble", stream: "bq-201", startSeconds: 30 },
     { kind: "co-solvent", stream: "bq-305", startSeconds: 75, durationSeconds: 4 * minutes },
+    { kind: "lab-bias", stream: "bq-201", startSeconds: 2 * minutes, durationSeconds: 26 * minutes },
     { kind: "bubble", stream: "bq-410", startSeconds: 4 * minutes },
     { kind: "beyond-range", stream: "bq-201", startSeconds: 8 * minutes, durationSeconds: 4 * minutes },
     { kind: "fouling", stream: "bq-410", startSeconds: 13 * minutes, durationSeconds: 11 * minutes },

@@ -26,6 +26,7 @@ export function courseOf(event: PlantEvent, time: number): number {
       return time < start || time >= end ? 0 : (time - start) / (end - start);
     case "single":
     case "readings":
+    case "laboratory":
       return 0;
   }
 }

@@ -12,6 +12,7 @@ export const eventKinds = [
   "frozen",
   "grade-change",
   "cleaning",
+  "lab-bias",
 ] as const;
 export type EventKind = (typeof eventKinds)[number];
 
@@ -27,8 +28,8 @@ export interface PlantEvent {
   size: number;
 }
 
-/** The words an excursion can be labelled with. */
-export type TruthLabel = "process change" | "analyzer fault" | "cleaning" | "false";
+/** The words an excursion can be labelled with; a fault of the laboratory makes none. */
+export type TruthLabel = "process change" | "analyzer fault" | "cleaning" | "false" | "laboratory fault";
 
 interface KindOfEvent {
   label: TruthLabel;
@@ -39,7 +40,7 @@ interface KindOfEvent {
   /** should a person be called? */
   annunciates: boolean;
   /** how the cause reaches the readings */
-  course: "lagged" | "growing" | "single" | "readings";
+  course: "lagged" | "growing" | "single" | "readings" | "laboratory";
 }
 
 export const kindOf: Record<EventKind, KindOfEvent> = {
@@ -113,7 +114,19 @@ export const kindOf: Record<EventKind, KindOfEvent> = {
     annunciates: false,
     course: "lagged",
   },
+  "lab-bias": {
+    label: "laboratory fault",
+    says: "a reagent of the laboratory has aged: its water results come out low",
+    verdicts: ["inside"],
+    annunciates: true,
+    course: "laboratory",
+  },
 };
+
+/** Does it happen to the line or to its analyzer? The laboratory is a place of its own. */
+export function isOfTheLine({ kind }: PlantEvent): boolean {
+  return kindOf[kind].course !== "laboratory";
+}
 
 const mostLagMs = 6 * 60_000;
 

@@ -1,5 +1,5 @@
 import { keyOf, type PlantStreamId, uniformAt } from "../plant/index.ts";
-import { type EventKind, type PlantEvent, settleMs } from "./event.ts";
+import { type EventKind, isOfTheLine, type PlantEvent, settleMs } from "./event.ts";
 
 const minute = 60_000;
 const hour = 60 * minute;
@@ -16,7 +16,7 @@ interface Planned {
   minutes: number;
 }
 
-/** What goes wrong in a fortnight of a plant that mostly goes well. One entry a stream and day, so that nothing hides anything else. */
+/** What goes wrong in a fortnight of a plant that mostly goes well. One entry a stream and day, so that nothing hides anything else; the laboratory is a place of its own. */
 const plan: readonly Planned[] = [
   { stream: "bq-201", kind: "cleaning", day: 1, hours: [5, 8], minutes: 35 },
   { stream: "bq-201", kind: "beyond-range", day: 3, hours: [2, 20], minutes: 70 },
@@ -37,6 +37,8 @@ const plan: readonly Planned[] = [
   { stream: "bq-410", kind: "lamp-ageing", day: 8, hours: [1, 4], minutes: 960 },
   { stream: "bq-410", kind: "beyond-range", day: 10, hours: [2, 20], minutes: 80 },
   { stream: "bq-410", kind: "cleaning", day: 12, hours: [6, 9], minutes: 30 },
+  { stream: "bq-201", kind: "lab-bias", day: 8, hours: [12, 18], minutes: 4200 },
+  { stream: "bq-410", kind: "lab-bias", day: 1, hours: [6, 12], minutes: 3600 },
 ];
 
 const bubblesPerCycle: Record<PlantStreamId, number> = { "bq-201": 9, "bq-305": 6, "bq-410": 4 };
@@ -79,7 +81,11 @@ function bubblesOfCycle(seed: number, cycle: number, start: number, planned: rea
     }).filter(
       ({ start: at }) =>
         !planned.some(
-          (event) => event.stream === stream && event.start - hour < at && at < event.end + settleMs(event) + hour,
+          (event) =>
+            isOfTheLine(event) &&
+            event.stream === stream &&
+            event.start - hour < at &&
+            at < event.end + settleMs(event) + hour,
         ),
     ),
   );

@@ -9,6 +9,16 @@ export const ScenarioSchema = Type.Object(
     name: Type.String({ minLength: 1, maxLength: 100 }),
     /** the programme starts again after this long; absent: it runs once */
     repeatMinutes: Type.Optional(Type.Number({ exclusiveMinimum: 0, maximum: 100_000 })),
+    /** grab samples of every line, and how long their results take; absent: no laboratory */
+    laboratory: Type.Optional(
+      Type.Object(
+        {
+          everyMinutes: Type.Number({ minimum: 0.1, maximum: 100_000 }),
+          turnaroundMinutes: Type.Number({ minimum: 0, maximum: 100_000 }),
+        },
+        { additionalProperties: false },
+      ),
+    ),
     events: Type.Array(
       Type.Object(
         {

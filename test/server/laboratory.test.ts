@@ -1,3 +1,5 @@
+import { writeFileSync } from "node:fs";
+import { join } from "node:path";
 import { afterAll, beforeAll, describe, expect, test } from "vitest";
 import type {
   Agreement,
@@ -7,9 +9,11 @@ import type {
   RecordedEvent,
   Refusals,
 } from "../../core/messages/index.ts";
+import { labCommand } from "../../server/commands/lab.ts";
 import { conditionsAt, makePlant, spectrumAt } from "../../simulator/plant/index.ts";
 import { type Chain, eventually, prefix, startChain } from "../chain.ts";
 import { user } from "../people.ts";
+import { runCommand } from "./run-command.ts";
 
 const plant = makePlant(1);
 const stream = "bq-305";
@@ -249,4 +253,32 @@ test("agreement: statistics over the pairs that count, each placed in the relati
     404,
     { code: "unknown-property", says: `${stream} predicts no colour; it predicts ethyl acetate, ethanol, water.` },
   ]);
+});
+
+describe("millrace lab", () => {
+  const header = "time,property,value,unit,method,sample";
+  async function lab(rows: string[], ...more: string[]) {
+    const file = join(chain.folder, "lab.csv");
+    writeFileSync(file, [header, ...rows].join("\n"));
+    return runCommand(labCommand(), ["--stream", stream, "--data", file, "--url", chain.url, ...more]);
+  }
+  const row = (sample: string, unit = "wt%") => {
+    const { time, value } = result(6, sample);
+    return `${time},water,${value},${unit},,${sample}`;
+  };
+
+  test("brings a table in, and says how many there were", async () => {
+    const { out, error } = await lab([row("c-1"), row("c-2")], "--token", tokens.engineer);
+    expect([error, out]).toEqual([undefined, `${stream}: 2 results recorded, 0 already there.\n`]);
+  });
+
+  test("names each wrong row, takes none, and says who may", async () => {
+    const wrong = await lab([row("c-3"), row("c-4", "ppm")], "--token", tokens.engineer);
+    expect((wrong.error as Error).message).toMatch(
+      /lab\.csv: 1 of 2 rows refused, so nothing was taken\. Correct them and send the table again\.\n {2}line 3: unit of water is "ppm", expected "wt%"/,
+    );
+    expect(await find("c-3")).toBeUndefined();
+    const operator = await lab([row("c-3")], "--token", tokens.operator);
+    expect((operator.error as Error).message).toMatch(/token operator is operator; this needs engineer/);
+  });
 });

@@ -3,6 +3,7 @@ import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { decodeMultiple } from "cbor-x";
 import { afterAll, beforeAll, describe, expect, test } from "vitest";
+import type { LabMessage } from "../../core/messages/index.ts";
 import { makePlant, spectrumAt, streamIds, streamPlans } from "../../simulator/plant/index.ts";
 import type { SimulatedReading, Truth } from "../../simulator/scenario/index.ts";
 import { loopbackBroker } from "./support/loopback-broker.ts";
@@ -15,11 +16,21 @@ beforeAll(async () => {
 });
 afterAll(() => rm(folder, { recursive: true, force: true }));
 
+/** The two kinds of item that a history has. */
+function parted(out: Buffer) {
+  const items = decodeMultiple(out) as (SimulatedReading | { stream: string; received: number; lab: LabMessage })[];
+  return {
+    readings: items.filter((item): item is SimulatedReading => "values" in item),
+    results: items.filter((item) => "lab" in item),
+  };
+}
+
 describe("history", () => {
   const from = Date.UTC(2026, 10, 27);
   const to = from + 2 * 86_400_000;
   const periodMs = 60_000;
   let readings: SimulatedReading[];
+  let results: { stream: string; received: number; lab: LabMessage }[];
   let truth: Truth;
 
   beforeAll(async () => {
@@ -28,7 +39,7 @@ describe("history", () => {
     const { code, out, err } = await simulator("history", ...stretch, "--truth", file);
     expect(err).toBe("");
     expect(code).toBe(0);
-    readings = decodeMultiple(out) as SimulatedReading[];
+    ({ readings, results } = parted(out));
     truth = JSON.parse(await readFile(file, "utf8"));
   });
 
@@ -70,7 +81,25 @@ describe("history", () => {
       "--period-ms",
       String(periodMs),
     );
-    expect(decodeMultiple(out)).toEqual(readings.filter(({ time }) => time >= middle));
+    const later = parted(out);
+    expect(later.readings).toEqual(readings.filter(({ time }) => time >= middle));
+    expect(later.results).toEqual(results.filter(({ lab }) => Date.parse(String(lab.time)) >= middle));
+  });
+
+  test("has the laboratory's results between its readings, where they were there, hours after their samples", () => {
+    expect(results.length).toBeGreaterThan(60); // 6 samples a day of three lines, with six properties together
+    for (const { stream, received, lab } of results) {
+      const drawn = Date.parse(String(lab.time));
+      expect(drawn).toBeGreaterThanOrEqual(from);
+      expect((received - drawn) / 3_600_000).toBeGreaterThan(1.9);
+      expect((received - drawn) / 3_600_000).toBeLessThan(3.1);
+      expect(streamPlans[stream as keyof typeof streamPlans].properties.map(({ name }) => name)).toContain(
+        lab.property,
+      );
+    }
+    expect(results.map(({ received }) => received)).toEqual(
+      results.map(({ received }) => received).sort((a, b) => a - b),
+    );
   });
 
   test("gives only the streams that were asked for", async () => {

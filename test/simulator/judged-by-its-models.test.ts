@@ -17,6 +17,7 @@ import {
   type EventKind,
   eventKinds,
   historyEvents,
+  isOfTheLine,
   kindOf,
   type PlantEvent,
   readingAt,
@@ -143,7 +144,7 @@ describe("the models of all streams", () => {
     const looked = new Set<EventKind>();
     for (const event of events) {
       const { kind, stream, start, end } = event;
-      if (kind === "silent" || kind === "frozen" || kind === "bubble") continue;
+      if (kind === "silent" || kind === "frozen" || kind === "bubble" || !isOfTheLine(event)) continue;
       const early = start + (end - start) * (kind === "fouling" || kind === "lamp-ageing" ? 0.55 : 0.45);
       const seen = judged(stream, events, { start: early, end, periodMs: Math.max(30_000, (end - early) / 60) });
       expectVerdicts(kind, seen, `${stream} ${kind} of ${new Date(start).toISOString()}`);
