@@ -8,6 +8,7 @@ import { importModelCommand } from "./commands/import-model.ts";
 import { inspectCommand } from "./commands/inspect.ts";
 import { labCommand } from "./commands/lab.ts";
 import { loadCommand } from "./commands/load.ts";
+import { publisherCommand } from "./commands/publisher.ts";
 import { scoreCommand } from "./commands/score.ts";
 import { serveCommand } from "./commands/serve.ts";
 import { simulateCommand } from "./commands/simulate.ts";
@@ -31,6 +32,7 @@ for (const command of [
   loadCommand(),
   simulateCommand(),
   userCommand(),
+  publisherCommand(),
   backupCommand(),
   verifyRecordCommand(),
 ]) {

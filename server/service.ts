@@ -1,4 +1,5 @@
 import { join } from "node:path";
+import { Door } from "./broker/door.ts";
 import { type EmbeddedBroker, startEmbeddedBroker } from "./broker/embedded-broker.ts";
 import { ConfigError, isLoopback, type PlantConfig } from "./config/plant-config.ts";
 import type { Told } from "./engine/engine.ts";
@@ -6,6 +7,7 @@ import { type EngineError, EngineThread } from "./engine/engine-thread.ts";
 import { type Gateway, startGateway } from "./gateway/gateway.ts";
 import { logOf } from "./log.ts";
 import { PeopleStore } from "./people/people-store.ts";
+import { PublisherStore } from "./people/publisher-store.ts";
 import { lockDataFolder } from "./service-lock.ts";
 import { sqliteReader } from "./store/sqlite/reader.ts";
 import type { StoreReader } from "./store/store.ts";
@@ -52,16 +54,25 @@ async function assemble(
   let broker: EmbeddedBroker | undefined;
   let engine: EngineThread | undefined;
   let brokerUrl: string;
+  let door: Door | undefined;
   if ("embedded" in brokerConfig) {
+    const { host } = brokerConfig.embedded;
+    const publishers = new PublisherStore(join(config.data, "people.db"));
+    closing.push(() => publishers.close());
+    door = new Door(publishers);
+    checkPublishers(host, door);
     const isReading = (topic: string) => topic.startsWith(`${prefix}/`) && /\/(reading|state|lab)$/.test(topic);
     broker = await startEmbeddedBroker({
       ...brokerConfig.embedded,
       inboxFile,
       isReading,
+      root: `${prefix}/${config.site}/`,
+      door,
       onReading: () => engine?.inboxFilled(),
+      log: logOf("broker"),
     });
     closing.push(() => broker?.close());
-    brokerUrl = `mqtt://${brokerConfig.embedded.host}:${broker.port}`;
+    brokerUrl = broker.ownUrl;
   } else {
     brokerUrl = brokerConfig.url;
   }
@@ -70,7 +81,7 @@ async function assemble(
   const early: Told[] = [];
   const started = await new Promise<EngineThread>((resolve, reject) => {
     const thread = new EngineThread(
-      { config, recordFile, brokerUrl, ...(broker ? { inboxFile } : {}) },
+      { config, recordFile, brokerUrl, ...(broker ? { inboxFile } : {}), ...(door ? { brokerSecret: door.own } : {}) },
       {
         ready(told) {
           early.push(told);
@@ -100,6 +111,7 @@ async function assemble(
     people,
     version,
     files: { record: recordFile, inbox: inboxFile },
+    broker: broker?.state,
   });
   for (const told of early) gateway.live.told(told);
   const opened = gateway;
@@ -123,4 +135,15 @@ function checkPeople({ http, demo }: PlantConfig, people: PeopleStore): void {
     expected: demo ? "an address of this machine only" : "at least one person",
     todo: demo ? "Listen on 127.0.0.1." : "Add one: millrace user add NAME --role administrator --config plant.json",
   });
+}
+
+/** Asks for credentials, or is reached from this machine only and says so. @throws ConfigError */
+function checkPublishers(host: string, door: Door): void {
+  if (door.asks) return;
+  const todo = "Add one: millrace publisher add NAME --streams ID --config plant.json";
+  if (!isLoopback(host)) {
+    const got = `"${host}", which other machines reach, with no publisher who could sign in`;
+    throw new ConfigError("mqtt.broker.embedded.host", { got, expected: "at least one publisher", todo });
+  }
+  logOf("broker")(`asks for no credentials: every program on this machine may publish readings. ${todo}`);
 }

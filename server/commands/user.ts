@@ -1,11 +1,10 @@
 import { mkdirSync } from "node:fs";
 import { join } from "node:path";
-import { createInterface } from "node:readline";
-import { Writable } from "node:stream";
 import { Command, InvalidArgumentError, Option } from "commander";
 import { readPlantConfig } from "../config/plant-config.ts";
-import { PeopleError, PeopleStore } from "../people/people-store.ts";
+import { PeopleStore } from "../people/people-store.ts";
 import { type Role, roles } from "../people/person.ts";
+import { askPassword } from "./ask-password.ts";
 
 interface Options {
   config: string;
@@ -77,22 +76,6 @@ function print(store: PeopleStore, { json }: Options): void {
   for (const { name, role, active } of people) console.log(`${name}: ${role}${active ? "" : ", has left"}`);
   for (const { label, role, expires } of tokens) console.log(`token ${label}: ${role}, until ${expires}`);
   if (people.length + tokens.length === 0) console.log("nobody yet");
-}
-
-/** Typed at a terminal it is not shown; from a pipe it is the first line. */
-async function askPassword(): Promise<string> {
-  const terminal = process.stdin.isTTY;
-  if (terminal) process.stderr.write("password: ");
-  // What is typed is echoed to nowhere.
-  const nowhere = new Writable({ write: (_chunk, _encoding, done) => done() });
-  const lines = createInterface({ input: process.stdin, output: nowhere, terminal });
-  try {
-    for await (const line of lines) return line;
-  } finally {
-    lines.close();
-    if (terminal) process.stderr.write("\n");
-  }
-  throw new PeopleError("no password came on standard input, expected one line.");
 }
 
 function daysNumber(text: string): number {

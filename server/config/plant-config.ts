@@ -64,7 +64,12 @@ export type ExternalBroker = Static<typeof ExternalBrokerSchema>;
 
 const BrokerSchema = Type.Union([
   Type.Object({
-    embedded: Type.Object({ host: Type.String(), port: Type.Integer({ minimum: 0, maximum: 65535 }) }),
+    embedded: Type.Object({
+      host: Type.String(),
+      port: Type.Integer({ minimum: 0, maximum: 65535 }),
+      /** PEM files, seen from the configuration's folder */
+      tls: Type.Optional(Type.Object({ certificate: Type.String(), key: Type.String() })),
+    }),
   }),
   ExternalBrokerSchema,
 ]);
@@ -162,7 +167,7 @@ export function parsePlantConfig(text: string, file: string): PlantConfig {
   checkStreams(config.streams, file);
   checkHttp(config.http, `${file}: http`);
   if ("embedded" in config.mqtt.broker) {
-    checkBrokerHost(config.mqtt.broker.embedded.host, `${file}: mqtt.broker.embedded.host`);
+    checkBrokerHost(config.mqtt.broker.embedded, `${file}: mqtt.broker.embedded`);
   }
   const from = (path: string) => resolve(dirname(file), path);
   return {
@@ -184,7 +189,12 @@ export function parsePlantConfig(text: string, file: string): PlantConfig {
 }
 
 function brokerFrom(broker: BrokerConfig, from: (path: string) => string): BrokerConfig {
-  if ("embedded" in broker || !broker.tls) return broker;
+  if ("embedded" in broker) {
+    const { tls } = broker.embedded;
+    const files = tls && { certificate: from(tls.certificate), key: from(tls.key) };
+    return { embedded: { ...broker.embedded, ...(files && { tls: files }) } };
+  }
+  if (!broker.tls) return broker;
   const tls = Object.fromEntries(Object.entries(broker.tls).map(([what, path]) => [what, from(path)]));
   return { ...broker, tls };
 }
@@ -247,12 +257,12 @@ function checkHttp({ host, tls, tlsByProxy, names }: HttpConfig, where: string):
   }
 }
 
-/** The embedded broker asks nobody who they are, so nothing but this machine may reach it. */
-function checkBrokerHost(host: string, where: string): void {
-  if (isLoopback(host)) return;
-  throw new ConfigError(where, {
-    got: `"${host}"`,
-    expected: "an address of this machine only (127.0.0.1, ::1 or localhost)",
-    todo: "The embedded broker asks for no credentials: use a broker of your own for analyzers on the network.",
+/** Secrets cross the network in MQTT's CONNECT as they are, so there the broker speaks TLS. (That it knows publishers is seen to at the start.) */
+function checkBrokerHost({ host, tls }: { host: string; tls?: object }, where: string): void {
+  if (isLoopback(host) || tls) return;
+  throw new ConfigError(`${where}.host`, {
+    got: `"${host}", which other machines reach, without TLS`,
+    expected: `an address of this machine only (127.0.0.1, ::1 or localhost), or ${where}.tls (certificate and key)`,
+    todo: "Give one of them, or use a broker of your own for analyzers on the network.",
   });
 }

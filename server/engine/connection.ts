@@ -4,6 +4,7 @@ import type { Duplex } from "node:stream";
 import { connect as connectTls } from "node:tls";
 import type { IClientOptions } from "mqtt";
 import { ConfigError, type ExternalBroker, type PlantConfig } from "../config/plant-config.ts";
+import type { EngineSettings } from "./protocol.ts";
 
 /** How the engine reaches its broker and introduces itself there. */
 export interface Connection {
@@ -27,7 +28,11 @@ const longestWaitMs = 30_000;
  *
  * @throws ConfigError when a file or the password that the configuration names is not there
  */
-export function connectionOf(config: PlantConfig, url: string, role: "readings" | "results"): Connection {
+export function connectionOf(
+  config: PlantConfig,
+  { brokerUrl: url, brokerSecret }: Pick<EngineSettings, "brokerUrl" | "brokerSecret">,
+  role: "readings" | "results",
+): Connection {
   const { broker } = config.mqtt;
   const external: ExternalBroker = "embedded" in broker ? { url } : broker;
   const { clientId = `millrace-${config.site}`, version = "3.1.1", username, passwordFrom, tls = {} } = external;
@@ -57,6 +62,7 @@ export function connectionOf(config: PlantConfig, url: string, role: "readings" 
       reconnectOnConnackError: true,
       ...(username === undefined ? {} : { username }),
       ...(passwordFrom === undefined ? {} : { password: passwordIn(passwordFrom) }),
+      ...brokerSecret,
       ...secrets,
       ...(version === "3.1.1"
         ? { protocolVersion: 4 as const }

@@ -236,7 +236,7 @@ export class Engine {
     }
     this.#takeOver(turn, batch);
     for (const { stream, resolve } of waiters) resolve(this.#loads.get(stream)?.counts ?? noCounts);
-    if (messages.length === mostMessages || this.#inputs.length > 0) this.wake();
+    if (messages.length > 0 || this.#inputs.length > 0) this.wake();
   }
 
   #commit(changes: Changes): boolean {

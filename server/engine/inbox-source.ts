@@ -2,6 +2,9 @@ import { existsSync } from "node:fs";
 import { type InboxRow, openInboxForReading } from "../broker/inbox-store.ts";
 import type { MessageBatch, Source } from "./source.ts";
 
+/** Of messages taken into memory at a time: thousands of spectra, but only four of the largest that are let in. */
+const mostBytes = 16 * 1024 * 1024;
+
 /** Takes messages from the embedded broker's inbox on disk, in their order; what the last run left there comes first. */
 export class InboxSource implements Source {
   readonly #db;
@@ -23,7 +26,13 @@ export class InboxSource implements Source {
   }
 
   take(most: number): MessageBatch | undefined {
-    const rows = this.#rows.all(this.#done, most);
+    const rows: InboxRow[] = [];
+    let bytes = 0;
+    for (const row of this.#rows.iterate(this.#done, most)) {
+      rows.push(row);
+      bytes += row.payload.length;
+      if (bytes >= mostBytes) break;
+    }
     if (rows.length === 0) return undefined;
     const last = rows[rows.length - 1].n;
     return {

@@ -3,7 +3,10 @@ import { resultOf } from "../../core/messages/index.ts";
 import type { Log } from "../log.ts";
 import { type Connection, firstWaitMs, nextWaitMs } from "./connection.ts";
 import type { Told } from "./engine.ts";
+import { Outbox } from "./outbox.ts";
 import type { Topics } from "./topics.ts";
+
+const mostUnsentBytes = 8 * 1024 * 1024;
 
 /** Publishes what the engine has put on record: results, alarms, and the retained status, with a last will that says the engine is gone. */
 export class Outside {
@@ -11,6 +14,8 @@ export class Outside {
   readonly #topics: Topics;
   /** what each stream's retained status said last */
   readonly #said = new Map<string, string>();
+
+  readonly #alarms: Outbox;
 
   constructor({ url, dial, options }: Connection, topics: Topics, log: Log) {
     this.#topics = topics;
@@ -22,10 +27,14 @@ export class Outside {
       queueQoSZero: false,
       will: { topic: topics.engineStatus, payload: Buffer.from(gone), qos: 1, retain: true },
     });
+    this.#alarms = new Outbox(this.#client, (count) =>
+      log(`${count} alarm messages were not published: the broker was away too long; they are on record`, "warn"),
+    );
     this.#client.on("connect", () => {
       this.#client.options.reconnectPeriod = firstWaitMs;
       this.#said.clear();
       this.#retain(topics.engineStatus, { running: true, since: new Date().toISOString() });
+      this.#alarms.send();
     });
     this.#client.on("reconnect", () => {
       this.#client.options.reconnectPeriod = nextWaitMs(this.#client.options.reconnectPeriod ?? firstWaitMs);
@@ -34,14 +43,17 @@ export class Outside {
   }
 
   publish({ judged, now, events }: Told): void {
-    for (const reading of judged) {
-      this.#client.publish(this.#topics.result(reading.stream), JSON.stringify(resultOf(reading)), { qos: 0 });
+    if (this.#takesResults()) {
+      for (const reading of judged) {
+        this.#client.publish(this.#topics.result(reading.stream), JSON.stringify(resultOf(reading)), { qos: 0 });
+      }
     }
     for (const event of events) {
-      if (event.stream === null || !event.alarm) continue;
-      const { at, kind, says, by, alarm, cursor } = event;
-      const message = { time: new Date(at).toISOString(), cursor, kind, says, ...(by ? { by } : {}), alarm };
-      this.#client.publish(this.#topics.alarm(event.stream), JSON.stringify(message), { qos: 1 });
+      // What recorded history brought in calls nobody.
+      if (event.stream === null || event.history || !event.kind.startsWith("alarm ")) continue;
+      const { at, kind, says, by, key, alarm, setAside, cursor } = event;
+      const message = { time: new Date(at).toISOString(), cursor, kind, says, by, key, alarm, setAside };
+      this.#alarms.add(this.#topics.alarm(event.stream), JSON.stringify(message));
     }
     // A status is of the moment, too: while nobody can hear it, it is not queued, and the next change after the break says it anew.
     if (!this.#client.connected) return;
@@ -53,6 +65,11 @@ export class Outside {
       this.#said.set(stream, text);
       this.#retain(this.#topics.status(stream), { ...status, time: latest && new Date(latest.time).toISOString() });
     }
+  }
+
+  /** A broker that is connected and reads nothing must not fill the memory: results are QoS 0, and leave out what nobody takes. */
+  #takesResults(): boolean {
+    return this.#client.connected && this.#client.stream.writableLength < mostUnsentBytes;
   }
 
   async close(): Promise<void> {

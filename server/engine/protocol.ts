@@ -32,4 +32,6 @@ export interface EngineSettings {
   inboxFile?: string;
   /** where results are published, and readings come from when there is no inbox */
   brokerUrl: string;
+  /** how the engine signs in at the service's own broker */
+  brokerSecret?: { username: string; password: string };
 }

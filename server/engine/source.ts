@@ -15,7 +15,7 @@ export interface MessageBatch {
 
 /** Where readings come from: the embedded broker's inbox, or a subscription at an external broker. */
 export interface Source {
-  /** At most `most` messages that are there now, in their order; taken again from the start when they are not acknowledged. */
+  /** At most `most` messages that are there now (fewer, where they are large), in their order; taken again from the start when they are not acknowledged. */
   take(most: number): MessageBatch | undefined;
   /** How many wait, and when the oldest of them came. */
   waiting(): { count: number; oldest: number | undefined };

@@ -20,12 +20,12 @@ const say = (message: FromEngine) => port.postMessage(message);
 const log: Log = (says, level) => say({ kind: "log", says, level });
 
 function run(): void {
-  const { config, recordFile, inboxFile, brokerUrl } = settings;
+  const { config, recordFile, inboxFile } = settings;
   const topics = topicsOf(config.mqtt.prefix, config.site);
   const meter = new Meter(sqliteWriter(recordFile));
   const { store } = meter;
   const streams = new Map(config.streams.map((stream) => [stream.id, readyStream(stream, store, Date.now())]));
-  const outside = new Outside(connectionOf(config, brokerUrl, "results"), topics, log);
+  const outside = new Outside(connectionOf(config, settings, "results"), topics, log);
   let ready = false;
   const engine = new Engine({
     store,
@@ -43,7 +43,7 @@ function run(): void {
   const source = inboxFile
     ? new InboxSource(inboxFile, (n) => say({ kind: "drained", n }))
     : new MqttSource({
-        connection: connectionOf(config, brokerUrl, "readings"),
+        connection: connectionOf(config, settings, "readings"),
         topics: [topics.readings, topics.states, topics.labs],
         wake: () => engine.wake(),
         log,

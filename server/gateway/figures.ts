@@ -1,6 +1,7 @@
 import { statSync } from "node:fs";
 import { Counter, collectDefaultMetrics, Gauge, Histogram, Registry } from "prom-client";
 import { priorities } from "../../core/messages/index.ts";
+import type { BrokerState } from "../broker/embedded-broker.ts";
 import type { Account, Count } from "../engine/meter.ts";
 import type { LiveHub } from "./live-hub.ts";
 
@@ -13,8 +14,8 @@ export class Figures {
   readonly #commits;
   readonly #failedCommits;
 
-  /** `files`: those whose size is shown, by what they are */
-  constructor(live: LiveHub, files: Record<string, string>) {
+  /** `files`: those whose size is shown, by what they are; `broker`: the embedded one */
+  constructor(live: LiveHub, files: Record<string, string>, broker?: () => BrokerState) {
     const registers = [this.#registry];
     const counter = (name: string, help: string, ...labelNames: string[]) =>
       new Counter({ name: `millrace_${name}`, help, labelNames, registers });
@@ -64,6 +65,22 @@ export class Figures {
       for (const [file, path] of Object.entries(files)) {
         set(statSync(path, { throwIfNoEntry: false })?.size ?? 0, { file });
       }
+    });
+    if (!broker) return;
+    gauge("broker_connections", "Open connections at the embedded broker", [], (set) => set(broker().connections));
+    gauge("inbox_bytes", "Readings kept by the embedded broker, not yet on record", [], (set) =>
+      set(broker().inboxBytes),
+    );
+    gauge("held_readings", "Readings in memory whose publisher waits for its PUBACK", [], (set) => set(broker().held));
+    new Counter({
+      name: "millrace_broker_turned_away_total",
+      help: "What the embedded broker did not let in, by reason",
+      labelNames: ["reason"],
+      registers,
+      collect() {
+        this.reset();
+        for (const [reason, count] of Object.entries(broker().turnedAway)) this.inc({ reason }, count);
+      },
     });
   }
 

@@ -5,6 +5,7 @@ import fastifyStatic from "@fastify/static";
 import fastifySwagger from "@fastify/swagger";
 import Fastify, { type FastifyError, type FastifyInstance, type FastifyReply, type FastifyRequest } from "fastify";
 import { MillraceError, mismatchSentence } from "../../core/errors.ts";
+import type { BrokerState } from "../broker/embedded-broker.ts";
 import type { PlantConfig } from "../config/plant-config.ts";
 import type { EngineThread } from "../engine/engine-thread.ts";
 import type { PeopleStore } from "../people/people-store.ts";
@@ -69,6 +70,8 @@ export async function startGateway(options: {
   version: string;
   /** whose sizes are among the figures */
   files: Record<string, string>;
+  /** how the embedded broker does */
+  broker?: () => BrokerState;
 }): Promise<Gateway> {
   const { config, store, engine, people, version } = options;
   const app = makeServer(config.http);
@@ -122,7 +125,7 @@ export async function startGateway(options: {
     reply.header("Referrer-Policy", "no-referrer");
   });
   app.setErrorHandler((error: FastifyError, _request, reply) => answerError(error, reply));
-  const figures = new Figures(live, options.files);
+  const figures = new Figures(live, options.files, options.broker);
   healthRoutes(app, { live, figures });
   await app.register(
     async (api) => {

@@ -15,6 +15,7 @@ import { spectrumBytes } from "./spectrum-bytes.ts";
 /** Refusals kept with their payload's beginning; older ones live on in the totals. */
 const mostRefusals = 10_000;
 const payloadKept = 200;
+const topicKept = 400;
 
 /** What people put to an excursion (label, notes) stays, unless the new form has its own. RFC 7396: the first patch takes out what is null. */
 const upsertExcursion = `INSERT INTO excursion VALUES (?, ?, ?, ?, ?) ON CONFLICT (id) DO UPDATE SET last = excluded.last, json = json_patch(
@@ -140,7 +141,7 @@ export function sqliteWriter(file: string): StoreWriter {
     const stream = refusal.stream ?? "";
     const digest = createHash("sha256").update(topic).update("\0").update(payload).digest().subarray(0, 16);
     const kept = Buffer.from(payload.subarray(0, payloadKept));
-    sql.refusal.run(digest, stream, topic, receivedAt, receivedAt, reason, says, kept);
+    sql.refusal.run(digest, stream, topic.slice(0, topicKept), receivedAt, receivedAt, reason, says, kept);
     sql.refusalTotal.run(stream, reason);
   }
 
