@@ -4,6 +4,7 @@ import { MillraceError } from "../core/errors.ts";
 import { backupCommand } from "./commands/backup.ts";
 import { calibrateCommand } from "./commands/calibrate.ts";
 import { demoCommand } from "./commands/demo.ts";
+import { exportCommand } from "./commands/export.ts";
 import { importModelCommand } from "./commands/import-model.ts";
 import { inspectCommand } from "./commands/inspect.ts";
 import { labCommand } from "./commands/lab.ts";
@@ -34,6 +35,7 @@ for (const command of [
   userCommand(),
   publisherCommand(),
   backupCommand(),
+  exportCommand(),
   verifyRecordCommand(),
 ]) {
   program.addCommand(command);

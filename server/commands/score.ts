@@ -15,6 +15,7 @@ import {
   sameAxis,
   type TableHeader,
 } from "../../core/spectrum/index.ts";
+import { csvLine } from "../export/csv-line.ts";
 import { FileError, readModel } from "./files.ts";
 import { choiceOf, confidenceOption, type LimitOptions, qMethods, residualKinds, t2Methods } from "./option-values.ts";
 
@@ -215,7 +216,3 @@ const printers: Record<Options["format"], (compiled: CompiledModel) => Printer> 
     end: () => "",
   }),
 };
-
-function csvLine(cells: readonly (string | number | null)[]): string {
-  return `${cells.map((cell) => (typeof cell === "string" && /[",\r\n]/.test(cell) ? `"${cell.replaceAll('"', '""')}"` : (cell ?? ""))).join(",")}\n`;
-}

@@ -107,6 +107,8 @@ export interface StoredReading {
 export interface StoreReader {
   /** The last reading at or before `at` (before it, with `strictly`). */
   readingBefore(stream: string, at: number, strictly?: "strictly"): StoredReading | undefined;
+  /** At most `most` readings after the one that is named and before `to`, in order of time and sequence: a page of the record. */
+  readingsAfter(stream: string, after: { time: number; sequence: number }, to: number, most: number): StoredReading[];
   /** Time of the first reading after `at`. */
   timeAfter(stream: string, at: number): number | undefined;
   /** The trend of `from` ≤ time < `to` in at most about `points` intervals; each reading whole where there are no more than that. */
@@ -116,6 +118,10 @@ export interface StoreReader {
   stretch(stream: string, from: number, to: number): RecordedStretch;
   /** Newest first; `about`: the first word of their kind; `after`: only those with a larger cursor. */
   events(query: { stream?: string; about?: string; after?: number; before?: number; limit: number }): RecordedEvent[];
+  /** Every event of `from` ≤ at < `to`, in the order of the record, one by one. */
+  everyEvent(from: number, to: number): Iterable<RecordedEvent>;
+  /** The names of what was ever predicted of the stream. */
+  propertiesRecorded(stream: string): string[];
   /** What happened to alarms at `from` ≤ time < `to`, in the order of the record; without what recorded history brought in, unless asked for. */
   alarmEvents(query: { from: number; to: number; history: boolean }): RecordedEvent[];
   /** Newest first, those that touch `from`–`to`. */

@@ -6,6 +6,7 @@ import type { StoreReader } from "../store.ts";
 import { handoverReader } from "./handover.ts";
 import { laboratoryReader } from "./laboratory.ts";
 import { openForReading } from "./open.ts";
+import { pageQueries } from "./pages.ts";
 import { type ReadingRow, readingRows } from "./reading-rows.ts";
 import { accountQuery } from "./stream-account.ts";
 import { stretchQuery } from "./stretch.ts";
@@ -96,6 +97,7 @@ export function sqliteReader(file: string): StoreReader {
   }
 
   return {
+    ...pageQueries(db, { streamKey, readingOf }),
     readingBefore(stream, at, strictly) {
       const query = strictly ? sql.strictlyBefore : sql.before;
       const row = query.get(streamKey(stream), at);

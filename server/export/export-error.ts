@@ -1,0 +1,5 @@
+import { MillraceError } from "../../core/errors.ts";
+
+export class ExportError extends MillraceError {
+  readonly code = "export";
+}
