@@ -5,6 +5,7 @@ import { backupCommand } from "./commands/backup.ts";
 import { calibrateCommand } from "./commands/calibrate.ts";
 import { demoCommand } from "./commands/demo.ts";
 import { exportCommand } from "./commands/export.ts";
+import { handoverCommand } from "./commands/handover.ts";
 import { importModelCommand } from "./commands/import-model.ts";
 import { inspectCommand } from "./commands/inspect.ts";
 import { labCommand } from "./commands/lab.ts";
@@ -31,6 +32,7 @@ for (const command of [
   scoreCommand(),
   labCommand(),
   loadCommand(),
+  handoverCommand(),
   simulateCommand(),
   userCommand(),
   publisherCommand(),

@@ -116,6 +116,23 @@ export class MillraceApp extends LitElement {
         display: grid;
         gap: 8px;
       }
+      /* a view on paper: without what steers the screen */
+      @media print {
+        :host {
+          display: block;
+        }
+        main {
+          display: block;
+          padding: 0;
+        }
+        mill-top-bar,
+        footer,
+        .skip,
+        .notices,
+        .news {
+          display: none;
+        }
+      }
       @media (max-width: 700px) {
         main {
           padding: 0 8px 8px;

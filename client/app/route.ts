@@ -7,6 +7,8 @@ export type Route =
   | { view: "reading"; stream?: string; at?: number }
   | { view: "excursions"; stream?: string }
   | { view: "limits"; stream?: string }
+  /** `at`: any time in the shift; without it the one that runs. `words`: what is looked for in all that people said */
+  | { view: "handover"; at?: number; words?: string }
   | { view: "alarms" }
   | { view: "plant" };
 export type ViewName = Route["view"];
@@ -43,6 +45,8 @@ export function parseRoute(path: string, search: string): Route {
     case "excursions":
     case "limits":
       return { view, stream };
+    case "handover":
+      return { view, at: timeOf(query.get("at")), words: query.get("words") ?? undefined };
     case "alarms":
     case "plant":
       return { view };
@@ -74,6 +78,12 @@ export function href(route: Route): string {
     }
     case "reading":
       return `/reading${stream}${route.at === undefined ? "" : `?at=${iso(route.at)}`}`;
+    case "handover": {
+      const query = new URLSearchParams();
+      if (route.at !== undefined) query.set("at", iso(route.at));
+      if (route.words) query.set("words", route.words);
+      return query.size > 0 ? `/handover?${query}` : "/handover";
+    }
     default:
       return `/${route.view}${stream}`;
   }

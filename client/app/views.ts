@@ -20,6 +20,7 @@ export const views: Record<ViewName, ViewEntry> = {
     load: () => import("../views/excursions-view.ts"),
   },
   alarms: { word: "Alarms", tag: literal`mill-alarms-view`, load: () => import("../views/alarms-view.ts") },
+  handover: { word: "Handover", tag: literal`mill-handover-view`, load: () => import("../views/handover-view.ts") },
   limits: { word: "Limits", tag: literal`mill-limits-view`, load: () => import("../views/limits-view.ts") },
   plant: { word: "Plant", tag: literal`mill-plant-view`, load: () => import("../views/plant-view.ts") },
 };

@@ -1,7 +1,9 @@
 import type { LimitSet } from "../../core/limit-set/index.ts";
 import type {
+  BoundRecord,
   Excursion,
   ExcursionLabel,
+  HandoverShifts,
   KeptSettings,
   LimitChangeOutcome,
   LimitSets,
@@ -12,9 +14,12 @@ import type {
   ReadingView,
   RecordedEvent,
   Refusals,
+  Said,
   Settings,
   Shifts,
+  SigningSide,
   Trend,
+  Write,
 } from "../../core/messages/index.ts";
 
 /** The server said no, or could not be asked. `message` is for people: what happened and what to do. */
@@ -111,6 +116,16 @@ export const api = {
   shifts: (signal?: AbortSignal) => ask<Shifts>("/shifts", { signal }),
   settings: () => ask<KeptSettings>("/me/settings"),
   keepSettings: (settings: Settings) => ask<void>("/me/settings", { ...asJson(settings), method: "PUT" }),
+  handoverShifts: (count: number, signal?: AbortSignal) =>
+    ask<HandoverShifts>(`/handover/shifts${query({ count })}`, { signal }),
+  shiftRecord: (at: number | undefined, signal?: AbortSignal) =>
+    ask<BoundRecord>(`/handover/record${query({ at })}`, { signal }),
+  shiftRecordFile: (at: number, format: "html" | "csv" | "json") => `/api/v1/handover/record/${format}${query({ at })}`,
+  /** `shift`: its beginning */
+  writeToShift: (shift: number, write: Write) => ask<unknown>("/handover/entries", asJson({ shift, write })),
+  signShift: (sign: { shift: number; side: SigningSide; seen: string | null; name: string; password: string }) =>
+    ask<unknown>("/handover/signatures", asJson(sign)),
+  said: (words: string, signal?: AbortSignal) => ask<Said>(`/handover/search${query({ words })}`, { signal }),
   signIn: (name: string, password: string) => ask<Plant["person"]>("/sign-in", asJson({ name, password })),
   /** is somebody signed in, or nobody needed? A link that was refused does not say why. */
   isWelcome: () =>

@@ -1,18 +1,10 @@
 import type { PlantProperty, ReadingView } from "../../core/messages/index.ts";
 import { onlyInside, verdictsOfMask } from "../../core/messages/index.ts";
+import { type CsvCell as Cell, csvOf } from "../../core/words/index.ts";
 import type { PlantTime } from "../words/plant-time.ts";
 import { firstAtOrAfter, type HeldTrend } from "./trend-columns.ts";
 
-type Cell = string | number | null | undefined;
-
-/** A table as CSV (RFC 4180): quoted where it must be, nothing for what is not there. */
-export function csvOf(rows: readonly (readonly Cell[])[]): string {
-  const cell = (value: Cell) => {
-    const text = value === null || value === undefined ? "" : String(value);
-    return /[",\r\n]/.test(text) ? `"${text.replaceAll('"', '""')}"` : text;
-  };
-  return rows.map((row) => `${row.map(cell).join(",")}\r\n`).join("");
-}
+export { csvOf };
 
 /**
  * The entries of a trend within [from, to] as a table. What was not inside says so in its row, and carries no uncertainty there either.

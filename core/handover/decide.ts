@@ -1,12 +1,17 @@
-import { sha256 } from "@noble/hashes/sha2.js";
-import { bytesToHex, utf8ToBytes } from "@noble/hashes/utils.js";
-import type { EntryOf, HandoverEntry, Shift, ShiftRecord, SigningSide, Write } from "../messages/index.ts";
-import { canonicalJson } from "../model/index.ts";
-import { type HandoverStanding, handoverStanding } from "./standing.ts";
+import type { EntryOf, HandoverEntry, Shift, Write } from "../messages/index.ts";
+import { type HandoverStanding, handoverStanding, meanings } from "../shift-page/index.ts";
+import type { Drawn } from "./drawn.ts";
 
 /** A wish to sign. `seen`: the hash of the record that the signer has before them; null where nobody has signed yet. */
 export type Sign =
-  | { kind: "sign"; side: "outgoing"; role: string; seen: string | null; record: ShiftRecord }
+  | {
+      kind: "sign";
+      side: "outgoing";
+      role: string;
+      seen: string | null;
+      record: Drawn /** until when it tells, epoch ms */;
+      to: number;
+    }
   | { kind: "sign"; side: "incoming"; role: string; seen: string | null };
 
 /** What a person asks of a shift's record; `at` is the server's wall clock, epoch ms. */
@@ -28,14 +33,8 @@ export interface HandoverBooks {
 }
 
 export type HandoverAnswer =
-  | { kind: "written"; entry: HandoverEntry; record?: { hash: string; json: string } }
+  | { kind: "written"; entry: HandoverEntry; record?: Drawn }
   | { kind: "rejected"; why: string };
-
-/** What each signature means, as it stands under it on the screen and on paper. */
-export const meanings: Record<SigningSide, string> = {
-  outgoing: "I hand over this shift. The record says what I know to be done, open and out of the ordinary.",
-  incoming: "I have read this record, asked what was unclear, and take over the shift.",
-};
 
 /**
  * Answers a person who writes to a shift's record or signs it. Nothing is ever changed or taken out: what is written after both sides have
@@ -65,14 +64,7 @@ export function decideHandover(ask: HandoverAsk, books: HandoverBooks): Handover
     hash,
   });
   if (ask.side === "incoming") return { kind: "written", entry: signature(standing.hash!) };
-  const json = canonicalJson(ask.record);
-  const hash = recordHash(json);
-  return { kind: "written", entry: signature(hash), record: { hash, json } };
-}
-
-/** What a frozen record is known by: the SHA-256 of its canonical JSON, 64 hexadecimal digits. */
-export function recordHash(json: string): string {
-  return bytesToHex(sha256(utf8ToBytes(json)));
+  return { kind: "written", entry: signature(ask.record.hash), record: ask.record };
 }
 
 function written({ shift: _, at: __, by: ___, ...write }: Write & Omit<HandoverAsk, keyof Write>): Write {
@@ -120,7 +112,9 @@ function againstSigning(
       return `${ask.by} has signed as the outgoing side: the incoming side is another person`;
   }
   if (ask.seen === (hash ?? null)) return undefined;
-  return `${outgoing!.by} has signed another version of this record meanwhile. Read it, then sign`;
+  return outgoing
+    ? `${outgoing.by} has signed another version of this record meanwhile. Read it, then sign`
+    : "nobody has signed this shift, but a signed record was named. Read it again, then sign";
 }
 
 function againstClosing(action: number, { entry, closing }: HandoverBooks): string | undefined {

@@ -1,6 +1,6 @@
 import type { Excursion, Lead, OpenAlarm, SetAsideAlarm, ShiftRecord } from "../messages/index.ts";
+import { excursionWords } from "../shift-page/index.ts";
 import { counted, duration, type PlantTime } from "../words/index.ts";
-import { excursionWords } from "./excursion-words.ts";
 
 type Told = Omit<ShiftRecord, "lead">;
 
@@ -102,7 +102,7 @@ function countsOf(
   const messages = refused.reduce((sum, { count }) => sum + count, 0);
   return [
     alarms.annunciations > 0
-      ? `${counted(alarms.annunciations, "alarm")}, the highest of priority ${alarms.highest}; ${alarms.unacknowledged} never acknowledged, ${alarms.standing} standing.`
+      ? `${counted(alarms.annunciations, "alarm")}, the highest of priority ${alarms.highest}; ${alarms.unacknowledged} never acknowledged, ${alarms.standing} standing${alarms.history > 0 ? `; ${alarms.history} came in with recorded history, which calls nobody` : ""}.`
       : "",
     ...alarms.floods.map(
       ({ start, annunciations, peak }) =>

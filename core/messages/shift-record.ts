@@ -1,6 +1,6 @@
 import { type Static, Type } from "typebox";
-import { ExcursionSchema, OpenAlarmSchema, PrioritySchema, SetAsideAlarmSchema } from "./alarm.ts";
-import { HandoverEntrySchema } from "./handover-entry.ts";
+import { ExcursionSchema, OpenAlarmSchema, PrioritySchema, RecordedEventSchema, SetAsideAlarmSchema } from "./alarm.ts";
+import { HandoverEntrySchema, SigningSideSchema, WriteSchema } from "./handover-entry.ts";
 import { ProcessStateSchema } from "./process-state.ts";
 import { ShiftSchema } from "./shift.ts";
 import { VerdictSchema, verdicts } from "./verdict.ts";
@@ -200,3 +200,48 @@ export const ShiftRecordSchema = Type.Object({
   checks: Type.Array(CheckLine),
 });
 export type ShiftRecord = Static<typeof ShiftRecordSchema>;
+
+/** GET /api/v1/handover/record?at — the record of the shift in which `at` lies, as it was signed, or as it is now. */
+export const BoundRecordSchema = Type.Object({
+  record: ShiftRecordSchema,
+  /** SHA-256 of the record that the outgoing side signed; null: nobody has, and the record is as it is now */
+  hash: orNull(Type.String()),
+  /** what is kept under that hash no longer fits it: it was changed past all doors */
+  altered: Type.Optional(Type.Literal(true)),
+  /** all that people wrote to this shift, in the order of their numbers */
+  entries: Type.Array(HandoverEntrySchema),
+});
+export type BoundRecord = Static<typeof BoundRecordSchema>;
+
+/** GET /api/v1/handover/shifts — newest first, each with how far it was handed over. */
+export const HandoverShiftsSchema = Type.Object({
+  shifts: Type.Array(
+    Type.Object({
+      shift: ShiftSchema,
+      is: Type.Enum(["open", "offered", "taken over"] as const),
+      outgoing: Type.Optional(Type.String()),
+      incoming: Type.Optional(Type.String()),
+    }),
+  ),
+  /** who may sign in an invented plant, with the passwords, which are no secret there */
+  invented: Type.Array(Type.Object({ name: Type.String(), password: Type.String() })),
+});
+export type HandoverShifts = Static<typeof HandoverShiftsSchema>;
+
+/** GET /api/v1/handover/search?words — what people said, newest first; `count`: how many there are in all. */
+export const SaidSchema = Type.Object({ events: Type.Array(RecordedEventSchema), count: Type.Integer() });
+export type Said = Static<typeof SaidSchema>;
+
+/** POST /api/v1/handover/entries — `shift`: any time in it, epoch ms. */
+export const WriteToShiftSchema = Type.Object({ shift: Type.Integer(), write: WriteSchema });
+/** POST /api/v1/handover/signatures — name and password again, whoever is signed in: both stand at the same screen. */
+export const SignShiftSchema = Type.Object({
+  shift: Type.Integer(),
+  side: SigningSideSchema,
+  /** hash of the record that the signer has before them; null where nobody has signed */
+  // null first: a checker that brings types together would else make "" of it
+  seen: Type.Union([Type.Null(), Type.String()]),
+  name: Type.String({ minLength: 1, maxLength: 200 }),
+  password: Type.String({ minLength: 1, maxLength: 1000 }),
+});
+export const WrittenSchema = Type.Object({ done: Type.Literal(true), entry: Type.Integer() });

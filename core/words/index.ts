@@ -1,3 +1,4 @@
+export { type CsvCell, csvOf } from "./csv.ts";
 export { duration, period } from "./duration.ts";
 export { type PlantTime, plantTime } from "./plant-time.ts";
 export {

@@ -8,7 +8,9 @@ import { caution } from "../gateway/plant-view.ts";
 import { loadHistory } from "../load/load-history.ts";
 import { readingsOfCborSequence } from "../load/readings.ts";
 import { logOf } from "../log.ts";
+import { inventedPeople } from "../people/invented.ts";
 import { type Service, startService } from "../service.ts";
+import { writeDemoHandover } from "./demo-handover.ts";
 import { makeDemoModels } from "./demo-models.ts";
 import { endOf, spawnSimulator } from "./simulator-process.ts";
 import { untilStopped } from "./until-stopped.ts";
@@ -106,6 +108,7 @@ Brindle Quay, an invented plant, is running (after ${seconds} s).
 
 Watch shows three streams live. About 75 s after the start something unforeseen appears in the recycled blend (bq-305):
 see its number lose its trust, the alarm come up, and acknowledge it. Click a trend to see why a reading was judged so.
+Handover signs a shift over: ${inventedPeople.map(({ name, password }) => `${name} with the password ${password}`).join(", ")}.
 Readings arrive by MQTT at ${service.brokerUrl}. Settings, models and the record are in ${options.data}. Ctrl-C stops.
 
 ${caution}
@@ -140,6 +143,7 @@ async function startHistory(service: Service, config: PlantConfig, folder: strin
     },
   });
   await ended;
+  await writeDemoHandover(service, config);
   writeFileSync(marker, JSON.stringify({ ...plan, done: true }));
   const seconds = ((performance.now() - began) / 1000).toFixed(0);
   console.log(`history: ${days} days are on record after ${seconds} s`);

@@ -1,6 +1,7 @@
-import { decideHandover, entryWords, type HandoverAsk } from "../../core/handover/index.ts";
+import { decideHandover, type HandoverAsk } from "../../core/handover/index.ts";
 import type { Note } from "../../core/judging/index.ts";
 import type { HandoverEntry, RecordedEvent } from "../../core/messages/index.ts";
+import { entryWords } from "../../core/shift-page/index.ts";
 import type { FrozenRecord, HandoverBook } from "../store/handover-store.ts";
 
 type Untimed<Ask> = Ask extends HandoverAsk ? Omit<Ask, "at"> : never;
@@ -58,7 +59,7 @@ export function answerHandover(
     number: entry.number,
     note,
     ...(record && ask.kind === "sign" && ask.side === "outgoing"
-      ? { frozen: { ...record, shift: shift.from, to: ask.record.to } }
+      ? { frozen: { ...record, shift: shift.from, to: ask.to } }
       : {}),
   };
 }

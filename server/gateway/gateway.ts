@@ -14,10 +14,12 @@ import type { StoreReader } from "../store/store.ts";
 import { Figures } from "./figures.ts";
 import { isOurs } from "./guard.ts";
 import { LiveHub } from "./live-hub.ts";
+import { PasswordDoor } from "./password-door.ts";
 import { RequestError } from "./problem.ts";
 import { ReadingExplainer } from "./reading-view.ts";
 import { alarmRoutes } from "./routes/alarms.ts";
 import { excursionRoutes } from "./routes/excursions.ts";
+import { handoverRoutes } from "./routes/handover.ts";
 import { healthRoutes } from "./routes/health.ts";
 import { laboratoryRoutes } from "./routes/laboratory.ts";
 import { limitSetRoutes } from "./routes/limit-sets.ts";
@@ -38,6 +40,7 @@ export interface GatewayParts {
   live: LiveHub;
   people: PeopleStore;
   who: Who;
+  passwords: PasswordDoor;
   /** who asks. @throws RequestError 401 when somebody must sign in first */
   personOf: (request: FastifyRequest) => Person;
   /** who asks, when their role lets them; every route that changes something calls it. @throws RequestError 403 */
@@ -91,6 +94,7 @@ export async function startGateway(options: {
   };
   const parts: GatewayParts = {
     ...{ config, store, explainer, engine, live, people, who, version },
+    passwords: new PasswordDoor(engine),
     personOf,
     allowed(request, needed) {
       const person = personOf(request);
@@ -144,6 +148,7 @@ export async function startGateway(options: {
       laboratoryRoutes(api, parts);
       limitSetRoutes(api, parts);
       shiftRoutes(api, parts);
+      handoverRoutes(api, parts);
       api.get("/openapi.json", { schema: { hide: true } }, () => app.swagger());
       api.setNotFoundHandler((request) => {
         throw new RequestError(

@@ -1,16 +1,16 @@
 import {
   calendarDays,
   checksFor,
-  type HandoverStanding,
-  handoverStanding,
   type RequiredCheck,
+  recordHash,
   type ShiftCalendar,
   type ShiftFacts,
   shiftCalendar,
   shiftRecord,
   type WantedProperty,
 } from "../../core/handover/index.ts";
-import type { HandoverEntry, Shift, ShiftRecord } from "../../core/messages/index.ts";
+import type { BoundRecord, Shift, ShiftRecord } from "../../core/messages/index.ts";
+import { handoverStanding } from "../../core/shift-page/index.ts";
 import { decimalsFor } from "../../core/words/index.ts";
 import type { PlantConfig, StreamConfig } from "../config/plant-config.ts";
 import { gapMsOf } from "../engine/streams.ts";
@@ -19,16 +19,6 @@ import type { ReadingExplainer } from "../gateway/reading-view.ts";
 import type { StoreReader } from "../store/store.ts";
 import { alarmsKnownBefore } from "./alarms-known-before.ts";
 import { smallTrend } from "./small-trend.ts";
-
-/** A shift's record with where its handover stands. */
-export interface BoundRecord {
-  record: ShiftRecord;
-  /** SHA-256 of the record that the outgoing side signed; null: nobody has, and the record is as it is now */
-  hash: string | null;
-  standing: HandoverStanding;
-  /** all that people wrote to this shift, in the order of their numbers */
-  entries: HandoverEntry[];
-}
 
 /** The shifts of a plant and their records, out of the plant's record alone: it works beside a running service, or without one. */
 export class ShiftBook {
@@ -52,10 +42,12 @@ export class ShiftBook {
   /** As it was signed, where it was; else as it is at `now`, wall clock. */
   bound(shift: Shift, now: number): BoundRecord {
     const entries = this.#store.handover.entries(shift.from);
-    const standing = handoverStanding(entries);
-    const frozen = standing.hash === undefined ? undefined : this.#store.handover.frozen(standing.hash);
-    const record = frozen ? (JSON.parse(frozen.json) as ShiftRecord) : this.draw(shift, now);
-    return { record, hash: frozen?.hash ?? null, standing, entries };
+    const { hash } = handoverStanding(entries);
+    if (hash === undefined) return { record: this.draw(shift, now), hash: null, entries };
+    const frozen = this.#store.handover.frozen(hash);
+    if (!frozen) throw new Error(`the record of a shift was signed as ${hash}, but is not kept`);
+    const record = JSON.parse(frozen.json) as ShiftRecord;
+    return { record, hash, ...(recordHash(frozen.json) === hash ? {} : { altered: true as const }), entries };
   }
 
   /** Draws a shift's record up anew, as it is at `now`. */
@@ -80,7 +72,7 @@ export class ShiftBook {
       refused: store.refusedBetween(from, to),
       laboratory: [],
       entries: store.handover.entries(shift.from),
-      actions: this.#actions(from, to),
+      actions: this.#actions(shift.from, from, to),
       checks: this.checks(shift),
     };
   }
@@ -118,9 +110,9 @@ export class ShiftBook {
   }
 
   /** As they stood at `to`: one that was closed later was open then. */
-  #actions(from: number, to: number): ShiftFacts["actions"] {
+  #actions(shift: number, from: number, to: number): ShiftFacts["actions"] {
     return this.#store.handover
-      .actions(from, to)
+      .actions({ shift, from, to })
       .map(({ action, closed }) => ({ action, closed: closed && closed.at < to ? closed : undefined }));
   }
 }

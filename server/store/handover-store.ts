@@ -21,8 +21,12 @@ export interface HandoverBook {
 }
 
 export interface HandoverReader extends HandoverBook {
-  /** Actions written before `to` that were not closed before `from`. */
-  actions(from: number, to: number): { action: EntryOf<"action">; closed: EntryOf<"action closed"> | undefined }[];
+  /** Actions of a shift, whenever they were written, and of others, written before `to`, that were not closed before `from`. */
+  actions(of: {
+    shift: number;
+    from: number;
+    to: number;
+  }): { action: EntryOf<"action">; closed: EntryOf<"action closed"> | undefined }[];
   frozen(hash: string): FrozenRecord | undefined;
   /** Until when the last signed record of a shift tells; undefined where nobody has signed. */
   frozenTo(shift: number): number | undefined;

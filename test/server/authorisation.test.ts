@@ -30,6 +30,14 @@ const table = (): Record<string, Row> => ({
   "POST /streams/{id}/alarms/{key}/return-to-service": { least: "engineer", body: {} },
   "POST /streams/{id}/excursions/{kind}/{start}/label": { least: "operator", body: { label: "process change" } },
   "POST /streams/{id}/excursions/{kind}/{start}/notes": { least: "operator", body: { note: "seen" } },
+  "POST /handover/entries": {
+    least: "operator",
+    body: { shift: Date.now(), write: { kind: "note", about: { kind: "shift" }, says: "seen" } },
+  },
+  "POST /handover/signatures": {
+    least: "operator",
+    body: { shift: Date.now(), side: "outgoing", seen: null, name: "N. Obody", password: "not the password" },
+  },
   "POST /streams/{id}/load": { least: "operator", body: "\n", type: "application/x-ndjson" },
   "POST /streams/{id}/lab": { least: "operator", body: { time: 1, property: "water", value: 1, unit: "wt%" } },
   "POST /streams/{id}/lab/table": { least: "engineer", body: "time,property\n", type: "text/csv" },

@@ -1,7 +1,7 @@
 import Database from "better-sqlite3";
 import { afterEach, beforeEach, describe, expect, test } from "vitest";
-import { entryWords } from "../../core/handover/index.ts";
 import type { HandoverEntry, RecordedEvent } from "../../core/messages/index.ts";
+import { entryWords } from "../../core/shift-page/index.ts";
 import type { StoreReader, StoreWriter } from "../../server/store/store.ts";
 import { changes, event, makers } from "./store-record.ts";
 
@@ -54,7 +54,7 @@ describe.each(makers)("what people wrote, in the record kept by $name", (maker) 
 
   test("an action is carried over until it is closed, and from then on no more", () => {
     write(note, action, closed);
-    const during = (from: number) => reader.handover.actions(from, from + 12 * hour);
+    const during = (from: number) => reader.handover.actions({ shift: from, from, to: from + 12 * hour });
     expect(during(shift)).toEqual([{ action, closed }]);
     expect(during(shift + 12 * hour)).toEqual([{ action, closed }]);
     expect(during(shift + 24 * hour)).toEqual([]);

@@ -8,8 +8,10 @@ import type { GatewayParts } from "../gateway.ts";
 const earliest = Date.UTC(1970, 0, 2);
 const latest = Date.UTC(2200, 0, 1);
 
+export const AroundSchema = Type.Integer({ minimum: earliest, maximum: latest });
+
 const Query = Type.Object({
-  around: Type.Optional(Type.Integer({ minimum: earliest, maximum: latest })),
+  around: Type.Optional(AroundSchema),
   before: Type.Integer({ minimum: 0, maximum: 100, default: 1 }),
   after: Type.Integer({ minimum: 0, maximum: 100, default: 1 }),
 });
@@ -32,7 +34,8 @@ export function shiftRoutes(app: FastifyInstance, { config }: GatewayParts): voi
   );
 }
 
-function following(shift: Shift, count: number, next: (shift: Shift) => Shift): Shift[] {
+/** The next so many, one after the other. */
+export function following(shift: Shift, count: number, next: (shift: Shift) => Shift): Shift[] {
   const found: Shift[] = [];
   for (let last = shift; found.length < count; found.push(last)) last = next(last);
   return found;

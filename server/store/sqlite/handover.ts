@@ -67,10 +67,10 @@ export function handoverBook(db: Database.Database): HandoverBook {
 
 export function handoverReader(db: Database.Database): HandoverReader {
   const sql = {
-    actions: db.prepare<{ from: number; to: number }, { action: string; closed: string | null }>(
+    actions: db.prepare<{ shift: number; from: number; to: number }, { action: string; closed: string | null }>(
       `SELECT action.json AS action, closed.json AS closed FROM handover_entry AS action
        LEFT JOIN handover_entry AS closed ON closed.refers = action.number AND closed.kind = 'action closed'
-       WHERE action.kind = 'action' AND action.at < @to AND (closed.at IS NULL OR closed.at >= @from) ORDER BY action.number`,
+       WHERE action.kind = 'action' AND (action.shift = @shift OR action.at < @to) AND (closed.at IS NULL OR closed.at >= @from) ORDER BY action.number`,
     ),
     frozen: db.prepare<[string], FrozenRecord>(
       'SELECT hash, shift, until AS "to", json FROM shift_record WHERE hash = ? LIMIT 1',
@@ -92,8 +92,8 @@ export function handoverReader(db: Database.Database): HandoverReader {
   };
   return {
     ...handoverBook(db),
-    actions: (from, to) =>
-      sql.actions.all({ from, to }).map(({ action, closed }) => ({
+    actions: (of) =>
+      sql.actions.all(of).map(({ action, closed }) => ({
         action: parsed<EntryOf<"action">>(action),
         closed: optional<EntryOf<"action closed">>(closed),
       })),

@@ -1,13 +1,9 @@
 import { createHash } from "node:crypto";
 import { describe, expect, test } from "vitest";
-import {
-  decideHandover,
-  type HandoverAnswer,
-  type HandoverAsk,
-  handoverStanding,
-} from "../../../core/handover/index.ts";
+import { decideHandover, drawn, type HandoverAnswer, type HandoverAsk } from "../../../core/handover/index.ts";
 import type { HandoverEntry, Write } from "../../../core/messages/index.ts";
 import { canonicalJson } from "../../../core/model/index.ts";
+import { handoverStanding } from "../../../core/shift-page/index.ts";
 import { hour, minute, record, shift } from "./some-record.ts";
 
 /** A book that keeps what is written, as the store does. */
@@ -26,14 +22,22 @@ class Book {
     return answer;
   }
 }
-type SignWish = { kind: "sign"; side: "outgoing" | "incoming"; role: string; seen: string | null; record?: object };
+type SignWish = {
+  kind: "sign";
+  side: "outgoing" | "incoming";
+  role: string;
+  seen: string | null;
+  record?: object;
+  to?: number;
+};
 
 const end = shift.to;
 const note: Write = { kind: "note", about: { kind: "shift" }, says: "Probe window cleaned." };
 const outgoing = (seen: string | null = null, version = record()): SignWish => ({
   ...{ kind: "sign", side: "outgoing", role: "operator" },
   seen,
-  record: version,
+  record: drawn(version),
+  to: version.to,
 });
 const incoming = (seen: string | null): SignWish => ({ kind: "sign", side: "incoming", role: "operator", seen });
 const why = (answer: HandoverAnswer) => (answer.kind === "rejected" ? answer.why : "written");
@@ -78,6 +82,10 @@ describe("signing", () => {
     book.ask("A. Moss", end + minute, outgoing(old, record({ madeAt: end + minute })));
     expect(why(book.ask("B. Reed", end + 2 * minute, incoming(old)))).toMatch(/another version of this record/);
     expect(why(book.ask("B. Reed", end + 3 * minute, incoming(hashOf(book))))).toBe("written");
+  });
+
+  test("a signed record that was never there is not overwritten", () => {
+    expect(why(new Book().ask("A. Moss", end, outgoing("0".repeat(64))))).toMatch(/nobody has signed this shift/);
   });
 
   test("nobody hands over to themselves, and nothing is taken over that was not offered", () => {
