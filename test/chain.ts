@@ -33,18 +33,20 @@ export interface ChainOptions {
   simulate?: "demo" | "calm" | "none";
   historyDays?: number;
   folder?: string;
+  /** of the service's process, besides our own */
+  environment?: Record<string, string>;
 }
 
 /** Starts the real chain on free ports in a folder of its own. The models are made once a run and copied. */
 export async function startChain(options: ChainOptions = {}): Promise<Chain> {
   const folder = options.folder ?? mkdtempSync(join(tmpdir(), "millrace-test-"));
   if (!options.folder) await copyModels(folder);
-  const { simulate = "none", historyDays = 0 } = options;
+  const { simulate = "none", historyDays = 0, environment = {} } = options;
   const args = ["demo", "--data", folder, "--port", "0", "--mqtt-port", "0"];
   const child = spawn(
     process.execPath,
     [program, ...args, "--scenario", simulate, "--history-days", String(historyDays)],
-    { stdio: ["ignore", "pipe", "pipe"] },
+    { stdio: ["ignore", "pipe", "pipe"], env: { ...process.env, ...environment } },
   );
   let printed = "";
   for (const stream of [child.stdout, child.stderr]) stream.on("data", (chunk) => (printed += String(chunk)));

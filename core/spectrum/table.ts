@@ -159,10 +159,8 @@ function numberOf(text: string): number | undefined {
 export function splitLine(text: string, line: number, file: string): string[] {
   if (!text.includes('"')) return text.split(",");
   const fields: string[] = [];
-  const field = /(?:^|,)(?:"((?:[^"]|"")*)"|([^",]*))(?=,|$)/y;
-  let at = 0;
-  while (at < text.length || fields.length === 0) {
-    field.lastIndex = at;
+  const field = /(?:"((?:[^"]|"")*)"|([^",]*))(,|$)/y;
+  for (let more = true; more; ) {
     const found = field.exec(text);
     if (!found) {
       throw new TableError(`${file}, line ${line}, field ${fields.length + 1}`, {
@@ -172,7 +170,7 @@ export function splitLine(text: string, line: number, file: string): string[] {
       });
     }
     fields.push(found[1] === undefined ? found[2] : found[1].replaceAll('""', '"'));
-    at = field.lastIndex;
+    more = found[3] === ",";
   }
   return fields;
 }

@@ -61,6 +61,7 @@ export class Engine {
   readonly #replies = new Map<number, (outcome: CommandOutcome) => void>();
   #nextCommand = 1;
   #scheduled = false;
+  #retrying = false;
   #stopped = false;
   #trouble: string | undefined;
   #listeningSince = Date.now();
@@ -108,7 +109,8 @@ export class Engine {
 
   /** There may be something to do. */
   wake(): void {
-    if (this.#scheduled || this.#stopped) return;
+    // What comes in meanwhile must not have a commit that failed tried again at once, and again.
+    if (this.#scheduled || this.#retrying || this.#stopped) return;
     this.#scheduled = true;
     setImmediate(() => {
       this.#scheduled = false;
@@ -231,7 +233,11 @@ export class Engine {
       // Nothing was taken over, so the same inputs go through again; ticks are made anew by the clock.
       this.#inputs = [...inputs.filter(({ kind }) => kind !== "message" && kind !== "tick"), ...this.#inputs];
       this.#loadWaiters = [...waiters, ...this.#loadWaiters];
-      setTimeout(() => this.wake(), retryAfterMs);
+      this.#retrying = true;
+      setTimeout(() => {
+        this.#retrying = false;
+        this.wake();
+      }, retryAfterMs);
       return;
     }
     this.#takeOver(turn, batch);

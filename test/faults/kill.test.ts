@@ -2,6 +2,7 @@ import { connectAsync } from "mqtt";
 import { expect, test } from "vitest";
 import { makePlant, type PlantStreamId, spectrumAt, streamIds } from "../../simulator/plant/index.ts";
 import { type Chain, eventually, prefix, startChain } from "../chain.ts";
+import { recordedTimes } from "./load.ts";
 
 const plant = makePlant(1);
 const kills = process.env.MILLRACE_FULL === "1" ? 25 : 5;
@@ -48,19 +49,6 @@ async function publishUntilBroken(chain: Chain, start: number, enough: (acknowle
   return { acknowledged, sent: time - start, next: time };
 }
 
-async function recordedTimes(chain: Chain, stream: string, from: number, to: number): Promise<Set<number>> {
-  const times = new Set<number>();
-  // In portions: a trend gives each reading by itself only while there are no more of them than points.
-  for (let at = from; at < to; at += 4000) {
-    const trend = await chain.get<{ whole: boolean; time: number[] }>(
-      `/streams/${stream}/trend?from=${at}&to=${Math.min(to, at + 4000)}&points=5000`,
-    );
-    expect(trend.whole).toBe(true);
-    for (const time of trend.time) times.add(time);
-  }
-  return times;
-}
-
 test(`a service killed ${kills} times under load has every reading whose publisher had its PUBACK`, async () => {
   let chain = await startChain();
   const begin = Date.now() - 3_600_000;
@@ -88,7 +76,7 @@ test(`a service killed ${kills} times under load has every reading whose publish
   expect(acknowledged.length).toBeGreaterThan(kills * 40);
   // What was sent and not acknowledged may be there or not; nothing else may.
   let recorded = 0;
-  for (const stream of streamIds) recorded += (await recordedTimes(chain, stream, begin, start)).size;
+  for (const stream of streamIds) recorded += (await recordedTimes(chain.url, stream, begin, start)).size;
   expect(recorded).toBeGreaterThanOrEqual(acknowledged.length);
   expect(recorded).toBeLessThanOrEqual(sent);
   console.log(`${kills} kills: ${sent} sent, ${acknowledged.length} acknowledged, ${recorded} on record`);
@@ -98,7 +86,7 @@ test(`a service killed ${kills} times under load has every reading whose publish
 
 async function missingOf(chain: Chain, acknowledged: { stream: string; time: number }[], from: number, to: number) {
   const recorded = new Map<string, Set<number>>();
-  for (const stream of streamIds) recorded.set(stream, await recordedTimes(chain, stream, from, to));
+  for (const stream of streamIds) recorded.set(stream, await recordedTimes(chain.url, stream, from, to));
   return acknowledged.filter(({ stream, time }) => !recorded.get(stream)!.has(time));
 }
 

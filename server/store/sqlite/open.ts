@@ -35,6 +35,9 @@ const steps: readonly ((db: Database.Database) => void)[] = [
   (db) => db.exec(laboratorySchema),
 ];
 
+/** How long a commit waits for another program that holds the record: the engine's thread stands still meanwhile, and must go on reporting. */
+const busyMs = 1000;
+
 /** A record up to this size is looked through as a whole at every start: less than a second. A larger one is by every backup. */
 const lookedThroughUpTo = 256 * 1024 * 1024;
 
@@ -77,6 +80,7 @@ export function openForWriting(file: string): Database.Database {
   const database = open(file, { timeout: 5000 });
   try {
     prepare(database, file);
+    database.pragma(`busy_timeout = ${busyMs}`);
   } catch (cause) {
     database.close();
     throw isDamage(cause) ? damaged(file, cause) : cause;

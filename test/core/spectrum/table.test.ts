@@ -1,5 +1,5 @@
 import { describe, expect, test } from "vitest";
-import { parseTable, TableError } from "../../../core/spectrum/index.ts";
+import { parseTable, splitLine, TableError } from "../../../core/spectrum/index.ts";
 
 const read = (text: string) => parseTable(text, "t.csv", "nm");
 
@@ -47,4 +47,9 @@ describe("a table of spectra", () => {
     expect(() => read(text)).toThrow(TableError);
     expect(() => read(text)).toThrow(says);
   });
+});
+
+test("a line that begins with an empty field, before one in quotes, is read field by field", () => {
+  expect(splitLine(',"x ""y""",,1', 1, "t.csv")).toEqual(["", 'x "y"', "", "1"]);
+  expect(splitLine('"a",', 1, "t.csv")).toEqual(["a", ""]);
 });
