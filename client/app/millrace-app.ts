@@ -116,7 +116,7 @@ export class MillraceApp extends LitElement {
         display: grid;
         gap: 8px;
       }
-      /* a view on paper: without what steers the screen */
+      /* On paper whose plant, when, the caution and whatever is wrong with the link stay with the numbers. */
       @media print {
         :host {
           display: block;
@@ -125,11 +125,15 @@ export class MillraceApp extends LitElement {
           display: block;
           padding: 0;
         }
-        mill-top-bar,
         footer,
-        .skip,
-        .notices,
-        .news {
+        .notices {
+          position: static;
+        }
+        .skip {
+          display: none;
+        }
+        /* the record of a shift is a document with a head of its own */
+        :host([view="handover"]) :is(mill-top-bar, footer, .notices, .news) {
           display: none;
         }
       }
@@ -237,17 +241,18 @@ export class MillraceApp extends LitElement {
       refused: feed.refused,
     });
     const waiting = feed.alarms().filter((alarm) => isWaiting(alarm) && alarm.priority !== "record only");
+    this.setAttribute("view", this.route.view);
     document.title = `${waiting.length ? `(${waiting.length}) ` : ""}${nameOf(this.route)} · ${plant.name}`;
     return html`
       <nav aria-label="Skip"><a class="skip" href="#main" @click=${this.#skip}>Skip to the view</a></nav>
       <mill-top-bar .plant=${plant} .route=${this.route} .alarms=${feed.alarms()} .now=${now} .time=${time} .linkUp=${feed.linkUp}></mill-top-bar>
       <div class="unseen" role="alert">${this.#spoken(told, feed)}</div>
-      <div class="notices">
+      <section class="notices" aria-label="Trouble of the service">
         ${told.filter(({ weight }) => weight === "trouble").map(({ says }) => html`<p class="trouble">${says}</p>`)}
-      </div>
-      <div>
+      </section>
+      <section aria-label="News of the service">
         ${told.filter(({ weight }) => weight === "news").map(({ says }) => html`<p class="news">${says}</p>`)}
-      </div>
+      </section>
       <main id="main" tabindex="-1">${this.#view(plant, feed, time)}</main>
       <footer>
         <span><b>Caution:</b> ${plant.caution}</span>

@@ -21,6 +21,11 @@ export function showTheme(): void {
 }
 
 systemIsDark.addEventListener("change", showTheme);
+// Charts take their colours from the theme when they are drawn: on paper everything is ink on white.
+addEventListener("beforeprint", () => {
+  document.documentElement.dataset["theme"] = "light";
+});
+addEventListener("afterprint", showTheme);
 ownSettings.watch(() => {
   last.set(ownSettings.value.theme);
   showTheme();

@@ -130,6 +130,8 @@ export class LaneChart extends LitElement {
       picture.old,
       picture.property.name,
       picture.marks.length,
+      picture.lab.length,
+      picture.lab[0]?.at,
     ].join(" ");
     this.#stale = this.#stale || always || key !== this.#drawn;
     if (!this.#stale || !this.#visible) return;

@@ -5,6 +5,7 @@ import { gapsOf, type Run, trendRuns } from "../data/trend-runs.ts";
 import { decimalsOfStep, fixed } from "../words/quantity.ts";
 import { hatch, scaledFont } from "./canvas-text.ts";
 import type { Colours } from "./colours.ts";
+import { drawLabPoints } from "./lab-marks.ts";
 import { type LaneLayout, wordyStrip } from "./lane-layout.ts";
 import { ratioPlace } from "./ratio-scale.ts";
 import { spreadLabels, valueStep } from "./value-ticks.ts";
@@ -25,6 +26,15 @@ export interface LanePicture {
   old: boolean;
   /** stretches during which something stayed beyond its limit, for the marks on top */
   marks: readonly { kind: string; from: number; to: number }[];
+  /** the laboratory's results for the property */
+  lab: readonly LabPoint[];
+}
+
+/** One result of the laboratory: when its sample was drawn, and whether its pair counts or was kept apart. */
+export interface LabPoint {
+  at: number;
+  value: number;
+  counts: boolean;
 }
 
 /** The canvas and the two mappings, in canvas pixels. */
@@ -113,6 +123,7 @@ export function drawLane(pen: Pen, picture: LanePicture): void {
     for (const run of runs) drawRun(pen, picture, trend, run);
     if (picture.foot) drawRibbon(pen, picture, trend, first, last);
     drawMarks(pen, picture);
+    drawLabPoints(pen, picture.lab, (value) => pen.y(clamped(value, picture.property.scale)));
     ctx.restore();
   }
   if (picture.foot) drawRibbonScale(pen);

@@ -5,6 +5,7 @@ import type {
   ExcursionLabel,
   HandoverShifts,
   KeptSettings,
+  LabResults,
   LimitChangeOutcome,
   LimitSets,
   OpenAlarm,
@@ -114,6 +115,8 @@ export const api = {
   withdrawLimits: (id: string, proposal: number, reason: string) =>
     ask<LimitChangeOutcome>(`${stream(id)}/limit-proposals/${proposal}/withdraw`, asJson({ reason })),
   shifts: (signal?: AbortSignal) => ask<Shifts>("/shifts", { signal }),
+  lab: (id: string, from: number, to: number, signal?: AbortSignal) =>
+    ask<LabResults>(`${stream(id)}/lab${query({ from, to })}`, { signal }),
   settings: () => ask<KeptSettings>("/me/settings"),
   keepSettings: (settings: Settings) => ask<void>("/me/settings", { ...asJson(settings), method: "PUT" }),
   handoverShifts: (count: number, signal?: AbortSignal) =>

@@ -68,8 +68,16 @@ export class AlarmCard extends LitElement {
       }
       .commands {
         display: flex;
-        gap: 8px;
-        margin-top: 6px;
+        flex-wrap: wrap;
+        align-items: center;
+        gap: 6px 12px;
+        margin-top: 4px;
+      }
+      .commands details {
+        margin: 0;
+      }
+      .commands details[open] {
+        flex-basis: 100%;
       }
       details {
         color: var(--ink);
@@ -97,16 +105,17 @@ export class AlarmCard extends LitElement {
         <small style="color:var(${priorityColour[alarm.priority]})">${alarm.priority}</small>
       </h3>
       <p class="quiet">${this.#standing()}</p>
-      ${
-        this.brief
-          ? html`<details>
-              <summary>What it was, what to do</summary>
-              ${this.#evidence()}
-            </details>`
-          : this.#evidence()
-      }
+      ${this.brief ? nothing : this.#evidence()}
       ${this.full ? this.#purpose() : nothing}
       <div class="commands">
+        ${
+          this.brief
+            ? html`<details>
+                <summary>What to do</summary>
+                ${this.#evidence()}
+              </details>`
+            : nothing
+        }
         ${waits ? this.#button("acknowledge", "Acknowledge") : nothing}
         ${alarm.state === "latched acknowledged" ? this.#button("reset", "Reset") : nothing}
       </div>

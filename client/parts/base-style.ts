@@ -145,6 +145,15 @@ export const baseStyle = css`
     cursor: pointer;
     min-height: 24px;
   }
+  /* On paper nothing can be pressed; what is said stays. */
+  @media print {
+    button,
+    .button,
+    form,
+    label:has(select) {
+      display: none;
+    }
+  }
   .card {
     background: var(--lane);
     border: 1px solid var(--rule);

@@ -157,6 +157,16 @@ export class ReadingView extends LitElement {
         }
         .facts {
           order: -1;
+          grid-template-columns: minmax(0, 1fr);
+        }
+      }
+      @media (max-width: 400px) {
+        .facts section {
+          padding: 8px;
+        }
+        .facts table td,
+        .facts table th {
+          padding-right: 4px;
         }
         .panels h2 {
           padding-left: 12px;

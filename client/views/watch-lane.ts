@@ -3,21 +3,21 @@ import { repeat } from "lit/directives/repeat.js";
 import type { Excursion, PlantProperty, PlantStream } from "../../core/messages/index.ts";
 import type { LanePicture } from "../charts/lane-drawing.ts";
 import { byUrgency, isGone } from "../data/alarm-order.ts";
-import { trendCsv } from "../data/csv.ts";
 import type { Feed } from "../data/feed.ts";
 import { freshness } from "../data/freshness.ts";
+import { LabLoader } from "../data/lab-loader.ts";
 import { Listening } from "../data/listening.ts";
-import { fileName, saveFile } from "../data/save-file.ts";
 import { edges, isLive, type TimeWindow } from "../data/time-window.ts";
 import { entryAt, type HeldTrend } from "../data/trend-columns.ts";
 import { TrendLoader } from "../data/trend-loader.ts";
-import { type TrendSight, trendRow, trendRows, trendSentence } from "../data/trend-words.ts";
+import { type TrendSight, trendRow, trendSentence } from "../data/trend-words.ts";
 import { baseStyle } from "../parts/base-style.ts";
 import "../charts/lane-chart.ts";
 import "../parts/alarm-card.ts";
 import "../parts/lane-number.ts";
+import "../parts/trend-table.ts";
 import type { PlantTime } from "../words/plant-time.ts";
-import { counted, named } from "../words/quantity.ts";
+import { counted, named, withUnit } from "../words/quantity.ts";
 
 /** Lanes that come into sight when the page is scrolled by this much are kept ready. */
 const nearPx = 300;
@@ -55,6 +55,7 @@ export class WatchLane extends LitElement {
     () => this.feed,
     () => this.stream,
   );
+  readonly #lab = new LabLoader(this);
   /** by property */
   readonly #sentences = new Map<string, { made: number; text: string }>();
   #near = true;
@@ -147,14 +148,6 @@ export class WatchLane extends LitElement {
         grid-column: 1;
         z-index: 1;
       }
-      .table button {
-        float: right;
-      }
-      .table {
-        max-height: 260px;
-        overflow: auto;
-        padding: 0 12px 8px 52px;
-      }
       @media (max-width: 1100px) {
         :host {
           grid-template-columns: 220px minmax(0, 1fr);
@@ -176,13 +169,10 @@ export class WatchLane extends LitElement {
         .chart {
           height: calc(150px + var(--trends) * 130px);
         }
-        .chart:has(.table) {
+        .chart:has(mill-trend-table) {
           height: auto;
         }
         .caption {
-          padding-left: 12px;
-        }
-        .table {
           padding-left: 12px;
         }
       }
@@ -261,6 +251,7 @@ export class WatchLane extends LitElement {
   #charts(drawn: readonly PlantProperty[], old: boolean) {
     const { from, to } = edges(this.window, this.now);
     const width = this.clientWidth > 1100 ? this.clientWidth - 640 : Math.max(240, this.clientWidth - 360);
+    if (this.#near) this.#lab.want(this.stream.id, { from, to }, this.feed);
     if (this.#near) this.#trend.want({ from, to, points: Math.round(Math.min(1200, width)) });
     const { trend, error, loading } = this.#trend;
     const empty = trend && !trend.time.some((at) => at >= from && at <= to);
@@ -269,7 +260,15 @@ export class WatchLane extends LitElement {
       ${error ? html`<p class="wait" role="status">The trend could not be read. ${error.message}</p>` : nothing}
       ${!trend && loading && !error ? html`<p class="wait">Reading the trend …</p>` : nothing}
       ${empty && !error ? html`<p class="wait">No readings in this stretch.</p>` : nothing}
-      ${this.tabled && trend ? this.#table(drawn, from, to) : nothing}
+      ${
+        this.tabled && trend
+          ? html`<mill-trend-table
+              .stream=${this.stream}
+              .sights=${drawn.map((property) => this.#sight(trend, property, from, to))}
+              .lab=${drawn.flatMap(({ name }) => this.#lab.of(name, { from, to }))}
+            ></mill-trend-table>`
+          : nothing
+      }
     </div>`;
   }
 
@@ -287,6 +286,11 @@ export class WatchLane extends LitElement {
       foot,
       old,
       marks: first ? this.#marks() : [],
+      lab: this.#lab.of(property.name, { from, to }).map(({ time, value, pair }) => ({
+        at: time,
+        value,
+        counts: pair.apart === null,
+      })),
     };
     return html`<div class="caption">
         <span class="at">${this.#caption(property, first)}</span>
@@ -330,8 +334,19 @@ export class WatchLane extends LitElement {
     const at = this.time.exact(this.cursor, this.now);
     if (index === undefined) return withTrust ? html`<b>${at}</b> no reading` : title;
     const row = trendRow(trend, property, index);
-    if (!withTrust) return html`${named(property.name)} ${row.value}`;
-    return html`<b>${this.time.exact(row.at, this.now)}</b> ${row.value} · ${row.verdict} · T² ${row.t2} · Q ${row.q} × limit`;
+    const lab = this.#labAt(property, this.cursor);
+    if (!withTrust) return html`${named(property.name)} ${row.value}${lab}`;
+    return html`<b>${this.time.exact(row.at, this.now)}</b> ${row.value}${lab} · ${row.verdict} · T² ${row.t2} · Q ${row.q} × limit`;
+  }
+
+  /** The laboratory's result under the cursor, in words; none within reach says nothing. */
+  #labAt(property: PlantProperty, at: number): string {
+    const { from, to } = edges(this.window, this.now);
+    const reach = (to - from) / 150;
+    const near = this.#lab.of(property.name, { from: at - reach, to: at + reach });
+    return near
+      .map(({ value, unit, pair }) => ` · lab ${withUnit(String(value), unit)}${pair.apart ? ` (${pair.apart})` : ""}`)
+      .join("");
   }
 
   /** Made anew every few seconds only: it is read, not watched. */
@@ -348,43 +363,6 @@ export class WatchLane extends LitElement {
   #sight(trend: HeldTrend, property: PlantProperty, from: number, to: number): TrendSight {
     const { now, time, window, stream } = this;
     return { trend, property, from, to, now, time, gapMs: stream.gapMs, live: isLive(window) };
-  }
-
-  #table(drawn: readonly PlantProperty[], from: number, to: number) {
-    const { now, time, stream } = this;
-    const { trend } = this.#trend;
-    if (!trend) return nothing;
-    const sights = drawn.map((property) => this.#sight(trend, property, from, to));
-    const columns = sights.map((sight) => trendRows(sight));
-    const save = () => saveFile(fileName(stream.id, from), trendCsv(trend, stream.properties, sights[0]));
-    return html`<div class="table" tabindex="0" role="region" aria-label="Table of ${stream.name}">
-      <button @click=${save}>Save all of it as CSV</button>
-      <table>
-        <caption>
-          ${sights.map((sight) => html`<div>${trendSentence(sight)}</div>`)}
-        </caption>
-        <thead>
-          <tr>
-            <th scope="col">Time, ${time.zoneName(now)}</th>
-            ${drawn.map(({ name }) => html`<th scope="col">${named(name)}</th>`)}
-            <th scope="col">Verdict</th>
-            <th scope="col" class="number">T² ratio</th>
-            <th scope="col" class="number">Q ratio</th>
-          </tr>
-        </thead>
-        <tbody>
-          ${columns[0].map(
-            (row, i) => html`<tr>
-              <td>${time.exact(row.at, now)}</td>
-              ${columns.map((rows) => html`<td>${rows[i].value}</td>`)}
-              <td>${row.verdict}</td>
-              <td class="number">${row.t2}</td>
-              <td class="number">${row.q}</td>
-            </tr>`,
-          )}
-        </tbody>
-      </table>
-    </div>`;
   }
 
   #open() {

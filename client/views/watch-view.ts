@@ -19,6 +19,8 @@ import type { PlantTime } from "../words/plant-time.ts";
 
 /** excursions that are marked on the time axis, at most */
 const mostMarks = 500;
+/** lanes that one screen holds under one another */
+const sideBySide = 6;
 
 /** All streams over one stretch of time, with one cursor. It owns the window; the URL follows it. */
 export class WatchView extends LitElement {
@@ -72,6 +74,13 @@ export class WatchView extends LitElement {
         gap: 8px;
         grid-auto-rows: auto;
       }
+      /* Few lanes share one axis of time from top to bottom; many stand side by side where a wall has room for them. */
+      .lanes.many {
+        grid-template-columns: repeat(auto-fill, minmax(min(100%, 1180px), 1fr));
+      }
+      .lanes .group {
+        grid-column: 1 / -1;
+      }
       .one {
         margin-bottom: 8px;
       }
@@ -90,9 +99,9 @@ export class WatchView extends LitElement {
         font-size: 13px;
         color: var(--quiet);
       }
-      @media (max-width: 700px) {
-        .lanes {
-          grid-auto-rows: auto;
+      @media print {
+        .under {
+          display: none;
         }
       }
     `,
@@ -125,7 +134,7 @@ export class WatchView extends LitElement {
       }
       ${streams.length === 0 ? this.#empty() : nothing}
       ${this.arranging ? this.#arranger() : nothing}
-      <div class="lanes" @chart-gesture=${({ detail }: CustomEvent<ChartGesture>) => this.#pointAt(detail)}>
+      <div class="lanes ${streams.length > sideBySide ? "many" : ""}" @chart-gesture=${({ detail }: CustomEvent<ChartGesture>) => this.#pointAt(detail)}>
         ${repeat(
           groupsOf(
             placesOf(
