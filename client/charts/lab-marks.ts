@@ -33,7 +33,10 @@ export function drawLabPoints(pen: Pen, points: readonly LabPoint[], place: (val
     ctx.stroke();
     ctx.setLineDash([]);
     if (points.length > mostWords) continue;
+    const [wide, high] = [ctx.measureText("lab").width + 4 * ratio, 13 * ratio];
+    ctx.fillStyle = colours.lane;
+    ctx.fillRect(x - wide / 2, y - size - high, wide, high);
     ctx.fillStyle = colours.quiet;
-    ctx.fillText("lab", x, y - size - ratio);
+    ctx.fillText("lab", x, y - size);
   }
 }

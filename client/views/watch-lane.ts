@@ -83,6 +83,10 @@ export class WatchLane extends LitElement {
         padding: 8px 14px;
         border-right: 1px solid var(--rule);
       }
+      .whole-lane {
+        grid-column: 1 / -1;
+        border-right: 0;
+      }
       .open {
         padding: 10px 14px;
         border-left: 1px solid var(--rule);
@@ -214,7 +218,10 @@ export class WatchLane extends LitElement {
     const drawn = this.#drawn();
     const [property] = drawn;
     if (!property)
-      return html`<div class="now"><h2>${stream.name}</h2><p>${stream.trouble ?? "No model gives this stream a property yet."}</p></div>`;
+      return html`<div class="now whole-lane">
+        <h2>${stream.name} <small class="quiet">${stream.id}</small></h2>
+        <p>${stream.trouble ?? "No model gives this stream a property yet."}</p>
+      </div>`;
     const fresh = freshness({
       now,
       linkUp: feed.linkUp,

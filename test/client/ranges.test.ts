@@ -85,6 +85,33 @@ describe("one unfamiliar reading in thirty days", () => {
   });
 });
 
+describe("a result of the laboratory", () => {
+  const sampleAt = spikeAt - 40 * everyMs;
+  const lab = { property: "water", value: 0.42, unit: "wt%", method: "Karl Fischer" };
+
+  beforeAll(async () => {
+    const answer = await fetch(`${chain.url}/api/v1/streams/bq-410/lab`, {
+      method: "POST",
+      headers: { "content-type": "application/json" },
+      body: JSON.stringify({ ...lab, time: new Date(sampleAt).toISOString() }),
+    });
+    expect(await answer.json()).toMatchObject({ done: true, accepted: 1 });
+  });
+
+  test("comes into the table of a trend that is on the screen, beside its prediction, by the time of the sample", async () => {
+    const row = dryer().getByRole("row", { name: /Water 0\.42/ });
+    await row.waitFor();
+    expect(await wordsOf(row)).toMatch(/\d\d:\d\d:\d\d\s*Water\s*0\.42\u2009wt%\s*0\.\d+\u2009wt%/);
+  });
+
+  test("stands on the trend at its moment, and in words at the cursor", async () => {
+    const box = (await dryer().locator("mill-lane-chart .u-over").boundingBox())!;
+    const share = 1 - (Date.now() - sampleAt) / (30 * day);
+    await seen.page.mouse.move(box.x + share * box.width, box.y + 40);
+    await dryer().locator(".caption", { hasText: "lab 0.42" }).waitFor();
+  });
+});
+
 describe("a range that is typed", () => {
   const typed = (at: number) => new Date(at).toISOString().slice(0, 16).replace("T", " ");
 
