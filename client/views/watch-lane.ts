@@ -73,7 +73,7 @@ export class WatchLane extends LitElement {
     css`
       :host {
         display: grid;
-        grid-template-columns: 232px minmax(0, 1fr) 292px;
+        grid-template-columns: 256px minmax(0, 1fr) 292px;
         background: var(--lane);
         border: 1px solid var(--rule);
         border-radius: 6px;
@@ -154,7 +154,7 @@ export class WatchLane extends LitElement {
       }
       @media (max-width: 1100px) {
         :host {
-          grid-template-columns: 220px minmax(0, 1fr);
+          grid-template-columns: 248px minmax(0, 1fr);
         }
         .open {
           grid-column: 1 / -1;
