@@ -83,6 +83,11 @@ export const baseStyle = css`
     min-height: 28px;
     padding: 2px 8px;
   }
+  label,
+  select,
+  input {
+    max-width: 100%;
+  }
   /* over a view: its title, what it is about, and what can be chosen */
   .head {
     display: flex;

@@ -1,4 +1,4 @@
-import { html, LitElement, unsafeCSS } from "lit";
+import { css, html, LitElement, unsafeCSS } from "lit";
 import { unsafeHTML } from "lit/directives/unsafe-html.js";
 import type { BoundRecord } from "../../core/messages/index.ts";
 import { recordPage, recordStyle } from "../../core/shift-page/index.ts";
@@ -8,7 +8,18 @@ import { baseStyle } from "./base-style.ts";
 export class ShiftRecordPage extends LitElement {
   static override properties = { bound: { attribute: false } };
   declare bound: BoundRecord;
-  static override styles = [baseStyle, unsafeCSS(recordStyle)];
+  static override styles = [
+    baseStyle,
+    unsafeCSS(recordStyle),
+    // Its tables are as wide as their numbers: on a narrow screen the record is moved sideways, not the page.
+    css`
+      @media screen {
+        :host {
+          overflow-x: auto;
+        }
+      }
+    `,
+  ];
 
   override render() {
     return html`${unsafeHTML(recordPage(this.bound).text)}`;
