@@ -34,9 +34,10 @@ export function drawLabPoints(pen: Pen, points: readonly LabPoint[], place: (val
     ctx.setLineDash([]);
     if (points.length > mostWords) continue;
     const [wide, high] = [ctx.measureText("lab").width + 4 * ratio, 13 * ratio];
+    const middle = Math.min(x, pen.left + pen.width - wide / 2);
     ctx.fillStyle = colours.lane;
-    ctx.fillRect(x - wide / 2, y - size - high, wide, high);
+    ctx.fillRect(middle - wide / 2, y - size - high, wide, high);
     ctx.fillStyle = colours.quiet;
-    ctx.fillText("lab", x, y - size);
+    ctx.fillText("lab", middle, y - size);
   }
 }

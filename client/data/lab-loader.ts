@@ -3,6 +3,7 @@ import type { LabResult } from "../../core/messages/index.ts";
 import { api } from "./api.ts";
 import type { Feed } from "./feed.ts";
 import { Loaded } from "./loaded.ts";
+import { stretchAbout } from "./time-window.ts";
 
 /** The laboratory's results of one stream in and about a window; asked for again when one came in, was corrected or withdrawn. */
 export class LabLoader {
@@ -17,11 +18,10 @@ export class LabLoader {
     });
   }
 
-  /** Says what the screen shows now; asked in steps of a quarter of the window, so that a live window does not ask at every tick. */
-  want(stream: string, { from, to }: { from: number; to: number }, feed: Feed): void {
-    const step = (to - from) / 4;
-    const first = Math.floor(from / step) * step;
-    this.#loaded.want(`${stream} ${Math.floor(first)} ${Math.ceil(first + 6 * step)}`);
+  /** Says what the screen shows now. Cheap: it may be called on every drawing. */
+  want(stream: string, window: { from: number; to: number }, feed: Feed): void {
+    const asked = stretchAbout(window);
+    this.#loaded.want(`${stream} ${asked.from} ${asked.to}`);
     const newest = feed.events.findLast((event) => event.stream === stream && event.kind.startsWith("lab result"));
     if ((newest?.cursor ?? 0) <= this.#known) return;
     this.#known = newest?.cursor ?? 0;

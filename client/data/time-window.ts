@@ -88,3 +88,12 @@ export function spanning(window: TimeWindow, spanMs: number, now: number): TimeW
 export function between(from: number, to: number, now: number): TimeWindow {
   return to >= now ? { kind: "since", from } : { kind: "stopped", from, to };
 }
+
+/**
+ * A stretch that holds the window with some room, in steps: it stays the same while a window moves on or is zoomed a little, so that what is
+ * asked for by it is not asked for anew at every drawing. At most four times as long as the window.
+ */
+export function stretchAbout({ from, to }: { from: number; to: number }): { from: number; to: number } {
+  const step = 2 ** Math.ceil(Math.log2((to - from) / 2));
+  return { from: Math.floor(from / step) * step, to: Math.ceil(to / step) * step };
+}

@@ -9,7 +9,17 @@ import { groupsOf, type LanePlaces, placesOf } from "../data/lane-order.ts";
 import { Listening, ticking } from "../data/listening.ts";
 import { Loaded } from "../data/loaded.ts";
 import { ownSettings } from "../data/own-settings.ts";
-import { between, edges, pan, span, spanning, stopAt, type TimeWindow, zoom } from "../data/time-window.ts";
+import {
+  between,
+  edges,
+  pan,
+  span,
+  spanning,
+  stopAt,
+  stretchAbout,
+  type TimeWindow,
+  zoom,
+} from "../data/time-window.ts";
 import { baseStyle } from "../parts/base-style.ts";
 import type { RangeWish } from "../parts/range-bar.ts";
 import "../parts/lane-arranger.ts";
@@ -202,12 +212,9 @@ export class WatchView extends LitElement {
     scrollTo(0, 0);
   }
 
-  /** Asked for in steps of a quarter of the window, so that a live window does not ask at every tick. */
   #wantExcursions(now: number): void {
-    const { from, to } = edges(this.route.window, now);
-    const step = (to - from) / 4;
-    const first = Math.floor(from / step) * step;
-    this.#excursions.want(`${Math.floor(first)} ${Math.ceil(first + 6 * step)}`);
+    const { from, to } = stretchAbout(edges(this.route.window, now));
+    this.#excursions.want(`${from} ${to}`);
   }
 
   /** One that has ended leaves the stream's open ones: its end is asked for. */

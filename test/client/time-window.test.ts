@@ -7,6 +7,7 @@ import {
   pan,
   shortestMs,
   stopAt,
+  stretchAbout,
   type TimeWindow,
   zoom,
 } from "../../client/data/time-window.ts";
@@ -72,6 +73,19 @@ describe("a window that has begun at a fixed moment", () => {
     expect(between(now - 3 * hour, now + hour, now)).toEqual(since);
     expect(between(now - 3 * hour, now - hour, now)).toEqual({ kind: "stopped", from: now - 3 * hour, to: now - hour });
   });
+});
+
+test("the stretch that is asked for holds the window, is at most four times as long, and seldom changes", () => {
+  const asked = new Set<string>();
+  for (let i = 0; i < 1000; i++) {
+    const window = { from: now - hour * (1 + i / 4000) + i * 500, to: now + i * 500 };
+    const { from, to } = stretchAbout(window);
+    expect(from).toBeLessThanOrEqual(window.from);
+    expect(to).toBeGreaterThanOrEqual(window.to);
+    expect(to - from).toBeLessThanOrEqual(4 * (window.to - window.from));
+    asked.add(`${from} ${to}`);
+  }
+  expect(asked.size).toBeLessThan(6);
 });
 
 test("stopping keeps what is on the screen", () => {
