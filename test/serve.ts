@@ -24,10 +24,12 @@ export async function serve(config: string, environment: Record<string, string> 
       resolve(ended);
     }),
   );
-  const url = await eventually("the service's address", () => {
+  const address = () => {
     if (code !== undefined) throw new Error(`the service ended with ${code}:\n${printed}`);
     return /: (http:\/\/127\.0\.0\.1:\d+)/.exec(printed)?.[1];
-  });
+  };
+  // A large record is looked through at the start, and the machine may have other work.
+  const url = await eventually("the service's address", address, 60_000);
   return {
     url,
     printed: () => printed,

@@ -93,6 +93,8 @@ export const api = {
     ask<unknown>(`${alarmPath(alarm)}/shelve`, asJson(wish)),
   labelExcursion: ({ stream: id, kind, start }: Pick<Excursion, "stream" | "kind" | "start">, label: ExcursionLabel) =>
     ask<unknown>(`${stream(id)}/excursions/${encodeURIComponent(kind)}/${start}/label`, asJson({ label })),
+  noteExcursion: ({ stream: id, kind, start }: Pick<Excursion, "stream" | "kind" | "start">, note: string) =>
+    ask<unknown>(`${stream(id)}/excursions/${encodeURIComponent(kind)}/${start}/notes`, asJson({ note })),
   alarmPerformance: (values: { from: number; to: number; history: boolean }, signal?: AbortSignal) =>
     ask<Performance>(
       `/alarms/performance${query({ from: Math.floor(values.from), to: Math.ceil(values.to), history: String(values.history) })}`,

@@ -29,7 +29,7 @@ export class ExcursionsView extends LitElement {
   declare feed: Feed;
   declare time: PlantTime;
   declare route: Extract<Route, { view: "excursions" }>;
-  /** why a label was not taken */
+  /** why a label or a note was not taken */
   declare failed: string | undefined;
   #cursor = -1;
   readonly #loaded = new Loaded(this, (key, signal) =>
@@ -55,6 +55,13 @@ export class ExcursionsView extends LitElement {
       }
       .kind mill-verdict-mark {
         margin-top: -6px;
+      }
+      .note {
+        color: var(--quiet);
+      }
+      .note form {
+        display: flex;
+        gap: 8px;
       }
       td.says {
         min-width: 26ch;
@@ -135,6 +142,37 @@ export class ExcursionsView extends LitElement {
       ${label ? html`<br /><span class="quiet">${label.by}, ${this.time.brief(label.at, now)}</span>` : nothing}`;
   }
 
+  /** What a label cannot say. */
+  #noteForm(excursion: Excursion) {
+    const { kind, start, stream } = excursion;
+    return html`<details class="note">
+      <summary>Add a note</summary>
+      <form @submit=${(event: SubmitEvent) => void this.#addNote(excursion, event)}>
+        <input
+          name="note"
+          required
+          maxlength="2000"
+          aria-label="Note on the excursion of ${stream} at ${this.time.exact(start, this.feed.now())} (${kind})"
+        />
+        <button>Keep</button>
+      </form>
+    </details>`;
+  }
+
+  async #addNote(excursion: Excursion, event: SubmitEvent): Promise<void> {
+    event.preventDefault();
+    const form = event.target as HTMLFormElement;
+    this.failed = undefined;
+    try {
+      await api.noteExcursion(excursion, String(new FormData(form).get("note")));
+      form.reset();
+      form.closest("details")?.removeAttribute("open");
+      this.#loaded.refresh();
+    } catch (error) {
+      this.failed = (error as Error).message;
+    }
+  }
+
   async #setLabel(excursion: Excursion, select: HTMLSelectElement): Promise<void> {
     const label = excursionLabels.find((each) => each === select.value);
     if (!label) return;
@@ -173,6 +211,7 @@ export class ExcursionsView extends LitElement {
       <td class="number" title="at ${time.full(peakTime)}"><span class="whole">${isRatio ? ratio(peak) : Number(peak.toPrecision(3))}${thin}${unit}</span></td>
       <td class="says">
         ${says} ${(excursion.notes ?? []).map((note) => html`<p class="quiet">${note.by}, ${time.brief(note.at, now)}: ${note.says}</p>`)}
+        ${this.#noteForm(excursion)}
       </td>
       <td>${this.#label(excursion, now)}</td>
       <td class="links">

@@ -155,6 +155,10 @@ test("whoever knows says what the excursion was, and it is kept under their name
   await other.page.reload();
   await row.getByText(/R\. Quill/).waitFor();
   expect(await row.getByRole("combobox").inputValue()).toBe("process change");
+  await row.getByText("Add a note").click();
+  await row.getByLabel(/^Note on the excursion/).fill("Tank 4 was switched in at 14:02.");
+  await row.getByRole("button", { name: "Keep" }).click();
+  await row.getByText(/R\. Quill.*: Tank 4 was switched in at 14:02\./).waitFor();
   expect(await accessFaults(other.page)).toEqual([]);
   await other.close();
 });
