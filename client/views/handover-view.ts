@@ -61,6 +61,10 @@ export class HandoverView extends LitElement {
         display: grid;
         gap: 8px;
       }
+      .head label,
+      .head select {
+        max-width: 100%;
+      }
       .head form {
         display: flex;
         gap: 8px;

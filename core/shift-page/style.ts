@@ -3,7 +3,7 @@
  * the page around it: warm asks for action, cool asks for doubt.
  */
 export const recordStyle = `
-.record{display:grid;gap:12px;max-width:1100px;line-height:1.4}
+.record{display:grid;grid-template-columns:minmax(0,1fr);gap:12px;max-width:1100px;line-height:1.4}
 .record h1{font-size:20px;line-height:1.25;margin:0}
 .record h2{font-size:16px;margin:4px 0 2px;padding:8px 0 0;border-top:1px solid var(--rule)}
 .record p,.record ul{margin:0;padding:0;max-width:none}

@@ -64,6 +64,8 @@ export class Engine {
   #retrying = false;
   #stopped = false;
   #trouble: string | undefined;
+  /** was the broker reached at the last look? undefined: nobody has looked */
+  #reached: boolean | undefined;
   #listeningSince = Date.now();
   readonly #ticking: NodeJS.Timeout;
 
@@ -201,7 +203,21 @@ export class Engine {
     this.#store.close();
   }
 
+  /** A broker of the site's own that is lost, or reached again: on record, since what happens meanwhile comes late. */
+  #watchSource(): void {
+    const reached = this.#source?.connected() ?? false;
+    if (reached === this.#reached) return;
+    const first = this.#reached === undefined;
+    this.#reached = reached;
+    if (first && reached) return;
+    const [event, says] = reached
+      ? ["broker reached", "The broker is reached again."]
+      : ["broker lost", "The broker is not reached: no readings can arrive."];
+    void this.command({ kind: "record", event, says });
+  }
+
   #tick(): void {
+    this.#watchSource();
     this.#inputs.push({ kind: "tick", now: Date.now(), listeningSince: this.#listeningSince });
     this.wake();
   }

@@ -11,13 +11,14 @@ import {
 } from "../../core/handover/index.ts";
 import type { BoundRecord, Shift, ShiftRecord } from "../../core/messages/index.ts";
 import { handoverStanding } from "../../core/shift-page/index.ts";
-import { decimalsFor } from "../../core/words/index.ts";
+import { decimalsFor, type PlantTime, plantTime } from "../../core/words/index.ts";
 import type { PlantConfig, StreamConfig } from "../config/plant-config.ts";
 import { gapMsOf } from "../engine/streams.ts";
 import { caution } from "../gateway/plant-view.ts";
 import type { ReadingExplainer } from "../gateway/reading-view.ts";
 import type { StoreReader } from "../store/store.ts";
 import { alarmsKnownBefore } from "./alarms-known-before.ts";
+import { laboratoryOf } from "./laboratory.ts";
 import { smallTrend } from "./small-trend.ts";
 
 /** The shifts of a plant and their records, out of the plant's record alone: it works beside a running service, or without one. */
@@ -26,11 +27,13 @@ export class ShiftBook {
   readonly #config: PlantConfig;
   readonly #store: StoreReader;
   readonly #explainer: ReadingExplainer;
+  readonly #time: PlantTime;
 
   constructor(config: PlantConfig, store: StoreReader, explainer: ReadingExplainer) {
     this.#config = config;
     this.#store = store;
     this.#explainer = explainer;
+    this.#time = plantTime(config.timeZone);
     this.calendar = shiftCalendar(config.shifts ?? calendarDays, config.timeZone);
   }
 
@@ -70,7 +73,7 @@ export class ShiftBook {
       alarmEvents: [...alarmsKnownBefore(store, from), ...store.alarmEvents({ from, to, history: true })],
       excursions: store.excursions({ from, to, limit: 100_000 }),
       refused: store.refusedBetween(from, to),
-      laboratory: [],
+      laboratory: streams.flatMap(({ id }) => laboratoryOf(store, this.#explainer, id, { from, to, time: this.#time })),
       entries: store.handover.entries(shift.from),
       actions: this.#actions(shift.from, from, to),
       checks: this.checks(shift),

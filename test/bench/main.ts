@@ -1,5 +1,6 @@
 import { cpus } from "node:os";
 import type { BenchResult } from "./bench-result.ts";
+import { benchHandover } from "./handover.ts";
 import { benchRehearse } from "./rehearse.ts";
 import { benchScore } from "./score.ts";
 import { benchScreens } from "./screens.ts";
@@ -9,6 +10,7 @@ import { benchYear } from "./year.ts";
 const benches: Record<string, () => BenchResult[] | Promise<BenchResult[]>> = {
   score: benchScore,
   year: benchYear,
+  handover: benchHandover,
   rehearse: benchRehearse,
   screens: benchScreens,
 };

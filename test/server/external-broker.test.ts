@@ -107,6 +107,15 @@ test("with an external broker: QoS 1, persistent session, nothing lost while the
   await publish(20);
   await eventually("40 on record", async () => (await recorded(service.url)) === 40);
 
+  const brokerEvents = async () => {
+    const answer = await fetch(`${service.url}/api/v1/events?about=broker`);
+    return ((await answer.json()) as { events: { kind: string }[] }).events.map(({ kind }) => kind);
+  };
+  await eventually(
+    "the loss of the broker on record, and its return",
+    async () => (await brokerEvents()).slice(0, 2).join() === "broker reached,broker lost",
+  );
+
   // The engine is away: the session is kept for it.
   expect(await service.stop()).toBe(0);
   await eventually(

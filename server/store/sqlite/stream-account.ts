@@ -77,7 +77,7 @@ export function accountQuery(db: Database.Database, modelOf: ModelOf) {
     function walk(since: number, until: number, depth: number): void {
       if (since >= until) return;
       if (depth === levels.length) {
-        for (const row of readings.iterate(stream, since, until)) take(runOf.reading(row));
+        for (const row of readings.all(stream, since, until)) take(runOf.reading(row));
         return;
       }
       const width = levels[depth];
@@ -88,11 +88,21 @@ export function accountQuery(db: Database.Database, modelOf: ModelOf) {
         return;
       }
       walk(since, head, depth + 1);
+      // Neighbours that are of two kinds go down together: a stream that hovers about a limit is then read in one go.
+      let mixed: [since: number, until: number] | undefined;
+      const goDown = () => {
+        if (mixed) walk(...mixed, depth + 1);
+        mixed = undefined;
+      };
       for (const stretch of byStart(rollups.all(stream, width, head, tail))) {
+        const [start] = stretch[0];
         const run = stretch.length === 1 ? runOf.stretch(stretch[0]) : undefined;
-        if (run && !endsIn(run.first, run.last)) take(run);
-        else walk(stretch[0][0], stretch[0][0] + width, depth + 1);
+        if (run && !endsIn(run.first, run.last)) {
+          goDown();
+          take(run);
+        } else mixed = [mixed?.[0] ?? start, start + width];
       }
+      goDown();
       walk(tail, until, depth + 1);
     }
     function take(run: Run): void {
