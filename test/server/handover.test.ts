@@ -132,6 +132,8 @@ describe("a shift is handed over", () => {
     db.close();
     const bound = await recordAt(chain, shift);
     expect(bound.altered).toBe(true);
+    const verified = await runCommand(verifyRecordCommand(), ["--config", join(chain.folder, "plant.json")]);
+    expect(String(verified.error)).toMatch(/signature \d+: the record no longer fits the hash that was signed/);
     const page = await fetch(`${chain.url}/api/v1/handover/record/html?at=${shift}`);
     expect(await page.text()).toContain("no longer fits the hash that was signed");
   });
