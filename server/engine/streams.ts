@@ -44,12 +44,16 @@ export function gapMsOf(periodMs: number): number {
  * record ends. A model file that cannot be used stops nobody else: the model that was in charge goes on, or, where there is none, the
  * stream's readings are kept as unusable with that reason.
  */
-export function readyStream(config: StreamConfig, store: StoreWriter, now: number): EngineStream {
+export function readyStream(
+  config: StreamConfig,
+  store: StoreWriter,
+  now: number,
+  read: ReadModel = readModel,
+): EngineStream {
   let scorer: Scorer | undefined;
   let modelTrouble: string | undefined;
   try {
-    const { model, text } = readModel(config.model);
-    const compiled = compileModel(model);
+    const { model, text, compiled } = read(config.model);
     checkJudges(compiled, config.model);
     statisticLimits(model, defaultStatisticChoice()); // throws here, where it is told as the model's trouble, if it lacks the residuals
     checkAxis(compiled, config);
@@ -76,14 +80,37 @@ function modelInCharge(stream: string, store: StoreWriter): Scorer | undefined {
   return text === undefined ? undefined : new Scorer(compileModel(parseModel(text, `model ${id} of the record`)));
 }
 
-function readModel(file: string): { model: Model; text: string } {
+/** Every stream of a plant, by its id. Streams that share a model file share what is made of it. */
+export function readyStreams(
+  configs: readonly StreamConfig[],
+  store: StoreWriter,
+  now: number,
+): Map<string, EngineStream> {
+  const known = new Map<string, ModelRead>();
+  const read = (file: string): ModelRead => {
+    const found = known.get(file) ?? readModel(file);
+    known.set(file, found);
+    return found;
+  };
+  return new Map(configs.map((config) => [config.id, readyStream(config, store, now, read)]));
+}
+
+interface ModelRead {
+  model: Model;
+  text: string;
+  compiled: CompiledModel;
+}
+type ReadModel = (file: string) => ModelRead;
+
+function readModel(file: string): ModelRead {
   let text: string;
   try {
     text = readFileSync(file, "utf8");
   } catch (cause) {
     throw new ModelNotThere(file, cause as NodeJS.ErrnoException);
   }
-  return { model: parseModel(text, file), text };
+  const model = parseModel(text, file);
+  return { model, text, compiled: compileModel(model) };
 }
 
 /** A number whose trust cannot be judged is not shown: such a model may score tables, but is not put in charge of a stream. */

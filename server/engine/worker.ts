@@ -11,7 +11,7 @@ import { MqttSource } from "./mqtt-source.ts";
 import { Outside } from "./outside.ts";
 import type { EngineSettings, FromEngine, ToEngine } from "./protocol.ts";
 import { retireOldSpectra } from "./retention.ts";
-import { readyStream } from "./streams.ts";
+import { readyStreams } from "./streams.ts";
 import { topicsOf } from "./topics.ts";
 
 const port = parentPort!;
@@ -24,7 +24,7 @@ function run(): void {
   const topics = topicsOf(config.mqtt.prefix, config.site);
   const meter = new Meter(sqliteWriter(recordFile));
   const { store } = meter;
-  const streams = new Map(config.streams.map((stream) => [stream.id, readyStream(stream, store, Date.now())]));
+  const streams = readyStreams(config.streams, store, Date.now());
   const outside = new Outside(connectionOf(config, settings, "results"), topics, log);
   let ready = false;
   const engine = new Engine({

@@ -1,17 +1,20 @@
+import { writeFileSync } from "node:fs";
 import { cpus } from "node:os";
 import type { BenchResult } from "./bench-result.ts";
 import { benchHandover } from "./handover.ts";
+import { benchIngest } from "./ingest.ts";
 import { benchRehearse } from "./rehearse.ts";
 import { benchScore } from "./score.ts";
 import { benchScreens } from "./screens.ts";
 import { benchYear } from "./year.ts";
 
-/** Every bench, one after the other: first a table for people, then one line of JSON. Ratios within one run; times depend on the machine. */
+/** Every bench, one after the other: first a table for people, then one line of JSON, which goes to dist/bench.json, too. Ratios within one run; times depend on the machine. */
 const benches: Record<string, () => BenchResult[] | Promise<BenchResult[]>> = {
   score: benchScore,
   year: benchYear,
   handover: benchHandover,
   rehearse: benchRehearse,
+  ingest: benchIngest,
   screens: benchScreens,
 };
 
@@ -27,4 +30,6 @@ for (const [name, bench] of Object.entries(benches)) {
     );
   }
 }
-console.log(JSON.stringify({ node: process.version, cpu: cpus()[0]?.model, results }));
+const json = JSON.stringify({ node: process.version, cpu: cpus()[0]?.model, results });
+console.log(json);
+writeFileSync(new URL("../../bench.json", import.meta.url), `${json}\n`);

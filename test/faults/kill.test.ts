@@ -82,7 +82,7 @@ test(`a service killed ${kills} times under load has every reading whose publish
   console.log(`${kills} kills: ${sent} sent, ${acknowledged.length} acknowledged, ${recorded} on record`);
   expect(await chain.stop()).toBe(0);
   chain.remove();
-});
+}, 600_000);
 
 async function missingOf(chain: Chain, acknowledged: { stream: string; time: number }[], from: number, to: number) {
   const recorded = new Map<string, Set<number>>();
