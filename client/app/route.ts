@@ -9,6 +9,7 @@ export type Route =
   | { view: "limits"; stream?: string }
   /** `at`: any time in the shift; without it the one that runs. `words`: what is looked for in all that people said */
   | { view: "handover"; at?: number; words?: string }
+  | { view: "agreement"; stream?: string; property?: string; days?: number }
   | { view: "alarms" }
   | { view: "plant" };
 export type ViewName = Route["view"];
@@ -19,6 +20,11 @@ function timeOf(text: string | null): number | undefined {
   if (text === null) return undefined;
   const at = /^\d+$/.test(text) ? Number(text) : Date.parse(text);
   return Number.isFinite(at) ? at : undefined;
+}
+
+function daysOf(text: string | null): number | undefined {
+  const days = Number(text);
+  return days > 0 && days <= 4000 ? days : undefined;
 }
 
 function windowOf(query: URLSearchParams): TimeWindow {
@@ -47,6 +53,8 @@ export function parseRoute(path: string, search: string): Route {
       return { view, stream };
     case "handover":
       return { view, at: timeOf(query.get("at")), words: query.get("words") ?? undefined };
+    case "agreement":
+      return { view, stream, property: query.get("property") ?? undefined, days: daysOf(query.get("days")) };
     case "alarms":
     case "plant":
       return { view };
@@ -83,6 +91,11 @@ export function href(route: Route): string {
       if (route.at !== undefined) query.set("at", iso(route.at));
       if (route.words) query.set("words", route.words);
       return query.size > 0 ? `/handover?${query}` : "/handover";
+    }
+    case "agreement": {
+      const { property, days } = route;
+      const query = new URLSearchParams({ ...(property && { property }), ...(days && { days: String(days) }) });
+      return `/agreement${stream}${query.size > 0 ? `?${query}` : ""}`;
     }
     default:
       return `/${route.view}${stream}`;

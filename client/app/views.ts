@@ -22,6 +22,11 @@ export const views: Record<ViewName, ViewEntry> = {
   alarms: { word: "Alarms", tag: literal`mill-alarms-view`, load: () => import("../views/alarms-view.ts") },
   handover: { word: "Handover", tag: literal`mill-handover-view`, load: () => import("../views/handover-view.ts") },
   limits: { word: "Limits", tag: literal`mill-limits-view`, load: () => import("../views/limits-view.ts") },
+  agreement: {
+    word: "Agreement",
+    tag: literal`mill-agreement-view`,
+    load: () => import("../views/agreement-view.ts"),
+  },
   plant: { word: "Plant", tag: literal`mill-plant-view`, load: () => import("../views/plant-view.ts") },
 };
 

@@ -1,11 +1,10 @@
-import { css, html, LitElement, type PropertyValues, unsafeCSS } from "lit";
+import { css } from "lit";
 import uPlot from "uplot";
-import uplotStyle from "uplot/dist/uPlot.min.css?inline";
 import type { Verdict } from "../../core/messages/index.ts";
 import { verdictColour } from "../parts/verdict-mark.ts";
 import { chartFont, scaledFont } from "./canvas-text.ts";
-import { type Colours, coloursAt } from "./colours.ts";
-import { Redraw } from "./redraw.ts";
+import type { Colours } from "./colours.ts";
+import { type Ground, StillChart } from "./still-chart.ts";
 
 export interface PlacePicture {
   /** ratios to the limits: of the calibration samples, and of the reading */
@@ -22,61 +21,21 @@ export function decades(values: readonly number[]): [number, number] {
 }
 
 /** The reading among the calibration samples: T² ratio to the right, Q ratio upward, both on log scales whose 1 is the limit. */
-export class PlaceMap extends LitElement {
-  static override properties = { picture: { attribute: false }, label: { attribute: false } };
+export class PlaceMap extends StillChart {
+  static override properties = { ...StillChart.properties, picture: { attribute: false } };
   declare picture: PlacePicture;
-  declare label: string;
-  #plot: uPlot | undefined;
-  #size = "";
-  constructor() {
-    super();
-    new Redraw(
-      this,
-      (always) => this.#build(always),
-      () => {
-        this.#plot?.destroy();
-        this.#plot = undefined;
-        this.#size = "";
-      },
-    );
-  }
 
   static override styles = [
-    unsafeCSS(uplotStyle),
+    ...StillChart.styles,
     css`
       :host {
-        display: block;
-        position: relative;
         height: 300px;
-        overflow: hidden;
-      }
-      .plot {
-        position: absolute;
-        inset: 0;
-        pointer-events: none;
-      }
-      .uplot {
-        font-family: inherit;
       }
     `,
   ];
 
-  override render() {
-    return html`<div class="plot" role="img" aria-label=${this.label ?? ""}></div>`;
-  }
-
-  override updated(changed: PropertyValues<this>): void {
-    if (changed.has("picture")) this.#build(true);
-  }
-
-  #build(always = false): void {
-    if (!this.picture || !this.hasUpdated || !this.isConnected) return;
-    const { width, height } = this.getBoundingClientRect();
-    const size = `${width} ${height}`;
-    if (width < 60 || (size === this.#size && !always)) return;
-    this.#size = size;
-    this.#plot?.destroy();
-    const colours = coloursAt(this);
+  protected override draw({ width, height, root, colours }: Ground): uPlot | undefined {
+    if (!this.picture) return undefined;
     const { samples, reading } = this.picture;
     const x = decades([...samples.map(({ t2 }) => t2), reading.t2]);
     const y = decades([...samples.map(({ q }) => q), reading.q]);
@@ -85,10 +44,10 @@ export class PlaceMap extends LitElement {
     const lines = { show: true, stroke: colours.rule, width: 1 };
     const numbers = (_: uPlot, splits: number[]) =>
       splits.map((exponent) => String(Number((10 ** exponent).toPrecision(1))));
-    this.#plot = new uPlot(
+    return new uPlot(
       {
-        width: Math.floor(width),
-        height: Math.floor(height),
+        width,
+        height,
         padding: [8, 12, 0, 0],
         legend: { show: false },
         cursor: { show: false },
@@ -120,7 +79,7 @@ export class PlaceMap extends LitElement {
         [x[0], x[1]],
         [null, null],
       ],
-      this.renderRoot.querySelector(".plot") as HTMLElement,
+      root,
     );
   }
 }

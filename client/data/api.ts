@@ -1,10 +1,14 @@
 import type { LimitSet } from "../../core/limit-set/index.ts";
 import type {
+  Agreement,
   BoundRecord,
   Excursion,
   ExcursionLabel,
   HandoverShifts,
   KeptSettings,
+  LabIdentity,
+  LabImport,
+  LabMessage,
   LabResults,
   LimitChangeOutcome,
   LimitSets,
@@ -45,7 +49,8 @@ async function problemOf(response: Response): Promise<ApiError> {
   return new ApiError("http", response.status, `The server answered ${response.status} ${response.statusText}.`);
 }
 
-async function ask<T>(path: string, init?: RequestInit): Promise<T> {
+/** @param answers besides 200: status codes whose body is an answer, not a problem */
+async function ask<T>(path: string, init?: RequestInit, answers: readonly number[] = []): Promise<T> {
   let response: Response;
   try {
     response = await fetch(`/api/v1${path}`, init);
@@ -53,7 +58,7 @@ async function ask<T>(path: string, init?: RequestInit): Promise<T> {
     if (init?.signal?.aborted) throw cause;
     throw new ApiError("unreachable", 0, "The server could not be reached. It is asked again by itself.", cause);
   }
-  if (!response.ok) throw await problemOf(response);
+  if (!response.ok && !answers.includes(response.status)) throw await problemOf(response);
   return (response.status === 204 ? undefined : await response.json()) as T;
 }
 
@@ -116,6 +121,18 @@ export const api = {
     ask<LimitChangeOutcome>(`${stream(id)}/limit-proposals/${proposal}/approve`, { method: "POST" }),
   withdrawLimits: (id: string, proposal: number, reason: string) =>
     ask<LimitChangeOutcome>(`${stream(id)}/limit-proposals/${proposal}/withdraw`, asJson({ reason })),
+  agreement: (id: string, values: { property: string; from: number; to: number }, signal?: AbortSignal) =>
+    ask<Agreement>(`${stream(id)}/agreement${query(values)}`, { signal }),
+  /** 422: rows were refused, and nothing was taken; the answer says which and why */
+  enterLab: (id: string, result: LabMessage) => ask<LabImport>(`${stream(id)}/lab`, asJson(result), [422]),
+  importLab: (id: string, table: string) => {
+    const init = { method: "POST", headers: { "content-type": "text/csv" }, body: table };
+    return ask<LabImport>(`${stream(id)}/lab/table`, init, [422]);
+  },
+  correctLab: (id: string, change: { result: LabIdentity; value: number; reason: string }) =>
+    ask<unknown>(`${stream(id)}/lab/correct`, asJson(change)),
+  withdrawLab: (id: string, change: { result: LabIdentity; reason: string }) =>
+    ask<unknown>(`${stream(id)}/lab/withdraw`, asJson(change)),
   shifts: (signal?: AbortSignal) => ask<Shifts>("/shifts", { signal }),
   lab: (id: string, from: number, to: number, signal?: AbortSignal) =>
     ask<LabResults>(`${stream(id)}/lab${query({ from, to })}`, { signal }),

@@ -75,8 +75,8 @@ function stageWords({ stage, n, missing, span }: Finding["stage"]): string {
   }
 }
 
-/** "= 0.002", "< 0.001" */
+/** "= 0.002", "< 0.001", not to be broken between lines */
 export function pWords(p: number): string {
-  if (p < 0.001) return "< 0.001";
-  return `= ${p < 0.01 ? p.toFixed(3) : p.toFixed(2)}`;
+  if (p < 0.001) return "<\u00a00.001";
+  return `=\u00a0${p < 0.01 ? p.toFixed(3) : p.toFixed(2)}`;
 }

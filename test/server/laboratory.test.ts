@@ -85,7 +85,7 @@ const result = (minutes: number, sample: string, more: object = {}) => ({
 
 describe("a result comes in", () => {
   test("by form, is matched to the readings about its sample's time, and says what was predicted", async () => {
-    const { status, body } = await post<LabImport>("/lab", result(5, "form-1"), "operator");
+    const { status, body } = await post<LabImport>("/lab", result(5, "form-1", { time: at(5) }), "operator");
     expect([status, body.accepted, body.rows[0].says]).toEqual([200, 1, expect.stringMatching(/^Predicted: \d/)]);
     const stored = (await find("form-1"))!;
     expect(stored).toMatchObject({ origin: "form", version: 1, by: "token operator", withdrawn: false });

@@ -73,7 +73,7 @@ describe("a finding in words", () => {
     const finding = findingOf(pairsOf(shifted(34, 17, 0.5, 8)), compared);
     const [first, second] = findingWords(finding, write);
     expect(first).toMatch(
-      /^Biased by \+0\.[3-7]\d wt% since 05-0[67]T\d\d:00 \(n = \d\d, p < 0\.001\): the predictions lie above the laboratory\./,
+      /^Biased by \+0\.[3-7]\d wt% since 05-0[67]T\d\d:00 \(n = \d\d, p <\u00a00\.001\): the predictions lie above the laboratory\./,
     );
     expect(second).toMatch(/^The scatter has not grown \(0\.\d\d wt%; the model's RMSECV is 0\.20 wt%\)\.$/);
     expect(findingInShort(finding, write)).toMatch(/^biased by \+0\.\d\d wt% since 05-0\d/);

@@ -31,7 +31,7 @@ test("a bias that matters and is no chance raises the alarm with its third pair,
   heard.hearAll([0.401], 5);
   const [alarm] = heard.open();
   expect(alarm.says).toMatch(
-    /^a: the predictions lie 0\.10\u202f above the laboratory over the last 3 pairs \(p < 0\.001\)\. Either may be off\.$/,
+    /^a: the predictions lie 0\.10\u202f above the laboratory over the last 3 pairs \(p <\u00a00\.001\)\. Either may be off\.$/,
   );
   expect(alarm.since).toBe(start + 3 * hour); // the first pair at the new level, not the one that raised it
 });
