@@ -20,7 +20,11 @@ export function trendPicture(
   const scale = scaleOf(trend);
   if (!scale) return markup`<p class="quiet">No numbers to draw.</p>`;
   const x = (at: number) => round(left + ((Math.min(Math.max(at, from), to) - from) / (to - from)) * (width - left));
-  const y = (value: number) => round(bottom - ((value - scale.low) / (scale.high - scale.low)) * (bottom - top));
+  // What lies beyond the scale stands at its edge: it is seen that it was there, and not to be read off.
+  const y = (value: number) => {
+    const share = (value - scale.low) / (scale.high - scale.low);
+    return round(bottom - Math.min(1, Math.max(0, share)) * (bottom - top));
+  };
   const says = `${trend.property} from ${time.brief(from, to)} to ${time.brief(to, to)}, ${figure(scale.low)} to ${withUnit(figure(scale.high), trend.unit)}; ${excursions.length} excursions marked`;
   return markup`<svg class="trend" viewBox="0 0 ${width} ${height}" role="img" aria-label="${says}">
     ${targetBand(trend.target, scale, y)}

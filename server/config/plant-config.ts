@@ -212,7 +212,18 @@ function checkTimeZone(timeZone: string, file: string): void {
   }
 }
 
-function checkShifts({ shifts = calendarDays, timeZone }: PlantConfig, file: string): void {
+function checkShifts({ shifts = calendarDays, timeZone, checks = [] }: PlantConfig, file: string): void {
+  const names = shifts.shifts.map(({ name }) => name);
+  checks.forEach(({ key, shifts: own = [] }, i) => {
+    const unknown = own.find((name) => !names.includes(name));
+    const repeated = checks.findIndex((check) => check.key === key) < i;
+    if (unknown === undefined && !repeated) return;
+    throw new ConfigError(`${file}: checks[${i}].${repeated ? "key" : "shifts"}`, {
+      got: repeated ? `"${key}" again` : `"${unknown}"`,
+      expected: repeated ? "a key of its own" : `a shift of the plan (${names.join(", ")})`,
+      todo: "Correct it.",
+    });
+  });
   try {
     shiftCalendar(shifts, timeZone);
   } catch (cause) {

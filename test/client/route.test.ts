@@ -18,6 +18,8 @@ describe("the URL", () => {
     { view: "reading", stream: "bq-305", at },
     { view: "reading", stream: undefined, at: undefined },
     { view: "excursions", stream: "bq-410" },
+    { view: "handover", at, words: "drum 4" },
+    { view: "handover", at: undefined, words: undefined },
     { view: "alarms" },
     { view: "plant" },
   ];

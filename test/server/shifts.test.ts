@@ -59,6 +59,13 @@ describe("a plant's shifts in its configuration", () => {
     ];
     expect(read({ shifts: { shifts } })).toThrow(/plant\.json: shifts: the shifts Day \(to 19:00\) and Night/);
   });
+  test("a check of a shift that there is not, and a key that stands twice, are named", () => {
+    const check = { key: "gates", says: "Gates closed" };
+    expect(read({ checks: [{ ...check, shifts: ["Dusk"] }] })).toThrow(
+      /checks\[0\]\.shifts is "Dusk", expected a shift of the plan \(Day, Night\)/,
+    );
+    expect(read({ checks: [check, check] })).toThrow(/checks\[1\]\.key is "gates" again/);
+  });
   test("a time that is none is named by its field", () => {
     expect(read({ shifts: { shifts: [{ name: "Day", from: "6:00", to: "18:00" }] } })).toThrow(
       /shifts\.shifts\[0\]\.from is "6:00"/,
