@@ -4,10 +4,17 @@
  */
 export function spectrumBytes(values: Float64Array): { width: 4 | 8; data: Buffer } {
   const narrow = Float32Array.from(values);
-  // Object.is: NaN must survive, and −0 must not become 0.
-  const exact = values.every((value, i) => Object.is(narrow[i], value));
+  const exact = isSame(values, narrow);
   const array = exact ? narrow : values;
   return { width: exact ? 4 : 8, data: Buffer.from(array.buffer, array.byteOffset, array.byteLength) };
+}
+
+/** A plain loop: it runs for every value that is ever recorded. NaN and −0 are the same in both widths. */
+function isSame(values: Float64Array, narrow: Float32Array): boolean {
+  for (let j = 0; j < values.length; j++) {
+    if (narrow[j] !== values[j] && !Number.isNaN(values[j])) return false;
+  }
+  return true;
 }
 
 export function spectrumValues(data: Buffer, width: number): Float64Array {
