@@ -1,6 +1,12 @@
 import { type Static, Type } from "typebox";
 import { type Difference, differences } from "./differences.ts";
-import { AlarmRuleSchema, type LimitSet, LimitSetSchema } from "./limit-set.ts";
+import {
+  AlarmRuleSchema,
+  type LimitSet,
+  LimitSetSchema,
+  type RehearsalEvidence,
+  RehearsalEvidenceSchema,
+} from "./limit-set.ts";
 import { LimitSetError, parseLimitSet } from "./parse.ts";
 
 /** A limit set that somebody wants in force. It waits where the plant asks for another person's approval. */
@@ -13,6 +19,7 @@ export const LimitProposalSchema = Type.Object({
   alarms: Type.Array(AlarmRuleSchema),
   author: Type.String(),
   reason: Type.String(),
+  evidence: Type.Optional(RehearsalEvidenceSchema),
   time: Type.Number(),
 });
 export type LimitProposal = Static<typeof LimitProposalSchema>;
@@ -24,7 +31,7 @@ export interface Proposals {
 }
 
 export type LimitAsk =
-  | { kind: "change limits"; by: string; at: number; reason: string; wanted: LimitSet }
+  | { kind: "change limits"; by: string; at: number; reason: string; wanted: LimitSet; evidence?: RehearsalEvidence }
   | { kind: "approve limits"; by: string; at: number; proposal: number }
   | { kind: "withdraw limits"; by: string; at: number; proposal: number; reason: string };
 
@@ -63,12 +70,13 @@ export function decideLimits(ask: LimitAsk, situation: LimitSituation): LimitAns
 
 function change(ask: Extract<LimitAsk, { kind: "change limits" }>, situation: LimitSituation): LimitAnswer {
   const { inForce, proposals, approval } = situation;
-  const { wanted, by, at, reason } = ask;
+  const { wanted, by, at, reason, evidence } = ask;
   const trouble = troubleWith(wanted, reason, situation);
   if (trouble !== undefined) return { kind: "rejected", why: trouble };
   const { statistics, alarms } = wanted;
   const from = { id: proposals.last + 1, base: inForce.version };
-  const proposal: LimitProposal = { ...from, statistics, alarms, author: by, reason, time: at };
+  const shown = evidence ? { evidence } : {};
+  const proposal: LimitProposal = { ...from, statistics, alarms, author: by, reason, ...shown, time: at };
   const counted = { ...proposals, last: proposal.id };
   if (!approval) return putInForce(proposal, at, { ...situation, proposals: counted });
   return {
@@ -122,14 +130,17 @@ function withdraw(ask: Extract<LimitAsk, { kind: "withdraw limits" }>, { proposa
 
 function putInForce(proposal: LimitProposal, at: number, situation: LimitSituation, approver?: string): LimitAnswer {
   const { inForce, proposals } = situation;
-  const { statistics, alarms, author, reason } = proposal;
+  const { statistics, alarms, author, reason, evidence } = proposal;
   const set: LimitSet = {
     ...inForce,
     version: inForce.version + 1,
     ...{ statistics, alarms, author, reason, time: at },
   };
-  delete set.approver; // the approver of the version before
+  // Approver and evidence of the version before are not this one's.
+  delete set.approver;
+  delete set.evidence;
   if (approver !== undefined) set.approver = approver;
+  if (evidence) set.evidence = evidence;
   const changes = differences(inForce, set);
   const by = approver === undefined ? author : `${author}, approved by ${approver}`;
   return {

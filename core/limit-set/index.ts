@@ -24,6 +24,8 @@ export {
   mostShelvedMinutes,
   type PropertyWatch,
   propertyOf,
+  type RehearsalEvidence,
+  RehearsalEvidenceSchema,
   type Side,
   type StatisticLimit,
   sides,

@@ -132,6 +132,32 @@ export const AlarmRuleSchema = Type.Object({
 });
 export type AlarmRule = Static<typeof AlarmRuleSchema>;
 
+const RehearsedFiguresSchema = Type.Object({
+  /** times that somebody would have been called, per day of 24 h with data */
+  perDay: Type.Number(),
+  /** labelled troubles that were found, and that were missed */
+  found: Type.Integer(),
+  missed: Type.Integer(),
+  /** calls that no labelled trouble explains */
+  causeless: Type.Integer(),
+  /** the longest time with data without a call, ms */
+  longestQuietMs: Type.Number(),
+});
+/** What recorded history said of a change: the limits that were in force then beside those that were proposed. */
+export const RehearsalEvidenceSchema = Type.Object({
+  /** the stretch, epoch ms, and what was left of it after the cuts */
+  from: Type.Number(),
+  to: Type.Number(),
+  cuts: Type.Integer(),
+  readings: Type.Integer(),
+  days: Type.Number(),
+  /** the version that was in force, and its figures */
+  version: Type.Integer(),
+  inForce: RehearsedFiguresSchema,
+  proposed: RehearsedFiguresSchema,
+});
+export type RehearsalEvidence = Static<typeof RehearsalEvidenceSchema>;
+
 /** One version of all limits and alarm settings of a stream. */
 export const LimitSetSchema = Type.Object({
   format: Type.Literal("millrace-limit-set"),
@@ -150,6 +176,8 @@ export const LimitSetSchema = Type.Object({
   /** who approved it, where the plant asks for another person */
   approver: Type.Optional(Type.String()),
   reason: Type.String(),
+  /** the rehearsal that spoke for it */
+  evidence: Type.Optional(RehearsalEvidenceSchema),
   /** since when it is in force, epoch ms */
   time: Type.Number(),
 });

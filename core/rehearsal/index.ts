@@ -1,4 +1,12 @@
 export {
+  mostSweepValues,
+  type RehearsalRequest,
+  RehearsalRequestSchema,
+  type RehearsalResult,
+  type RehearsalStanding,
+  SweepingSchema,
+} from "./messages.ts";
+export {
   type AlarmOutcome,
   type EventOutcome,
   type LabelledEvent,
@@ -8,6 +16,7 @@ export {
 } from "./outcome.ts";
 export { periodsOf, Rehearsal, type Rehearsed, type RehearsedAlarm } from "./rehearse.ts";
 export { type Activation, type Periods, replayAlarm } from "./replay-alarm.ts";
+export { RescoreError, rescored } from "./rescore.ts";
 export {
   alarmSettings,
   type LimitOf,

@@ -47,7 +47,9 @@ export interface Outcome {
   events: EventOutcome[];
   found: number;
   missed: number;
-  /** calls that no labelled trouble explains, in the order of time; those for the record only call nobody */
+  /** whenever somebody would have been called, in the order of time */
+  calls: Activation[];
+  /** those of them that no labelled trouble explains, in the order of time; those for the record only call nobody */
   causeless: Activation[];
   /** the longest time with data without a call, ms */
   longestQuietMs: number;
@@ -86,6 +88,7 @@ export function outcomeOf({ alarms, covered, readings }: Rehearsed, truth: reado
     events,
     found: events.length - missed,
     missed,
+    calls,
     causeless: calls.filter((call) => needCause.has(call.key) && !truth.some((event) => meets(call, event))),
     longestQuietMs: longestQuiet(covered, calls),
     readings,

@@ -44,14 +44,14 @@ function restsOn({ watches, untrusted }: AlarmRule): (keyof LimitSet["statistics
  */
 export class Rehearsal {
   readonly stretch: RecordedStretch;
-  readonly #periods: Periods;
+  readonly periods: Periods;
   readonly #covered: Coverage;
   readonly #replayed = new Map<string, RehearsedAlarm>();
   #trust: { key: string; trust: Trust; readings: Rehearsed["readings"] } | undefined;
 
   constructor(stretch: RecordedStretch, periods: Periods) {
     this.stretch = stretch;
-    this.#periods = periods;
+    this.periods = periods;
     this.#covered = coverage(stretch);
   }
 
@@ -61,7 +61,7 @@ export class Rehearsal {
       const key = JSON.stringify([rule, restsOn(rule).map((name) => statistics[name].limit)]);
       const known = this.#replayed.get(key);
       if (known) return known;
-      const activations = replayAlarm(this.stretch, rule, trust, this.#periods);
+      const activations = replayAlarm(this.stretch, rule, trust, this.periods);
       const alarm = { rule, activations, outcome: alarmOutcome(this.stretch.stream, rule, activations, this.#covered) };
       this.#replayed.set(key, alarm);
       return alarm;

@@ -10,6 +10,7 @@ import type { PlantConfig } from "../config/plant-config.ts";
 import type { EngineThread } from "../engine/engine-thread.ts";
 import type { PeopleStore } from "../people/people-store.ts";
 import { mayAct, type Person, type Role } from "../people/person.ts";
+import { Rehearsals } from "../rehearsal/rehearsals.ts";
 import type { StoreReader } from "../store/store.ts";
 import { Figures } from "./figures.ts";
 import { isOurs } from "./guard.ts";
@@ -27,6 +28,7 @@ import { loadRoutes } from "./routes/load.ts";
 import { peopleRoutes } from "./routes/people.ts";
 import { recordRoutes } from "./routes/record.ts";
 import { settingsRoutes } from "./routes/settings.ts";
+import { rehearsalRoutes } from "./routes/rehearsals.ts";
 import { shiftRoutes } from "./routes/shifts.ts";
 import { streamRoutes } from "./routes/streams.ts";
 import { type Who, whoOf } from "./who.ts";
@@ -39,6 +41,7 @@ export interface GatewayParts {
   engine: EngineThread;
   live: LiveHub;
   people: PeopleStore;
+  rehearsals: Rehearsals;
   who: Who;
   passwords: PasswordDoor;
   /** who asks. @throws RequestError 401 when somebody must sign in first */
@@ -72,7 +75,7 @@ export async function startGateway(options: {
   people: PeopleStore;
   version: string;
   /** whose sizes are among the figures */
-  files: Record<string, string>;
+  files: { record: string } & Record<string, string>;
   /** how the embedded broker does */
   broker?: () => BrokerState;
 }): Promise<Gateway> {
@@ -80,6 +83,7 @@ export async function startGateway(options: {
   const app = makeServer(config.http);
   await app.register(fastifyCookie);
   const explainer = new ReadingExplainer(store);
+  const rehearsals = new Rehearsals(options.files.record);
   const who = whoOf(config, people, (header) => app.parseCookie(header));
   const live = new LiveHub(app.server, {
     version,
@@ -93,7 +97,7 @@ export async function startGateway(options: {
     throw new RequestError(401, "sign-in-needed", "Sign in first.");
   };
   const parts: GatewayParts = {
-    ...{ config, store, explainer, engine, live, people, who, version },
+    ...{ config, store, explainer, engine, live, people, rehearsals, who, version },
     passwords: new PasswordDoor(engine),
     personOf,
     allowed(request, needed) {
@@ -147,6 +151,7 @@ export async function startGateway(options: {
       loadRoutes(api, parts);
       laboratoryRoutes(api, parts);
       limitSetRoutes(api, parts);
+      rehearsalRoutes(api, parts);
       shiftRoutes(api, parts);
       handoverRoutes(api, parts);
       api.get("/openapi.json", { schema: { hide: true } }, () => app.swagger());
@@ -169,6 +174,7 @@ export async function startGateway(options: {
     async close() {
       live.close();
       await app.close();
+      await rehearsals.stop();
       store.close();
       people.close();
     },

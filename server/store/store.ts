@@ -103,6 +103,12 @@ export interface StoredReading {
   axis?: AxisSpec;
 }
 
+export interface RecordedSpectrum {
+  time: number;
+  values: Float64Array | null;
+  axis?: AxisSpec;
+}
+
 /** The record, as everybody else sees it: reads only, beside the running writer. */
 export interface StoreReader {
   /** The last reading at or before `at` (before it, with `strictly`). */
@@ -116,6 +122,8 @@ export interface StoreReader {
   refusals(stream: string | undefined, limit: number): Refusals;
   /** The statistics of `from` ≤ time < `to` as columns, for a rehearsal; late readings, which alarms take no notice of, are left out. */
   stretch(stream: string, from: number, to: number): RecordedStretch;
+  /** The spectra of the same readings, in the same order; null where one is no longer kept. */
+  spectra(stream: string, from: number, to: number): Iterable<RecordedSpectrum>;
   /** Newest first; `about`: the first word of their kind; `after`: only those with a larger cursor. */
   events(query: { stream?: string; about?: string; after?: number; before?: number; limit: number }): RecordedEvent[];
   /** Every event of `from` ≤ at < `to`, in the order of the record, one by one. */

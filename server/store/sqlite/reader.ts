@@ -9,7 +9,7 @@ import { openForReading } from "./open.ts";
 import { pageQueries } from "./pages.ts";
 import { type ReadingRow, readingRows } from "./reading-rows.ts";
 import { accountQuery } from "./stream-account.ts";
-import { stretchQuery } from "./stretch.ts";
+import { spectraQuery, stretchQuery } from "./stretch.ts";
 import { trendQuery } from "./trend.ts";
 
 /** The SQLite record's reader: its own connection, read only, beside the running writer. @throws StoreError */
@@ -87,6 +87,7 @@ export function sqliteReader(file: string): StoreReader {
   const trend = trendQuery(db, modelOf);
   const account = accountQuery(db, modelOf);
   const stretch = stretchQuery(db, modelOf);
+  const spectra = spectraQuery(db);
 
   function streamKey(id: string): number {
     const known = streams.get(id);
@@ -154,6 +155,7 @@ export function sqliteReader(file: string): StoreReader {
     labResults,
     modelText: (id) => sql.modelText.get(id),
     stretch: (stream, from, to) => stretch(streamKey(stream), stream, from, to),
+    spectra: (stream, from, to) => spectra(streamKey(stream), from, to),
     extent: (stream) => sql.extent.get(streamKey(stream))!,
     close: () => void db.close(),
   };

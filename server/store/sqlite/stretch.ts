@@ -1,6 +1,8 @@
 import type Database from "better-sqlite3";
-import type { ProcessState, RecordedEvent } from "../../../core/messages/index.ts";
+import type { AxisSpec, ProcessState, RecordedEvent } from "../../../core/messages/index.ts";
 import { dataGap, frozen, noGap, type RecordedStretch, unusable, usable } from "../../../core/rehearsal/index.ts";
+import type { RecordedSpectrum } from "../store.ts";
+import { spectrumValues } from "./spectrum-bytes.ts";
 
 type ReadingRow = [
   time: number,
@@ -91,4 +93,29 @@ function fill(columns: ReturnType<typeof emptyColumns>, i: number, row: ReadingR
   columns.usability[i] = reason === "frozen" ? frozen : t2 === null ? unusable : usable;
   columns.gap[i] = gapFrom === null ? noGap : dataGap;
   columns.history[i] = history;
+}
+
+type SpectrumRow = [time: number, data: Buffer | null, width: number | null, axis: string | null];
+
+/** The spectra of the same readings, one by one: a hundred thousand of them do not fit in memory. */
+export function spectraQuery(db: Database.Database) {
+  const rows = db
+    .prepare<[number, number, number], SpectrumRow>(
+      `SELECT reading.time, spectrum.data, spectrum.width, axis.json FROM reading
+       LEFT JOIN spectrum ON spectrum.number = reading.number LEFT JOIN axis ON axis.k = spectrum.axis
+       WHERE reading.stream = ? AND reading.time >= ? AND reading.time < ? AND reading.late = 0 ORDER BY reading.time, reading.sequence`,
+    )
+    .raw();
+  const axes = new Map<string, AxisSpec>();
+  const axisOf = (json: string): AxisSpec => {
+    const axis = axes.get(json) ?? (JSON.parse(json) as AxisSpec);
+    axes.set(json, axis);
+    return axis;
+  };
+  return function* (key: number, from: number, to: number): Generator<RecordedSpectrum> {
+    for (const [time, data, width, json] of rows.iterate(key, from, to)) {
+      const values = data && width !== null ? spectrumValues(data, width) : null;
+      yield { time, values, ...(json === null ? {} : { axis: axisOf(json) }) };
+    }
+  };
 }
