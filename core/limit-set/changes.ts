@@ -1,12 +1,7 @@
 import { type Static, Type } from "typebox";
+import { type RehearsalEvidence, RehearsalEvidenceSchema } from "../messages/index.ts";
 import { type Difference, differences } from "./differences.ts";
-import {
-  AlarmRuleSchema,
-  type LimitSet,
-  LimitSetSchema,
-  type RehearsalEvidence,
-  RehearsalEvidenceSchema,
-} from "./limit-set.ts";
+import { AlarmRuleSchema, type LimitSet, LimitSetSchema } from "./limit-set.ts";
 import { LimitSetError, parseLimitSet } from "./parse.ts";
 
 /** A limit set that somebody wants in force. It waits where the plant asks for another person's approval. */

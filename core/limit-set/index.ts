@@ -10,6 +10,7 @@ export {
 } from "./changes.ts";
 export { defaultAlarms } from "./default-alarms.ts";
 export { type Difference, differences } from "./differences.ts";
+export { type KeptLimits, KeptLimitsSchema } from "./kept-limits.ts";
 export {
   type AlarmRule,
   AlarmRuleSchema,
@@ -24,8 +25,6 @@ export {
   mostShelvedMinutes,
   type PropertyWatch,
   propertyOf,
-  type RehearsalEvidence,
-  RehearsalEvidenceSchema,
   type Side,
   type StatisticLimit,
   sides,

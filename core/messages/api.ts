@@ -9,6 +9,7 @@ import {
   SetAsideAlarmSchema,
 } from "./alarm.ts";
 import { AxisUnitSchema } from "./reading.ts";
+import { RehearsalEvidenceSchema } from "./rehearsal-evidence.ts";
 import { JudgedSchema } from "./result.ts";
 
 const orNull = <T extends Parameters<typeof Type.Union>[0][number]>(schema: T) => Type.Union([schema, Type.Null()]);
@@ -315,6 +316,8 @@ const LimitChangeFields = {
   reason: Type.String(),
   time: Type.Number(),
   differences: Type.Array(DifferenceSchema),
+  /** the rehearsal that spoke for it */
+  evidence: Type.Optional(RehearsalEvidenceSchema),
 };
 /** GET /api/v1/streams/:id/limit-sets */
 export const LimitSetsSchema = Type.Object({

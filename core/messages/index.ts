@@ -136,6 +136,7 @@ export {
   StreamIdSchema,
   streamIdPattern,
 } from "./reading.ts";
+export { type RehearsalEvidence, RehearsalEvidenceSchema } from "./rehearsal-evidence.ts";
 export {
   type Judged,
   JudgedSchema,

@@ -12,7 +12,7 @@ import {
   tick,
   withEarlierPairs,
 } from "../../core/judging/index.ts";
-import { decideLimits, type LimitAsk, type LimitSet } from "../../core/limit-set/index.ts";
+import { decideLimits, type KeptLimits, type LimitAsk, type LimitSet } from "../../core/limit-set/index.ts";
 import type {
   Excursion,
   Judged,
@@ -47,12 +47,18 @@ export type Command =
   | LimitCommand
   | HandoverCommand
   | LabCommand
+  | KeepCommand
   /** something for the record that touches no stream: a sign-in, say */
   | { kind: "record"; event: string; says: string; by?: string };
 /** `rows`: of what was to be entered, what became of each */
 export type CommandOutcome =
   | { done: true; version?: number; proposal?: number; entry?: number; rows?: LabRow[] }
   | { done: false; says: string; rows?: LabRow[] };
+
+/** Limits under consideration, kept under a name or dropped again. */
+export type KeepCommand =
+  | { kind: "keep limits"; stream: string; by: string; kept: Omit<KeptLimits, "stream" | "author" | "time"> }
+  | { kind: "drop kept limits"; stream: string; by: string; name: string };
 
 type Untimed<Ask> = Ask extends LimitAsk ? Omit<Ask, "at"> & { stream: string } : never;
 /** What an engineer asks of a stream's limits. */
@@ -135,6 +141,7 @@ class TurnBuilder {
   readonly #limitSets: LimitSet[] = [];
   readonly #shiftRecords: NonNullable<Changes["shiftRecords"]> = [];
   readonly #labResults: LabResult[] = [];
+  readonly #keptLimits: NonNullable<Changes["keptLimits"]> = [];
   readonly #replies: Turn["replies"] = [];
   /** identities within this turn: the store does not know them yet */
   readonly #seen = new Set<string>();
@@ -180,6 +187,7 @@ class TurnBuilder {
         limitSets: this.#limitSets,
         shiftRecords: this.#shiftRecords,
         labResults: this.#labResults,
+        keptLimits: this.#keptLimits,
         states,
       },
       streams: this.#streams,
@@ -438,6 +446,10 @@ class TurnBuilder {
       this.#replies.push({ id, outcome: { done: false, says } });
       return;
     }
+    if (command.kind === "keep limits" || command.kind === "drop kept limits") {
+      this.#keep(id, now, command);
+      return;
+    }
     if (isLimitCommand(command)) {
       this.#limits(id, now, stream, command);
       return;
@@ -511,6 +523,19 @@ class TurnBuilder {
     this.#limitSets.push(answer.set);
     this.#note([note, ...notes], false);
     this.#replies.push({ id, outcome: { done: true, version: answer.set.version } });
+  }
+
+  #keep(id: number, now: number, command: KeepCommand): void {
+    const { stream, by } = command;
+    const keeps = command.kind === "keep limits";
+    const name = keeps ? command.kept.name : command.name;
+    const kept = keeps ? { ...command.kept, stream, author: by, time: now } : null;
+    this.#keptLimits.push({ stream, name, kept });
+    const says = keeps
+      ? `${by} keeps limits as "${name}"; they judge nothing.`
+      : `${by} drops the limits kept as "${name}".`;
+    this.#note([{ at: now, stream, kind: keeps ? "limits kept" : "limits dropped", says, by }], false);
+    this.#replies.push({ id, outcome: { done: true } });
   }
 
   /** As it is on record, or will be with this turn. */

@@ -60,15 +60,19 @@ export class RehearsalThread {
   #heard(message: FromRehearser): void {
     switch (message.kind) {
       case "progress":
-        return this.#running?.progress(message.doing, message.done, message.total);
+        this.#running?.progress(message.doing, message.done, message.total);
+        break;
       case "cell":
-        return this.#running?.cell(message.cell);
+        this.#running?.cell(message.cell);
+        break;
       case "done":
-        return this.#settle(({ resolve }) => resolve(message.result));
+        this.#settle(({ resolve }) => resolve(message.result));
+        break;
       case "failed":
-        return this.#settle(({ reject }) => reject(new RehearsalError(message.says)));
+        this.#settle(({ reject }) => reject(new RehearsalError(message.says)));
+        break;
       default:
-        return message satisfies never;
+        message satisfies never;
     }
   }
 

@@ -1,6 +1,6 @@
 import type { WantedProperty } from "../../core/handover/index.ts";
 import type { StreamState } from "../../core/judging/index.ts";
-import type { LimitProposal, LimitSet } from "../../core/limit-set/index.ts";
+import type { KeptLimits, LimitProposal, LimitSet } from "../../core/limit-set/index.ts";
 import type {
   AxisSpec,
   Excursion,
@@ -58,6 +58,8 @@ export interface Changes {
   shiftRecords?: { record: FrozenRecord; number: number }[];
   /** new versions: those before stay on record */
   labResults?: LabResult[];
+  /** limits under consideration; null takes away what was kept under the name */
+  keptLimits?: { stream: string; name: string; kept: KeptLimits | null }[];
 }
 
 /** The record, as its single writer sees it. What a method is asked must be portable: no maker's own words cross this border. */
@@ -141,6 +143,8 @@ export interface StoreReader {
   limitSet(stream: string, version?: number): LimitSet | undefined;
   /** Every version, newest first. */
   limitSets(stream: string): LimitSet[];
+  /** Limits under consideration, newest first. */
+  keptLimits(stream: string): KeptLimits[];
   /** What waits for approval. */
   proposals(stream: string): LimitProposal[];
   modelText(id: string): string | undefined;

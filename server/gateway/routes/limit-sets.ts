@@ -1,12 +1,22 @@
 import type { FastifyInstance } from "fastify";
 import { Type } from "typebox";
-import { differences, type LimitProposal, type LimitSet, LimitSetSchema } from "../../../core/limit-set/index.ts";
 import {
+  differences,
+  type KeptLimits,
+  KeptLimitsSchema,
+  type LimitProposal,
+  type LimitSet,
+  LimitSetSchema,
+} from "../../../core/limit-set/index.ts";
+import {
+  DoneSchema,
   LimitChangeOutcomeSchema,
   LimitSetsSchema,
   ProblemSchema,
+  type RehearsalEvidence,
   StreamIdSchema,
 } from "../../../core/messages/index.ts";
+import type { Outcome } from "../../../core/rehearsal/index.ts";
 import type { CommandOutcome, LimitCommand } from "../../engine/turn.ts";
 import type { GatewayParts } from "../gateway.ts";
 import { knownStream } from "../known-stream.ts";
@@ -15,6 +25,7 @@ import { RequestError } from "../problem.ts";
 const Reason = Type.String({ minLength: 1, maxLength: 2000 });
 const StreamParams = Type.Object({ id: StreamIdSchema });
 const VersionParams = Type.Object({ id: StreamIdSchema, version: Type.Integer({ minimum: 1 }) });
+const KeptParams = Type.Object({ id: StreamIdSchema, name: Type.String({ minLength: 1, maxLength: 80 }) });
 const ProposalParams = Type.Object({ id: StreamIdSchema, proposal: Type.Integer({ minimum: 1 }) });
 /** An alarm's words are part of a limit set: a long one is some tens of kilobytes. */
 const mostBytes = 1024 * 1024;
@@ -53,20 +64,26 @@ export function limitSetRoutes(app: FastifyInstance, parts: GatewayParts): void 
     ({ params: { id }, body: { limitSet } }) => ({ differences: differences(inForceOf(id), limitSet) }),
   );
 
-  app.post<{ Params: { id: string }; Body: { limitSet: LimitSet; reason: string } }>(
+  app.post<{ Params: { id: string }; Body: { limitSet: LimitSet; reason: string; rehearsal?: string } }>(
     "/streams/:id/limit-sets",
     {
       bodyLimit: mostBytes,
       schema: {
         params: StreamParams,
-        body: Type.Object({ limitSet: LimitSetSchema, reason: Reason }),
+        body: Type.Object({
+          limitSet: LimitSetSchema,
+          reason: Reason,
+          /** a rehearsal of just these limits, as evidence */
+          rehearsal: Type.Optional(Type.String({ format: "uuid" })),
+        }),
         response: answers,
       },
     },
     async (request) => {
-      const { limitSet, reason } = request.body;
+      const { limitSet, reason, rehearsal } = request.body;
       const by = allowed(request, "engineer").name;
-      return ask({ kind: "change limits", stream: request.params.id, by, reason, wanted: limitSet });
+      const evidence = rehearsal === undefined ? {} : { evidence: evidenceOf(rehearsal, limitSet) };
+      return ask({ kind: "change limits", stream: request.params.id, by, reason, wanted: limitSet, ...evidence });
     },
   );
 
@@ -106,6 +123,76 @@ export function limitSetRoutes(app: FastifyInstance, parts: GatewayParts): void 
     },
   );
 
+  app.get<{ Params: { id: string } }>(
+    "/streams/:id/kept-limits",
+    { schema: { params: StreamParams, response: { 200: Type.Object({ kept: Type.Array(KeptLimitsSchema) }) } } },
+    ({ params: { id } }) => {
+      knownStream(parts, id);
+      return { kept: store.keptLimits(id) };
+    },
+  );
+
+  app.put<{ Params: { id: string; name: string }; Body: Pick<KeptLimits, "stretch"> & { limitSet: LimitSet } }>(
+    "/streams/:id/kept-limits/:name",
+    {
+      bodyLimit: mostBytes,
+      schema: {
+        params: KeptParams,
+        body: Type.Object({ limitSet: LimitSetSchema, stretch: KeptLimitsSchema.properties.stretch }),
+        response: { 200: DoneSchema, 404: ProblemSchema },
+      },
+    },
+    async (request) => {
+      const { id, name } = request.params;
+      knownStream(parts, id);
+      const by = allowed(request, "engineer").name;
+      const { stretch, limitSet } = request.body;
+      const { version: base, model, statistics, alarms } = limitSet;
+      const kept = { name, base, model, statistics, alarms, stretch };
+      await engine.command({ kind: "keep limits", stream: id, by, kept });
+      return { done: true as const };
+    },
+  );
+
+  app.delete<{ Params: { id: string; name: string } }>(
+    "/streams/:id/kept-limits/:name",
+    { schema: { params: KeptParams, response: { 200: DoneSchema, 404: ProblemSchema } } },
+    async (request) => {
+      const { id, name } = request.params;
+      knownStream(parts, id);
+      const by = allowed(request, "engineer").name;
+      if (!store.keptLimits(id).some((kept) => kept.name === name)) {
+        throw new RequestError(404, "no-such-limits", `${id} has no limits kept as "${name}".`);
+      }
+      await engine.command({ kind: "drop kept limits", stream: id, by, name });
+      return { done: true as const };
+    },
+  );
+
+  /** Taken from the rehearsal itself: nobody writes their own testimonial. @throws RequestError when it rehearsed other limits */
+  function evidenceOf(rehearsal: string, limitSet: LimitSet): RehearsalEvidence {
+    const finished = parts.rehearsals.finished(rehearsal);
+    const rehearsed = finished?.job.request.limitSet;
+    if (!finished || !rehearsed || differences(rehearsed, limitSet).length > 0) {
+      const says = finished ? "rehearsed other limits than these" : "is not there any more, or not done";
+      throw new RequestError(
+        409,
+        "no-evidence",
+        `The rehearsal ${says}. Rehearse these limits and propose them again.`,
+      );
+    }
+    const { result, job } = finished;
+    const figures = ({ perDay, found, missed, causeless, longestQuietMs }: Outcome) => ({
+      ...{ perDay, found, missed, causeless: causeless.length, longestQuietMs },
+    });
+    return {
+      ...{ from: job.request.from, to: job.request.to, cuts: result.stretch.cut.length },
+      ...{ readings: result.stretch.readings, days: result.inForce.days, version: result.version },
+      inForce: figures(result.inForce),
+      proposed: figures(result.proposed!),
+    };
+  }
+
   async function ask(command: LimitCommand): Promise<Extract<CommandOutcome, { done: true }>> {
     knownStream(parts, command.stream);
     const outcome = await engine.command(command);
@@ -132,15 +219,20 @@ export function limitSetRoutes(app: FastifyInstance, parts: GatewayParts): void 
 
 /** A version in the list: who, when, why, and in what it differs from the one before. */
 function aboutVersion(set: LimitSet, before: LimitSet | undefined) {
-  const { version, author, approver, reason, time, model } = set;
+  const { version, author, approver, reason, time, model, evidence } = set;
   return {
     ...{ version, author, reason, time, model },
     ...(approver === undefined ? {} : { approver }),
+    ...(evidence ? { evidence } : {}),
     differences: before ? differences(before, set) : [],
   };
 }
 
 function aboutProposal(proposal: LimitProposal, inForce: LimitSet | undefined) {
-  const { id, base, author, reason, time } = proposal;
-  return { id, base, author, reason, time, differences: inForce ? differences(inForce, proposal) : [] };
+  const { id, base, author, reason, time, evidence } = proposal;
+  return {
+    ...{ id, base, author, reason, time },
+    ...(evidence ? { evidence } : {}),
+    differences: inForce ? differences(inForce, proposal) : [],
+  };
 }

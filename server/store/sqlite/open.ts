@@ -33,6 +33,7 @@ const steps: readonly ((db: Database.Database) => void)[] = [
   (db) => db.exec(forRehearsal),
   addHandover,
   (db) => db.exec(laboratorySchema),
+  (db) => db.exec(keptLimits),
 ];
 
 /** How long a commit waits for another program that holds the record: the engine's thread stands still meanwhile, and must go on reporting. */
@@ -72,6 +73,12 @@ const forRehearsal = `
 ALTER TABLE reading ADD COLUMN unusable_reason TEXT;
 UPDATE reading SET unusable_reason = 'frozen' WHERE unusable LIKE 'exactly the same spectrum %';
 CREATE INDEX process_state ON event (stream, at) WHERE kind = 'process state';
+`;
+
+/** Limits that somebody is still thinking about. */
+const keptLimits = `
+CREATE TABLE kept_limits (stream INTEGER NOT NULL REFERENCES stream, name TEXT NOT NULL, time INTEGER NOT NULL, json TEXT NOT NULL,
+  PRIMARY KEY (stream, name)) STRICT, WITHOUT ROWID;
 `;
 
 /** Opens the record for its single writer; makes it when there is none, brings an older form up to date. @throws StoreError for a damaged or newer file. */

@@ -1,6 +1,6 @@
 import type Database from "better-sqlite3";
 import type { StreamState } from "../../../core/judging/index.ts";
-import type { LimitSet } from "../../../core/limit-set/index.ts";
+import type { KeptLimits, LimitSet } from "../../../core/limit-set/index.ts";
 import type { Excursion, RecordedEvent } from "../../../core/messages/index.ts";
 import type { StoreReader } from "../store.ts";
 import { handoverReader } from "./handover.ts";
@@ -31,6 +31,9 @@ export function sqliteReader(file: string): StoreReader {
       .pluck(),
     limitSets: db
       .prepare<[number], string>("SELECT json FROM limit_set WHERE stream = ? ORDER BY version DESC")
+      .pluck(),
+    keptLimits: db
+      .prepare<[number], string>("SELECT json FROM kept_limits WHERE stream = ? ORDER BY time DESC")
       .pluck(),
     state: db.prepare<[string], string | null>("SELECT state FROM stream WHERE id = ?").pluck(),
     totals: db.prepare<Named, { stream: string; reason: string; count: number }>(
@@ -137,6 +140,7 @@ export function sqliteReader(file: string): StoreReader {
       return json ? (JSON.parse(json) as LimitSet) : undefined;
     },
     limitSets: (stream) => sql.limitSets.all(streamKey(stream)).map((json) => JSON.parse(json) as LimitSet),
+    keptLimits: (stream) => sql.keptLimits.all(streamKey(stream)).map((json) => JSON.parse(json) as KeptLimits),
     proposals(stream) {
       const json = sql.state.get(stream);
       return json ? ((JSON.parse(json) as Partial<StreamState>).proposals?.waiting ?? []) : [];

@@ -50,6 +50,8 @@ export function sqliteWriter(file: string): StoreWriter {
     modelText: db.prepare<[string], string>("SELECT text FROM model WHERE id = ?").pluck(),
     limitSet: db.prepare("SELECT json FROM limit_set WHERE stream = ? ORDER BY version DESC LIMIT 1").pluck(),
     addLimitSet: db.prepare("INSERT INTO limit_set VALUES (?, ?, ?)"),
+    keepLimits: db.prepare("INSERT OR REPLACE INTO kept_limits VALUES (?, ?, ?, ?)"),
+    dropLimits: db.prepare("DELETE FROM kept_limits WHERE stream = ? AND name = ?"),
     lastHash: db.prepare<[], Buffer>("SELECT hash FROM event ORDER BY cursor DESC LIMIT 1").pluck(),
     lastCursor: db.prepare("SELECT coalesce(max(cursor), 0) FROM event").pluck(),
     lastNumber: db.prepare("SELECT coalesce(max(number), 0) FROM spectrum").pluck(),
@@ -164,6 +166,10 @@ export function sqliteWriter(file: string): StoreWriter {
     for (const result of changes.labResults ?? []) laboratory.add(result);
     for (const set of changes.limitSets ?? []) addLimitSet(set);
     for (const { record, number } of changes.shiftRecords ?? []) handover.freeze(record, number);
+    for (const { stream, name, kept } of changes.keptLimits ?? []) {
+      if (kept) sql.keepLimits.run(streamKey(stream), name, kept.time, JSON.stringify(kept));
+      else sql.dropLimits.run(streamKey(stream), name);
+    }
     for (const [stream, state] of changes.states) sql.setState.run(JSON.stringify(state), streamKey(stream));
     return hash;
   });
