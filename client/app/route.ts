@@ -10,6 +10,8 @@ export type Route =
   /** `at`: any time in the shift; without it the one that runs. `words`: what is looked for in all that people said */
   | { view: "handover"; at?: number; words?: string }
   | { view: "agreement"; stream?: string; property?: string; days?: number }
+  /** `kept`: limits under consideration, by their name */
+  | { view: "rehearse"; stream?: string; from?: number; to?: number; kept?: string }
   | { view: "alarms" }
   | { view: "plant" };
 export type ViewName = Route["view"];
@@ -55,6 +57,10 @@ export function parseRoute(path: string, search: string): Route {
       return { view, at: timeOf(query.get("at")), words: query.get("words") ?? undefined };
     case "agreement":
       return { view, stream, property: query.get("property") ?? undefined, days: daysOf(query.get("days")) };
+    case "rehearse": {
+      const [from, to] = [timeOf(query.get("from")), timeOf(query.get("to"))];
+      return { view, stream, from, to, kept: query.get("kept") ?? undefined };
+    }
     case "alarms":
     case "plant":
       return { view };
@@ -96,6 +102,13 @@ export function href(route: Route): string {
       const { property, days } = route;
       const query = new URLSearchParams({ ...(property && { property }), ...(days && { days: String(days) }) });
       return `/agreement${stream}${query.size > 0 ? `?${query}` : ""}`;
+    }
+    case "rehearse": {
+      const query = new URLSearchParams();
+      if (route.from !== undefined) query.set("from", iso(route.from));
+      if (route.to !== undefined) query.set("to", iso(route.to));
+      if (route.kept) query.set("kept", route.kept);
+      return `/rehearse${stream}${query.size > 0 ? `?${query}` : ""}`;
     }
     default:
       return `/${route.view}${stream}`;

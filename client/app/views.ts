@@ -22,6 +22,7 @@ export const views: Record<ViewName, ViewEntry> = {
   alarms: { word: "Alarms", tag: literal`mill-alarms-view`, load: () => import("../views/alarms-view.ts") },
   handover: { word: "Handover", tag: literal`mill-handover-view`, load: () => import("../views/handover-view.ts") },
   limits: { word: "Limits", tag: literal`mill-limits-view`, load: () => import("../views/limits-view.ts") },
+  rehearse: { word: "Rehearse", tag: literal`mill-rehearse-view`, load: () => import("../views/rehearse-view.ts") },
   agreement: {
     word: "Agreement",
     tag: literal`mill-agreement-view`,

@@ -1,4 +1,4 @@
-import type { LimitSet } from "../../core/limit-set/index.ts";
+import type { KeptLimits, LimitSet } from "../../core/limit-set/index.ts";
 import type {
   Agreement,
   BoundRecord,
@@ -26,6 +26,7 @@ import type {
   Trend,
   Write,
 } from "../../core/messages/index.ts";
+import type { RehearsalRequest, RehearsalStanding } from "../../core/rehearsal/index.ts";
 
 /** The server said no, or could not be asked. `message` is for people: what happened and what to do. */
 export class ApiError extends Error {
@@ -113,8 +114,22 @@ export const api = {
       `${stream(id)}/limit-sets/differences`,
       asJson({ limitSet }),
     ),
-  changeLimits: (id: string, limitSet: LimitSet, reason: string) =>
-    ask<LimitChangeOutcome>(`${stream(id)}/limit-sets`, asJson({ limitSet, reason })),
+  /** `rehearsal`: one of just these limits, as evidence */
+  changeLimits: (id: string, limitSet: LimitSet, reason: string, rehearsal?: string) =>
+    ask<LimitChangeOutcome>(`${stream(id)}/limit-sets`, asJson({ limitSet, reason, rehearsal })),
+  rehearse: (id: string, request: RehearsalRequest) =>
+    ask<{ rehearsal: string }>(`${stream(id)}/rehearsals`, asJson(request)),
+  rehearsal: (rehearsal: string) => ask<RehearsalStanding>(`/rehearsals/${rehearsal}`),
+  cancelRehearsal: (rehearsal: string) => ask<void>(`/rehearsals/${rehearsal}`, { method: "DELETE" }),
+  keptLimits: (id: string, signal?: AbortSignal) =>
+    ask<{ kept: KeptLimits[] }>(`${stream(id)}/kept-limits`, { signal }),
+  keepLimits: (id: string, name: string, limitSet: LimitSet, stretch: KeptLimits["stretch"]) =>
+    ask<unknown>(`${stream(id)}/kept-limits/${encodeURIComponent(name)}`, {
+      ...asJson({ limitSet, stretch }),
+      method: "PUT",
+    }),
+  dropKeptLimits: (id: string, name: string) =>
+    ask<unknown>(`${stream(id)}/kept-limits/${encodeURIComponent(name)}`, { method: "DELETE" }),
   rollBackLimits: (id: string, version: number, reason: string) =>
     ask<LimitChangeOutcome>(`${stream(id)}/limit-sets/${version}/roll-back`, asJson({ reason })),
   approveLimits: (id: string, proposal: number) =>

@@ -1,5 +1,5 @@
 import { type Static, Type } from "typebox";
-import { LimitSetSchema } from "../limit-set/index.ts";
+import { type LimitSet, LimitSetSchema } from "../limit-set/index.ts";
 import { ProcessStateWordSchema } from "../messages/index.ts";
 import type { LabelledEvent, Outcome } from "./outcome.ts";
 import { SettingSchema } from "./setting.ts";
@@ -27,6 +27,8 @@ export const RehearsalRequestSchema = Type.Object({
   cutStates: Type.Optional(Type.Array(ProcessStateWordSchema, { maxItems: 20 })),
   /** the proposed limits; for another model than the one in charge it names that model, and recorded spectra are scored again */
   limitSet: Type.Optional(LimitSetSchema),
+  /** numbers changed in the proposed limits (in those in force, where no others are given), one after the other */
+  settings: Type.Optional(Type.Array(Type.Object({ setting: SettingSchema, value: Type.Number() }), { maxItems: 200 })),
   /** how the statistics went, beside the theory */
   pictures: Type.Optional(Type.Boolean()),
   /** one or two settings of the proposed limits, varied against each other */
@@ -51,6 +53,8 @@ export interface RehearsalResult {
   version: number;
   inForce: Outcome;
   proposed?: Outcome;
+  /** the limits that were proposed, whole, with the settings taken over */
+  limitSet?: LimitSet;
   pictures?: { t2: StatisticPicture; q: StatisticPicture };
   sweep?: { cells: SweepCell[]; best: SweepCell[] };
 }

@@ -20,6 +20,7 @@ import {
   sweep,
   theoryOf,
   withoutCuts,
+  withSetting,
 } from "../../core/rehearsal/index.ts";
 import type { StoreReader } from "../store/store.ts";
 
@@ -61,7 +62,7 @@ export class Rehearser {
       this.#store.excursions({ stream, from: request.from, to: request.to, limit: mostExcursions }),
       request,
     );
-    const { limitSet } = request;
+    const limitSet = this.#proposed(request, inForce);
     const other =
       limitSet && limitSet.model !== inForce.model
         ? this.#scoredBy(limitSet.model, rehearsal, request, progress)
@@ -78,7 +79,7 @@ export class Rehearser {
       truth,
       version: inForce.version,
       inForce: outcomeOf(rehearsal.run(inForce), truth),
-      ...(limitSet ? { proposed: outcomeOf(other.run(limitSet), truth) } : {}),
+      ...(limitSet ? { proposed: outcomeOf(other.run(limitSet), truth), limitSet } : {}),
       ...(request.pictures ? { pictures: this.#pictures(stretch, inForce) } : {}),
     };
   }
@@ -87,7 +88,7 @@ export class Rehearser {
   *sweep(job: RehearsalJob, progress: Progress): Generator<SweepCell> {
     const { stream, periodMs, request } = job;
     const inForce = this.#inForce(stream);
-    const base = request.limitSet ?? inForce;
+    const base = this.#proposed(request, inForce) ?? inForce;
     const { rehearsal } = this.#recorded(stream, periodMs, inForce.model, request, progress);
     const on = base.model === inForce.model ? rehearsal : this.#scoredBy(base.model, rehearsal, request, progress);
     const truth = labelledEvents(
@@ -97,6 +98,13 @@ export class Rehearser {
     const [first, second] = request.sweep ?? [];
     if (!first) throw new RehearsalError("The sweep names no setting; give one or two.");
     yield* sweep(on, base, second ? [first, second] : [first], truth, limitOf(this.#model(base.model), base));
+  }
+
+  #proposed({ limitSet, settings = [] }: RehearsalRequest, inForce: LimitSet): LimitSet | undefined {
+    if (!limitSet && settings.length === 0) return undefined;
+    const base = limitSet ?? inForce;
+    const recompute = limitOf(this.#model(base.model), base);
+    return settings.reduce((limits, { setting, value }) => withSetting(limits, setting, value, recompute), base);
   }
 
   #inForce(stream: string): LimitSet {

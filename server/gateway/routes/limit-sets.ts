@@ -172,7 +172,7 @@ export function limitSetRoutes(app: FastifyInstance, parts: GatewayParts): void 
   /** Taken from the rehearsal itself: nobody writes their own testimonial. @throws RequestError when it rehearsed other limits */
   function evidenceOf(rehearsal: string, limitSet: LimitSet): RehearsalEvidence {
     const finished = parts.rehearsals.finished(rehearsal);
-    const rehearsed = finished?.job.request.limitSet;
+    const rehearsed = finished?.result.limitSet;
     if (!finished || !rehearsed || differences(rehearsed, limitSet).length > 0) {
       const says = finished ? "rehearsed other limits than these" : "is not there any more, or not done";
       throw new RequestError(
