@@ -7,6 +7,7 @@ import { baseStyle } from "./base-style.ts";
 
 const width = 1000;
 const left = 92;
+const right = 990;
 const rows = { truth: 20, inForce: 48, proposed: 76 };
 const height = 112;
 /** More marks than this are a smear, and slow: the table above says how many there are. */
@@ -35,8 +36,12 @@ export class RehearsalStrip extends LitElement {
         display: block;
         width: 100%;
         height: auto;
-        touch-action: none;
+        min-width: 640px;
+        touch-action: pan-x;
         cursor: crosshair;
+      }
+      .scrolls {
+        overflow-x: auto;
       }
       text {
         fill: var(--quiet);
@@ -72,7 +77,7 @@ export class RehearsalStrip extends LitElement {
     const { result, cuts, dragged, time } = this;
     const { from, to } = result.stretch;
     const ticks = Array.from({ length: 6 }, (_, i) => from + ((to - from) * i) / 5);
-    return html`<svg
+    return html`<div class="scrolls" tabindex="0" role="region" aria-label="Calls over time"><svg
         viewBox="0 0 ${width} ${height}"
         role="group"
         aria-label="Calls over time: labelled troubles, limits in force, proposed limits"
@@ -99,9 +104,9 @@ export class RehearsalStrip extends LitElement {
           (at, i) =>
             svg`<text x=${this.#x(at)} y="106" text-anchor=${i === 0 ? "start" : i === 5 ? "end" : "middle"}>${time.brief(at, to + 2 * 86_400_000)}</text>`,
         )}
-      </svg>
+      </svg></div>
       <p class="quiet">
-        A filled mark is a call that no labelled trouble explains; a hollow one has a trouble under it. Follow a mark to its reading. Drag to
+        A filled mark is a call that no labelled trouble explains; a hollow one has a trouble under it, or is about the analyzer itself. Follow a mark to its reading. Drag to
         leave a stretch out.
       </p>`;
   }
@@ -135,7 +140,7 @@ export class RehearsalStrip extends LitElement {
     const box = (event.currentTarget as SVGElement).getBoundingClientRect();
     const { from, to } = this.result.stretch;
     const x = ((event.clientX - box.left) / box.width) * width;
-    return from + (to - from) * Math.min(1, Math.max(0, (x - left) / (width - left)));
+    return from + (to - from) * Math.min(1, Math.max(0, (x - left) / (right - left)));
   }
 
   #down(event: PointerEvent): void {

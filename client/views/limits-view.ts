@@ -1,6 +1,6 @@
 import { css, html, LitElement, nothing } from "lit";
 import type { LimitSet } from "../../core/limit-set/index.ts";
-import type { LimitSets, Plant } from "../../core/messages/index.ts";
+import type { LimitSets, Plant, RehearsalEvidence } from "../../core/messages/index.ts";
 import type { Route } from "../app/route.ts";
 import { api } from "../data/api.ts";
 import type { Feed } from "../data/feed.ts";
@@ -8,7 +8,7 @@ import { Listening } from "../data/listening.ts";
 import { Loaded } from "../data/loaded.ts";
 import { baseStyle } from "../parts/base-style.ts";
 import type { PlantTime } from "../words/plant-time.ts";
-import { figure, named, percent } from "../words/quantity.ts";
+import { figure, grouped, named, percent } from "../words/quantity.ts";
 import { delayWords, watchWords } from "../words/watch-words.ts";
 
 type Differences = LimitSets["versions"][number]["differences"];
@@ -127,8 +127,9 @@ export class LimitsView extends LitElement {
     return html`<section class="card" aria-label="Waiting for approval">
       <h2>Waiting for another person's approval</h2>
       ${proposals.map(
-        ({ id, author, reason, time, differences }) => html`<div class="entry">
+        ({ id, author, reason, time, differences, evidence }) => html`<div class="entry">
           <p><b>Proposal ${id}</b>, ${author}, ${this.#when(time)}: ${reason}</p>
+          ${this.#evidence(evidence)}
           ${changeList(differences)}
           ${
             this.#mayChange()
@@ -250,6 +251,7 @@ export class LimitsView extends LitElement {
       ${versions.map(
         (version, i) => html`<div class="entry">
           <p><b>${version.version}</b> ${this.#when(version.time)}, ${by(version)}: ${version.reason}</p>
+          ${this.#evidence(version.evidence)}
           ${changeList(version.differences)}
           ${
             i > 0 && this.#mayChange() && version.model === versions[0].model
@@ -262,6 +264,18 @@ export class LimitsView extends LitElement {
         </div>`,
       )}
     </section>`;
+  }
+
+  /** What a rehearsal said for it. */
+  #evidence(evidence: RehearsalEvidence | undefined) {
+    if (!evidence) return nothing;
+    const { from, to, readings, version, inForce, proposed } = evidence;
+    const both = (before: number, after: number) => `${figure(before, 3)} → ${figure(after, 3)}`;
+    return html`<p>
+      Rehearsed on ${grouped(readings)} readings, ${this.#when(from)} to ${this.#when(to)}, against version ${version}: calls per day
+      ${both(inForce.perDay, proposed.perDay)}; labelled troubles missed ${both(inForce.missed, proposed.missed)} of
+      ${inForce.found + inForce.missed}; calls without a labelled cause ${both(inForce.causeless, proposed.causeless)}.
+    </p>`;
   }
 
   #when(at: number) {

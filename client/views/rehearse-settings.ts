@@ -31,7 +31,7 @@ export class RehearseSettings extends LitElement {
     baseStyle,
     css`
       input {
-        width: 9ch;
+        width: 12ch;
       }
       .changed {
         border-width: 2px;
@@ -124,7 +124,7 @@ export class RehearseSettings extends LitElement {
         min=${range.min ?? nothing}
         max=${range.max ?? nothing}
         step=${range.step}
-        .value=${String(own?.value ?? value ?? "")}
+        .value=${String(own?.value ?? rounded(value) ?? "")}
         title=${value === undefined ? "not set in the limits in force" : `in force: ${figure(value, 5)}`}
         @change=${(event: Event) => this.#take(setting, value, (event.target as HTMLInputElement).value)}
       />
@@ -152,9 +152,14 @@ export class RehearseSettings extends LitElement {
     const others = this.changed.filter((each) => !same(each.setting, setting));
     const value = Number(text);
     const detail =
-      text === "" || !Number.isFinite(value) || value === inForce ? others : [...others, { setting, value }];
+      text === "" || !Number.isFinite(value) || value === rounded(inForce) ? others : [...others, { setting, value }];
     this.dispatchEvent(new CustomEvent("numbers-changed", { detail, bubbles: true, composed: true }));
   }
+}
+
+/** As it is shown: nobody means the sixth digit. */
+function rounded(value: number | undefined): number | undefined {
+  return value === undefined ? undefined : Number(value.toPrecision(6));
 }
 
 export function same(a: Setting, b: Setting): boolean {

@@ -129,6 +129,10 @@ export class RehearseView extends LitElement {
       progress {
         width: 16ch;
       }
+      tbody th {
+        color: var(--ink);
+        border-bottom-color: var(--rule);
+      }
     `,
   ];
 
@@ -182,7 +186,7 @@ export class RehearseView extends LitElement {
     const periodMs = this.plant.streams.find(({ id }) => id === result.stretch.stream)?.periodMs ?? 1000;
     const spacing = Math.max(periodMs, (result.inForce.days * day) / Math.max(1, readings));
     return html`
-      <section class="card" aria-label="What would have happened">
+      <section class="card scrolls" tabindex="0" role="region" aria-label="What would have happened">
         <h2>What would have happened</h2>
         <p>${grouped(readings)} readings${cut.length > 0 ? html`, ${counted(cut.length, "stretch", "stretches")} left out` : nothing}.</p>
         <mill-rehearsal-strip .result=${result} .cuts=${cut} .time=${this.time} @stretch-cut=${(event: CustomEvent<Span>) => this.#change({ cuts: [...this.cuts, event.detail] })}></mill-rehearsal-strip>
@@ -200,8 +204,8 @@ export class RehearseView extends LitElement {
         </div>
         ${outcomeTable(result)}
       </section>
-      <section class="card" aria-label="Troubles"><h2>Troubles, found or missed</h2>${troublesTable(result, this.time)}</section>
-      <section class="card" aria-label="Alarm by alarm"><h2>Alarm by alarm</h2>${alarmsTable(result)}</section>
+      <section class="card scrolls" tabindex="0" role="region" aria-label="Troubles"><h2>Troubles, found or missed</h2>${troublesTable(result, this.time)}</section>
+      <section class="card scrolls" tabindex="0" role="region" aria-label="Alarm by alarm"><h2>Alarm by alarm</h2>${alarmsTable(result)}</section>
       ${
         result.pictures
           ? html`<section class="card" aria-label="As the statistics saw it">

@@ -71,7 +71,8 @@ export class Rehearsals {
   }
 
   async stop(): Promise<void> {
-    for (const { cancel } of this.#entries.values()) cancel();
+    // What waits for a thread must not start one now.
+    for (const id of this.#entries.keys()) this.cancel(id);
     await Promise.all(this.#threads.map((thread) => thread.stop()));
   }
 

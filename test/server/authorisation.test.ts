@@ -43,6 +43,13 @@ const table = (): Record<string, Row> => ({
   "POST /streams/{id}/lab/table": { least: "engineer", body: "time,property\n", type: "text/csv" },
   "POST /streams/{id}/lab/correct": { least: "engineer", body: { result: labIdentity, value: 1, reason } },
   "POST /streams/{id}/lab/withdraw": { least: "engineer", body: { result: labIdentity, reason } },
+  "POST /streams/{id}/rehearsals": { least: "operator", body: { from: 1, to: 2 } },
+  "DELETE /rehearsals/{rehearsal}": { least: "operator" },
+  "PUT /streams/{id}/kept-limits/{name}": {
+    least: "engineer",
+    body: { limitSet, stretch: { from: 1, to: 2, cuts: [], cutStates: [] } },
+  },
+  "DELETE /streams/{id}/kept-limits/{name}": { least: "engineer" },
   "POST /streams/{id}/limit-sets/differences": { least: "anybody", body: { limitSet } },
   "POST /streams/{id}/limit-sets": { least: "engineer", body: { limitSet, reason } },
   "POST /streams/{id}/limit-sets/{version}/roll-back": { least: "engineer", body: { reason } },
@@ -50,7 +57,10 @@ const table = (): Record<string, Row> => ({
   "POST /streams/{id}/limit-proposals/{proposal}/withdraw": { least: "engineer", body: { reason } },
 });
 /** what stands for a path's parameters */
-const parameters: Record<string, string> = { id: "bq-305", key: "unfamiliar", kind: "unfamiliar" };
+const parameters: Record<string, string> = {
+  ...{ id: "bq-305", key: "unfamiliar", kind: "unfamiliar" },
+  rehearsal: "00000000-0000-4000-8000-000000000000",
+};
 
 let chain: Chain;
 /** a token of each role */

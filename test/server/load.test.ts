@@ -79,7 +79,9 @@ test("recorded readings go through the same judging: verdicts, alarms and excurs
   const raised = events.filter(({ kind, alarm }) => kind === "alarm raised" && alarm?.key === "unfamiliar");
   expect(raised).toHaveLength(1);
   expect(raised[0]).toMatchObject({ at: readings[102].time, history: true }); // the third in a row
-  expect((await chain.get<{ alarms: unknown[] }>("/alarms")).alarms).toEqual([]);
+  // Nothing live comes in this test, and on a slow machine that has been noticed by now.
+  const { alarms } = await chain.get<{ alarms: { key: string }[] }>("/alarms");
+  expect(alarms.filter(({ key }) => key !== "silent")).toEqual([]);
 });
 
 test("the same file again changes nothing", async () => {
